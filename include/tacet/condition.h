@@ -1,0 +1,112 @@
+// condition: a model (assembled study, frozen), a workspace (one a thread), solve, one row.
+#ifndef TACET_CONDITION_H
+#define TACET_CONDITION_H
+#include "tacet/base.h"
+#include "tacet/engine.h"
+#include "tacet/judge.h"
+#include "tacet/pattern.h"
+#include "tacet/study.h"
+#include "tacet/train.h"
+#pragma GCC visibility push(default)
+
+typedef struct tacet_model tacet_model;         // shared, read-only
+typedef struct tacet_workspace tacet_workspace; // one a thread; memo slots live here
+TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e);
+void tacet_model_destroy(tacet_model *m); // the study must outlive the model
+const tacet_study *tacet_model_study(const tacet_model *m);
+const tacet_engine *tacet_model_engine(const tacet_model *m);
+const tacet_train *tacet_model_train(const tacet_model *m);
+size_t tacet_model_bands(const tacet_model *m);
+const tacet_band *tacet_model_band(const tacet_model *m, size_t i);
+size_t tacet_model_limits(const tacet_model *m);
+const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i);
+double tacet_model_highest_order(const tacet_model *m);
+size_t tacet_model_lines(const tacet_model *m, unsigned revolutions); // lines of a repeat
+size_t tacet_model_throws(const tacet_model *m);                      // driven nodes
+size_t tacet_model_throw_node(const tacet_model *m, size_t throw_index);
+const tacet_roll *tacet_model_all_fire(const tacet_model *m);
+// Elastic modes, Hz ascending, the rigid one first; n = number of nodes.
+const double *tacet_model_mode_hz(const tacet_model *m);
+
+TACET_USE tacet_status tacet_workspace_create(const tacet_model *m, tacet_workspace **out);
+void tacet_workspace_destroy(tacet_workspace *w);
+
+typedef struct {
+    uint64_t id;
+    double speed_rad_per_s, demand_Nm;
+    const tacet_roll *roll;
+} tacet_condition;
+typedef enum { TACET_SOLVED, TACET_UNREACHABLE, TACET_FAILED } tacet_outcome;
+const char *tacet_outcome_text(tacet_outcome o);
+typedef enum {            // level of detail of the motion
+    TACET_LEVEL_CONSTANT, // harmonic at constant speed
+    TACET_LEVEL_RIPPLE,   // harmonic with speed ripple (default)
+    TACET_LEVEL_STEADY    // march + shooting
+} tacet_level;
+
+#define TACET_BANDS_MOST  16
+#define TACET_LIMITS_MOST 16
+typedef struct {
+    uint64_t id;
+    double speed_rad_per_s, demand_Nm;
+    tacet_outcome outcome;
+    tacet_status why; // of TACET_FAILED
+    tacet_duty duty;
+    double fuel_to_all_fire; // ratio; NAN: no reference (all-fire unreachable)
+    tacet_solver_note solver;
+    tacet_verdict worst;               // over bands and limits
+    double worst_margin_db;            // NAN: no line anywhere or no verdict
+    int limiting_band, limiting_limit; // index, -1: none
+    size_t n_bands, n_limits;
+    tacet_band_result bands[TACET_BANDS_MOST];
+    tacet_limit_result limits[TACET_LIMITS_MOST];
+} tacet_row;
+
+// A pure function of (model, condition, level); the workspace only lends memory. A condition that
+// cannot be reached or solved is a row with that outcome and TACET_OK.
+TACET_USE tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c,
+                                   tacet_level level, tacet_workspace *w, tacet_row *out);
+// The response of the last solved condition of this workspace, until the next solve; NULL: none.
+const tacet_response *tacet_workspace_response(const tacet_workspace *w);
+// Gas torque and pressure of the last solved condition (engine_work loaded for it).
+const tacet_engine_work *tacet_workspace_engine(const tacet_workspace *w);
+// Spectrum of any quantity of the last solved condition into workspace memory; peaks on request.
+TACET_USE tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quantity_ref q,
+                                                const tacet_spectrum **out, tacet_peaks *peaks);
+
+// How well the solvers agree on a condition: same_model = largest difference of link torque and
+// node speed lines, steady with frozen inertia and torque at W t against constant-speed harmonic,
+// relative to the largest line; full_model_db = largest difference of band levels and of link
+// torque lines within 40 dB of their largest, ripple harmonic against the full march, dB.
+typedef struct {
+    bool settled; // both marches settled
+    double same_model, full_model_db;
+    unsigned repeats, evaluations; // of the full march
+    double closure;
+} tacet_agreement;
+TACET_USE tacet_status tacet_solve_referee(const tacet_model *m, const tacet_condition *c,
+                                           tacet_workspace *w, tacet_agreement *out);
+
+// ---- the one column table: CSV, JSON and table all come from it
+// -----------------------------------------
+typedef enum { TACET_COLUMN_NUMBER, TACET_COLUMN_TEXT, TACET_COLUMN_COUNT } tacet_column_type;
+typedef struct {
+    const char *name, *unit, *doc;
+    tacet_column_type type;
+    // number: NAN = absent. text: static or model-owned string.
+    double (*number)(const tacet_model *m, const tacet_condition *c, const tacet_row *r);
+    const char *(*text)(const tacet_model *m, const tacet_condition *c, const tacet_row *r);
+} tacet_column;
+const tacet_column *tacet_row_columns(size_t *n); // of every row, bands apart
+// Columns of one band or limit: level_rms, nominal_rms, limit_rms, margin_db, leading_order,
+// leading_peak, verdict, why.
+typedef struct {
+    const char *name, *unit, *doc;
+    tacet_column_type type;
+    double (*number)(const tacet_band_result *b);
+    const char *(*text)(const tacet_band_result *b);
+} tacet_band_column;
+const tacet_band_column *tacet_band_columns(size_t *n);
+
+#pragma GCC visibility pop
+#endif

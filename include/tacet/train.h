@@ -1,0 +1,180 @@
+// train: the torsional system: nodes, links, gear stages and branches; modes, harmonic solution,
+// ripple, march and steady. Knows no engine: it takes torque spectra, or a drive callback.
+//
+// Angle of a node: deviation from its mean rotation W * ratio * t, rad, positive with rotation.
+// Gear link: ratio = w_from / w_to, gear at `from`, shaft on the `to` side:
+//   T_to = K (th_from / ratio - th_to), acting on `to`; `from` feels -T_to / ratio.
+// Link torque is T_to.
+#ifndef TACET_TRAIN_H
+#define TACET_TRAIN_H
+#include "tacet/base.h"
+#include "tacet/order.h"
+#pragma GCC visibility push(default)
+
+// ---- definition
+// ----------------------------------------------------------------------------------------
+typedef enum { TACET_ON_POWERTRAIN, TACET_ON_OUTSIDE } tacet_node_on;
+typedef struct {
+    const char *name;
+    double inertia_kgm2;        // at its own speed; a throw's without the reciprocating share
+    double damping_Nms_per_rad; // to ground, on the fluctuation
+    int on;                     // tacet_node_on: what its ground and loads react on
+} tacet_node_def;
+
+typedef struct { // stiffness of a crank throw by Carter's or Ker Wilson's formula; NAN journal: not
+                 // given
+    int formula; // 0 carter, 1 ker-wilson
+    double journal_length_m, journal_outer_m, journal_inner_m, pin_length_m, pin_outer_m,
+        pin_inner_m, throw_m, web_thickness_m, web_width_m;
+} tacet_throw_def;
+
+typedef struct {
+    const char *name, *from, *to;
+    // exactly one way to state the stiffness: NAN / NULL where not used
+    double stiffness_Nm_per_rad,
+        stiffness_Nm_per_deg; // the second already in N m/rad (unit in table)
+    double length_m; // with outer_m (and inner_m): a plain shaft, k = pi G (D^4 - d^4)/(32 L)
+    double shear_modulus_Pa;
+    double outer_m, inner_m; // also the section for stress; NAN: no stress
+    double stress_concentration;
+    tacet_throw_def throw_; // key "throw"
+    // at most one way to state the damping
+    double damping_Nms_per_rad, damping_ratio, loss_factor;
+    double at_hz;      // where Re K* = k for a loss factor; NAN: the link's main mode
+    int loss_law;      // 0 causal, 1 constant (harmonic only)
+    double gear_ratio; // default 1
+} tacet_link_def;
+
+typedef struct { // a tuned damper: adds a node "<name>-ring" and a link "<name>"
+    const char *name, *node;
+    double ring_inertia_kgm2, tuned_hz, loss_factor;
+} tacet_damper_def;
+
+typedef struct tacet_train_def {
+    tacet_node_def *nodes;
+    size_t n_nodes;
+    tacet_link_def *links;
+    size_t n_links;
+    tacet_damper_def *dampers;
+    size_t n_dampers;
+    const char *flywheel, *load; // node names
+    // Not keys; set by the assembler before create:
+    const double *added_inertia_kgm2; // [n_nodes of the file] mean reciprocating share, or NULL
+    double lowest_hz, highest_hz;     // range of lines in which the loss ladder must hold
+
+} tacet_train_def;
+const tacet_section *tacet_train_keys(void);
+tacet_train_def tacet_train_default(void);
+// A connected tree, known names, one stiffness, at most one damping, names unique.
+void tacet_train_def_check(const tacet_train_def *d, const tacet_reporter *r);
+// Stiffness of one link def from whichever way it is stated, N m/rad on the `to` side.
+TACET_USE tacet_status tacet_link_stiffness(const tacet_link_def *d, double *out, tacet_error *e);
+
+// ---- thing
+// ------------------------------------------------------------------------------------------------
+typedef struct tacet_train tacet_train;
+typedef struct tacet_train_work tacet_train_work; // one a thread, sized once
+TACET_USE tacet_status tacet_train_create(const tacet_train_def *d, tacet_train **out,
+                                          tacet_error *e);
+void tacet_train_destroy(tacet_train *t);
+size_t tacet_train_nodes(const tacet_train *t); // with damper rings, in file order, rings last
+size_t tacet_train_links(const tacet_train *t);
+const char *tacet_train_node_name(const tacet_train *t, size_t node);
+const char *tacet_train_link_name(const tacet_train *t, size_t link);
+size_t tacet_train_node_find(const tacet_train *t, const char *name); // SIZE_MAX: none
+size_t tacet_train_link_find(const tacet_train *t, const char *name);
+size_t tacet_train_flywheel(const tacet_train *t);
+size_t tacet_train_load(const tacet_train *t);
+double tacet_train_node_ratio(const tacet_train *t,
+                              size_t node); // mean speed / crank mean speed, signed
+double tacet_train_node_inertia(const tacet_train *t, size_t node); // with the added share
+double tacet_train_node_damping(const tacet_train *t, size_t node);
+bool tacet_train_node_housed(const tacet_train *t, size_t node);
+double tacet_train_total_inertia(const tacet_train *t); // referred to the crank
+typedef struct {
+    size_t from, to;
+    double stiffness_Nm_per_rad, gear_ratio;
+    double section_modulus_m3, stress_concentration; // NAN: none stated
+    double loss_factor, damping_Nms_per_rad;         // resolved; the other is 0
+    double main_mode_hz;
+} tacet_link_info;
+tacet_link_info tacet_train_link_info(const tacet_train *t, size_t link);
+// Complex stiffness of a link at w rad/s, as both solvers use it (N m/rad, on the `to` side).
+double complex tacet_train_link_impedance(const tacet_train *t, size_t link, double w_rad_per_s);
+
+// Undamped modes, ascending, rigid one (0 Hz) included. frequency_hz[n], shape[mode * n + node]
+// scaled to largest |element| 1 and positive there.
+TACET_USE tacet_status tacet_train_modes(const tacet_train *t, double *frequency_hz, double *shape);
+
+// ---- solutions
+// ----------------------------------------------------------------------------------------------
+typedef struct {
+    tacet_spectrum *angle_rad,
+        *link_torque_Nm; // [n_nodes], [n_links]; means: 0, and the carried torque
+    size_t n_nodes, n_links;
+} tacet_train_motion;
+TACET_USE tacet_status tacet_train_motion_init(tacet_train_motion *m, const tacet_train *t,
+                                               size_t n_lines, tacet_arena *a);
+
+// most_lines: largest n_lines of any call; most_samples: transform length for ripple and steady.
+TACET_USE tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines,
+                                               size_t n_throws, tacet_train_work **out);
+void tacet_train_work_destroy(tacet_train_work *w);
+
+// Response to torques on the throws (nodes throw_node[n_throws]), constant speed: one line at a
+// time, tree elimination in the impedance form. torque[i].revolutions and n_lines give the grid;
+// speed the base frequency. Means: link torques that carry the mean torques to the load node, which
+// balances. No speed hold: the rigid mode is -w^2 J.
+TACET_USE tacet_status tacet_train_harmonic(const tacet_train *t, double speed_rad_per_s,
+                                            size_t n_throws, const size_t *throw_node,
+                                            const tacet_spectrum *torque, tacet_train_work *w,
+                                            tacet_train_motion *out);
+
+// Torque on throw `i` at n throw angles (rad from the start of the repeat): applied torque that
+// depends on angle alone (gas less friction), and the varying reciprocating inertia (kg m2, the
+// whole m x'^2, not its deviation) with slope. The equation of a throw is
+//   (J0 + J(a)) a'' + J'(a)/2 a'^2 = T(a) + link and damping torques,
+// where J0 is the node's inertia in the file.
+typedef tacet_status tacet_drive(const void *who, size_t throw_index, size_t n,
+                                 const double *angle_rad, double *torque_Nm, double *inertia_kgm2,
+                                 double *slope_kgm2_per_rad);
+
+typedef struct {
+    const char *method; // "constant", "ripple", "steady"
+    double closure;     // end defect of the repeat, relative to the motion; 0 for harmonic
+    double difference;  // of the last two passes, relative
+    unsigned repeats, evaluations; // repeats marched, right-hand sides; ripple: passes, samples
+} tacet_solver_note;
+
+// How a periodic solution is to be found.
+typedef struct {
+    unsigned revolutions; // of the repeat
+    size_t n_lines;       // of the result
+    bool frozen;          // steady: torque at W t and mean inertia instead of the throw's own angle
+    double tolerance; // relative: closure (steady, 1e-9 default), pass difference (ripple, 1e-6)
+    unsigned most_passes; // 8
+} tacet_periodic;
+tacet_periodic tacet_periodic_default(void);
+
+// Harmonic with the throw's own angle: iterates F = T(W t + d) - J'/2 a'^2 - (J - <J>) a''. Also
+// gives the effective torque spectrum on the left-hand mean inertia (`torque`, may be NULL) of each
+// throw. TACET_NOT_CONVERGED: not contracting; steady decides.
+TACET_USE tacet_status tacet_train_ripple(const tacet_train *t, double speed_rad_per_s,
+                                          size_t n_throws, const size_t *throw_node,
+                                          tacet_drive *drive, const void *who,
+                                          const tacet_periodic *how, tacet_train_work *w,
+                                          tacet_train_motion *out, tacet_spectrum *torque,
+                                          tacet_solver_note *note);
+// Periodic steady state of the full equations by march (GSL odeiv2) and shooting.
+TACET_USE tacet_status tacet_train_steady(const tacet_train *t, double speed_rad_per_s,
+                                          size_t n_throws, const size_t *throw_node,
+                                          tacet_drive *drive, const void *who,
+                                          const tacet_periodic *how, tacet_train_work *w,
+                                          tacet_train_motion *out, tacet_solver_note *note);
+// Mean powers of a solution, W: what the throws put in, what dampers take, what leaves at the load.
+typedef struct {
+    double in_W, dissipated_W, out_W;
+} tacet_train_power;
+
+#pragma GCC visibility pop
+#endif
