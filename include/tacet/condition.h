@@ -11,8 +11,12 @@
 
 typedef struct tacet_model tacet_model;         // shared, read-only
 typedef struct tacet_workspace tacet_workspace; // one a thread; memo slots live here
+// Assembles engine and train, modes, bands and limits; cheap. The study must outlive the model.
 TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e);
-void tacet_model_destroy(tacet_model *m); // the study must outlive the model
+// Fills the cycle table and the all-fire reference levels, once, before any workspace is created;
+// the model is frozen afterwards and may be shared by threads.
+TACET_USE tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e);
+void tacet_model_destroy(tacet_model *m); // accepts NULL
 const tacet_study *tacet_model_study(const tacet_model *m);
 const tacet_engine *tacet_model_engine(const tacet_model *m);
 const tacet_train *tacet_model_train(const tacet_model *m);
@@ -20,9 +24,16 @@ size_t tacet_model_bands(const tacet_model *m);
 const tacet_band *tacet_model_band(const tacet_model *m, size_t i);
 size_t tacet_model_limits(const tacet_model *m);
 const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i);
-double tacet_model_highest_order(const tacet_model *m);
+// Highest order of the lines; `limited` (may be NULL): the mode of interest asked for more than
+// TACET_ORDER_MOST.
+#define TACET_ORDER_MOST 36
+double tacet_model_highest_order(const tacet_model *m, bool *limited);
+// All-fire reference level of a band at its worst screened speed; NAN: unreachable at every one.
+double tacet_model_reference(const tacet_model *m, size_t band);
 size_t tacet_model_lines(const tacet_model *m, unsigned revolutions); // lines of a repeat
-size_t tacet_model_throws(const tacet_model *m);                      // driven nodes
+double tacet_model_demand(const tacet_model *m,
+                          double speed_rad_per_s); // of the study at a speed, N m
+size_t tacet_model_throws(const tacet_model *m);   // driven nodes
 size_t tacet_model_throw_node(const tacet_model *m, size_t throw_index);
 const tacet_roll *tacet_model_all_fire(const tacet_model *m);
 // Elastic modes, Hz ascending, the rigid one first; n = number of nodes.
@@ -89,13 +100,15 @@ TACET_USE tacet_status tacet_solve_referee(const tacet_model *m, const tacet_con
 
 // ---- the one column table: CSV, JSON and table all come from it
 // -----------------------------------------
+#define TACET_COLUMN_BUFFER (TACET_PATTERN_LONGEST + 1)
 typedef enum { TACET_COLUMN_NUMBER, TACET_COLUMN_TEXT, TACET_COLUMN_COUNT } tacet_column_type;
 typedef struct {
     const char *name, *unit, *doc;
     tacet_column_type type;
-    // number: NAN = absent. text: static or model-owned string.
+    // number: NAN = absent. text: static, model-owned, or written to `buffer`.
     double (*number)(const tacet_model *m, const tacet_condition *c, const tacet_row *r);
-    const char *(*text)(const tacet_model *m, const tacet_condition *c, const tacet_row *r);
+    const char *(*text)(const tacet_model *m, const tacet_condition *c, const tacet_row *r,
+                        char buffer[TACET_COLUMN_BUFFER]);
 } tacet_column;
 const tacet_column *tacet_row_columns(size_t *n); // of every row, bands apart
 // Columns of one band or limit: level_rms, nominal_rms, limit_rms, margin_db, leading_order,

@@ -1,0 +1,304 @@
+#include "condition/internal.h"
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+// Lines reach this much beyond the highest mode of interest, so that its resonance is whole.
+#define ORDER_MARGIN 1.15
+#define ORDER_LEAST  24.0
+// Speeds may be asked this far outside the screened ones.
+#define SPEED_MARGIN 0.1
+
+static void speed_range(const tacet_study *s, double range[2])
+{
+    range[0] = range[1] = s->screen.speeds_rad_per_s[0];
+    for (size_t i = 0; i < s->screen.n_speeds; i++) {
+        range[0] = fmin(range[0], s->screen.speeds_rad_per_s[i]);
+        range[1] = fmax(range[1], s->screen.speeds_rad_per_s[i]);
+    }
+}
+
+// Which nodes the cylinders drive, in firing sequence of first use.
+static tacet_status assemble_throws(tacet_model *m, const tacet_train_def *train, tacet_error *e)
+{
+    unsigned n = tacet_engine_cylinders(m->engine);
+    m->throw_node = tacet_arena_alloc(m->arena, n * sizeof *m->throw_node);
+    m->slot_throw = tacet_arena_alloc(m->arena, n * sizeof *m->slot_throw);
+    m->throw_slots = tacet_arena_alloc(m->arena, (size_t)n * n * sizeof *m->throw_slots);
+    m->throw_n_slots = tacet_arena_alloc(m->arena, n * sizeof *m->throw_n_slots);
+    m->throw_inertia = tacet_arena_alloc(m->arena, n * sizeof *m->throw_inertia);
+    if (!m->throw_node || !m->slot_throw || !m->throw_slots || !m->throw_n_slots ||
+        !m->throw_inertia)
+        return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+    for (unsigned slot = 0; slot < n; slot++) {
+        const char *name = tacet_engine_node(m->engine, slot);
+        size_t node = 0, t = 0;
+        while (node < train->n_nodes && strcmp(train->nodes[node].name, name) != 0)
+            node++;
+        if (node == train->n_nodes)
+            return tacet_fail(e, TACET_BAD_INPUT,
+                              "cylinder %u drives node '%s'; the train has none",
+                              tacet_engine_number(m->engine, slot), name);
+        while (t < m->n_throws && m->throw_node[t] != node)
+            t++;
+        if (t == m->n_throws) m->throw_node[m->n_throws++] = node;
+        m->slot_throw[slot] = (unsigned)t;
+        m->throw_slots[t * n + m->throw_n_slots[t]++] = slot;
+        m->throw_inertia[t] += tacet_engine_mean_inertia(m->engine);
+    }
+    return TACET_OK;
+}
+
+static tacet_status assemble_train(tacet_model *m, tacet_error *e)
+{
+    const tacet_study *s = m->study;
+    tacet_train_def d = s->train;
+    double *added = tacet_arena_alloc(m->arena, d.n_nodes * sizeof *added);
+    if (!added) return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+    tacet_status status = assemble_throws(m, &d, e);
+    if (status != TACET_OK) return status;
+    for (size_t t = 0; t < m->n_throws; t++)
+        added[m->throw_node[t]] = m->throw_inertia[t];
+    double range[2];
+    speed_range(s, range);
+    unsigned longest = s->screen.densities.longest > 8 ? s->screen.densities.longest : 8;
+    d.added_inertia_kgm2 = added;
+    d.lowest_hz = tacet_order_hz(1.0 / (2 * longest), range[0]);
+    d.highest_hz = tacet_order_hz(TACET_ORDER_MOST, range[1]);
+    status = tacet_train_create(&d, &m->train, e);
+    if (status != TACET_OK) return status;
+    size_t n = tacet_train_nodes(m->train);
+    m->mode_hz = tacet_arena_alloc(m->arena, n * sizeof *m->mode_hz);
+    double *shape = malloc(n * n * sizeof *shape);
+    status = m->mode_hz && shape ? tacet_train_modes(m->train, m->mode_hz, shape) : TACET_NO_MEMORY;
+    free(shape);
+    return status == TACET_OK
+               ? TACET_OK
+               : tacet_fail(e, status, "the modes of the train: %s", tacet_status_text(status));
+}
+
+// The mode of interest is the highest one that order 24 reaches at the highest screened speed;
+// lines go a little beyond it at the lowest speed, and beyond the highest band edge, but not past
+// TACET_ORDER_MOST, where the torque of a fired cycle has faded (common practice, no source).
+static void choose_highest_order(tacet_model *m)
+{
+    const tacet_screen_def *screen = &m->study->screen;
+    double range[2], hz = 0;
+    speed_range(m->study, range);
+    for (size_t i = 0; i < m->n_bands; i++)
+        m->highest_band_hz = fmax(m->highest_band_hz, m->bands[i].counted_high_hz);
+    for (size_t i = 0; i < tacet_train_nodes(m->train); i++)
+        if (m->mode_hz[i] < tacet_order_hz(ORDER_LEAST, range[1])) hz = fmax(hz, m->mode_hz[i]);
+    double wanted = fmax(ORDER_MARGIN * hz, m->highest_band_hz) / tacet_order_hz(1, range[0]);
+    double order = fmin(fmax(ceil(wanted), ORDER_LEAST), TACET_ORDER_MOST);
+    m->order_limited = wanted > TACET_ORDER_MOST;
+    m->highest_order = isnan(screen->highest_order) ? order : screen->highest_order;
+    if (!isnan(screen->highest_order)) m->order_limited = false;
+}
+
+static tacet_status assemble_judgement(tacet_model *m, tacet_error *e)
+{
+    const tacet_study *s = m->study;
+    if (s->n_bands > TACET_BANDS_MOST || s->n_limits > TACET_LIMITS_MOST)
+        return tacet_fail(e, TACET_BAD_INPUT, "%zu bands and %zu limits; at most %d and %d",
+                          s->n_bands, s->n_limits, TACET_BANDS_MOST, TACET_LIMITS_MOST);
+    m->bands = tacet_arena_alloc(m->arena, (s->n_bands + 1) * sizeof *m->bands);
+    m->limits = tacet_arena_alloc(m->arena, (s->n_limits + 1) * sizeof *m->limits);
+    m->reference = tacet_arena_alloc(m->arena, (s->n_bands + 1) * sizeof *m->reference);
+    m->cyclic = tacet_arena_alloc(m->arena, (s->n_bands + 1) * sizeof *m->cyclic);
+    if (!m->bands || !m->limits || !m->reference || !m->cyclic)
+        return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+    for (size_t i = 0; i < s->n_bands; i++) {
+        tacet_status status =
+            tacet_band_create(&s->bands[i], s->screen.reserve_db, m->train, &m->bands[i], e);
+        if (status != TACET_OK) return status;
+    }
+    for (size_t i = 0; i < s->n_limits; i++) {
+        tacet_status status = tacet_limit_create(&s->limits[i], m->train, &m->limits[i], e);
+        if (status != TACET_OK) return status;
+    }
+    m->n_bands = s->n_bands;
+    m->n_limits = s->n_limits;
+    return TACET_OK;
+}
+
+static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
+{
+    unsigned n = tacet_engine_cylinders(m->engine), strokes = tacet_engine_strokes(m->engine);
+    tacet_pattern fire = {.length = 1, .tenths = {10}};
+    tacet_status status = tacet_roll_create(&fire, n, strokes, &m->all_fire, e);
+    if (status != TACET_OK) return status;
+    choose_highest_order(m);
+    m->most_revolutions = TACET_PATTERN_LONGEST * strokes / 2;
+    m->most_lines = tacet_model_lines(m, m->most_revolutions);
+    size_t most = tacet_transform_length(m->most_lines, PEAK_OVERSAMPLE);
+    for (size_t i = 0; i < TRANSFORM_KINDS && (size_t)1 << (TRANSFORM_FIRST + i) <= most; i++) {
+        status = tacet_transform_create((size_t)1 << (TRANSFORM_FIRST + i), &m->transform[i]);
+        if (status != TACET_OK) return tacet_fail(e, status, "no memory for the transforms");
+    }
+    return model_transform(m, m->most_lines, PEAK_OVERSAMPLE)
+               ? TACET_OK
+               : tacet_fail(e, TACET_BAD_INPUT, "highest order %g; at most %d lines in a repeat",
+                            m->highest_order, 1 << (TRANSFORM_FIRST + TRANSFORM_KINDS - 4));
+}
+
+tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e)
+{
+    tacet_model *m = calloc(1, sizeof *m);
+    tacet_status status = TACET_NO_MEMORY;
+    if (!m || !(m->arena = tacet_arena_create())) {
+        (void)tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+        goto failed;
+    }
+    m->study = s;
+    status = tacet_engine_create(&s->engine, &m->engine, e);
+    if (status == TACET_OK) status = assemble_train(m, e);
+    if (status == TACET_OK) status = assemble_judgement(m, e);
+    if (status == TACET_OK) status = assemble_lines(m, e);
+    if (status != TACET_OK) goto failed;
+    *out = m;
+    return TACET_OK;
+failed:
+    tacet_model_destroy(m);
+    return status;
+}
+
+// All-fire levels at the study's demand at every screened speed; the worst of each band is its
+// reference.
+static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet_error *e)
+{
+    const tacet_screen_def *screen = &m->study->screen;
+    for (size_t b = 0; b < m->n_bands; b++)
+        m->reference[b] = NAN;
+    for (size_t i = 0; i < screen->n_speeds; i++) {
+        double speed = screen->speeds_rad_per_s[i];
+        tacet_condition c = {.speed_rad_per_s = speed, .roll = m->all_fire};
+        c.demand_Nm = tacet_model_demand(m, speed);
+        tacet_duty duty;
+        tacet_solver_note note;
+        tacet_band_level level[TACET_BANDS_MOST];
+        tacet_status status = condition_levels(w, &c, TACET_LEVEL_RIPPLE, &duty, &note, level);
+        if (status == TACET_NO_MEMORY) return tacet_fail(e, status, "no memory for a condition");
+        if (status != TACET_OK || !duty.reachable) continue; // no reference from this speed
+        for (size_t b = 0; b < m->n_bands; b++)
+            m->reference[b] = fmax(m->reference[b], level[b].dispersed); // fmax passes over NAN
+    }
+    return TACET_OK;
+}
+
+tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e)
+{
+    double range[2];
+    speed_range(m->study, range);
+    tacet_status status =
+        tacet_engine_prepare(m->engine, (1 - SPEED_MARGIN) * range[0],
+                             (1 + SPEED_MARGIN) * range[1], m->study->engine.skip.longest_run, e);
+    if (status != TACET_OK) return status;
+    tacet_workspace *w = NULL;
+    status = workspace_build(m, &w);
+    if (status == TACET_OK) status = dispersion_prepare(m, w);
+    if (status != TACET_OK)
+        (void)tacet_fail(e, status, "preparing the model: %s", tacet_status_text(status));
+    else
+        status = prepare_references(m, w, e);
+    tacet_workspace_destroy(w);
+    m->prepared = status == TACET_OK;
+    return status;
+}
+
+void tacet_model_destroy(tacet_model *m)
+{
+    if (!m) return;
+    for (size_t i = 0; i < TRANSFORM_KINDS; i++)
+        tacet_transform_destroy(m->transform[i]);
+    tacet_roll_destroy(m->all_fire);
+    tacet_train_destroy(m->train);
+    tacet_engine_destroy(m->engine);
+    tacet_arena_destroy(m->arena);
+    free(m);
+}
+
+const tacet_transform *model_transform(const tacet_model *m, size_t n_lines, unsigned oversample)
+{
+    size_t n = tacet_transform_length(n_lines, oversample), i = 0;
+    while (i < TRANSFORM_KINDS && (size_t)1 << (TRANSFORM_FIRST + i) < n)
+        i++;
+    return i < TRANSFORM_KINDS ? m->transform[i] : NULL;
+}
+
+const tacet_study *tacet_model_study(const tacet_model *m)
+{
+    return m->study;
+}
+
+const tacet_engine *tacet_model_engine(const tacet_model *m)
+{
+    return m->engine;
+}
+
+const tacet_train *tacet_model_train(const tacet_model *m)
+{
+    return m->train;
+}
+
+size_t tacet_model_bands(const tacet_model *m)
+{
+    return m->n_bands;
+}
+
+const tacet_band *tacet_model_band(const tacet_model *m, size_t i)
+{
+    return &m->bands[i];
+}
+
+size_t tacet_model_limits(const tacet_model *m)
+{
+    return m->n_limits;
+}
+
+const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i)
+{
+    return &m->limits[i];
+}
+
+double tacet_model_highest_order(const tacet_model *m, bool *limited)
+{
+    if (limited) *limited = m->order_limited;
+    return m->highest_order;
+}
+
+double tacet_model_reference(const tacet_model *m, size_t band)
+{
+    return m->prepared ? m->reference[band] : NAN;
+}
+
+double tacet_model_demand(const tacet_model *m, double speed_rad_per_s)
+{
+    return tacet_curve_at(&m->study->screen.brake_torque_Nm,
+                          60 * tacet_order_hz(1, speed_rad_per_s));
+}
+
+size_t tacet_model_lines(const tacet_model *m, unsigned revolutions)
+{
+    return (size_t)ceil(m->highest_order * revolutions);
+}
+
+size_t tacet_model_throws(const tacet_model *m)
+{
+    return m->n_throws;
+}
+
+size_t tacet_model_throw_node(const tacet_model *m, size_t throw_index)
+{
+    return m->throw_node[throw_index];
+}
+
+const tacet_roll *tacet_model_all_fire(const tacet_model *m)
+{
+    return m->all_fire;
+}
+
+const double *tacet_model_mode_hz(const tacet_model *m)
+{
+    return m->mode_hz;
+}
