@@ -1,19 +1,10 @@
 // The roll: what each cylinder does in each working cycle until pattern and cylinders line up
 // again.
+#include "gcd.h"
 #include "tacet/pattern.h"
 #include <stdlib.h>
 
 #define CYLINDERS_MOST 64
-
-static unsigned gcd(unsigned a, unsigned b)
-{
-    while (b) {
-        unsigned rest = a % b;
-        a = b;
-        b = rest;
-    }
-    return a;
-}
 
 static tacet_cycle *slot_cycles(const tacet_roll *r, unsigned slot)
 {

@@ -1,18 +1,9 @@
 // Words: what a user writes, and what can be said of a word without an engine.
+#include "gcd.h"
 #include "tacet/pattern.h"
 #include <math.h>
 #include <stdio.h>
 #include <string.h>
-
-static unsigned gcd(unsigned a, unsigned b)
-{
-    while (b) {
-        unsigned rest = a % b;
-        a = b;
-        b = rest;
-    }
-    return a;
-}
 
 static int tenths_of_letter(char letter)
 {
