@@ -5,81 +5,107 @@
 #include "tacet/condition.h"
 #pragma GCC visibility push(default)
 
-// A candidate of a screen: one density with all its placements, or one word of a book or of the
-// study.
+// ---- candidates -------------------------------------------------------------------------------
+// One density, evenly spread, with all its placements that the engine may run; or one word of the
+// study or of a book with its rotation as written.
 typedef struct {
-    const char *name; // "3/7", or the word's or book entry's name
-    const char *word; // of its first placement
+    const char *name;    // "3/7", or the word, or the name in the book
+    const char *word;    // of its first placement, reduced
+    const char *comment; // of the book; NULL: none
     unsigned fires, length;
     double density;
     const char *refused; // not NULL: not screened, and why
-    tacet_roll **roll;   // [n_placements]
+    tacet_roll **roll;   // [n_placements], as given by rotation; 0 of them when refused
     size_t n_placements;
+    size_t n_left_out;          // placements that the engine may not run
+    size_t first_cell, n_cells; // its cells in a screen
 } tacet_candidate;
 
-typedef struct {            // levels of one limiting band over speed
-    size_t candidate, band; // band: index; no-go ranges are of bands
-    double low_rad_per_s,
-        high_rad_per_s;       // edges by bisection to 0.5 rpm; the screen's ends where cut off
-    bool low_open, high_open; // runs past the end of the screened speeds
-    double worst_margin_db, worst_speed_rad_per_s, leading_order;
+// Candidates of a study: densities rising, then `patterns:` in the order given. Problems of books
+// go to `problems` with their places. Everything but the rolls is in the arena.
+TACET_USE tacet_status tacet_candidates_create(const tacet_study *s, const tacet_engine *en,
+                                               tacet_arena *a, tacet_problems *problems,
+                                               tacet_candidate **out, size_t *n, tacet_error *e);
+void tacet_candidates_destroy(tacet_candidate *c, size_t n); // the rolls; accepts NULL
+
+// ---- result of a screen -----------------------------------------------------------------------
+// Speeds at which the dispersed level of a band is over its limit, worst placement, at the study's
+// demand. Edges to 0.5 rpm or better. Open: the range runs on to where nothing is known, past the
+// end of the screened speeds or where the candidate cannot reach the demand.
+typedef struct {
+    size_t candidate, band;
+    double low_rad_per_s, high_rad_per_s;
+    bool low_open, high_open;
+    double worst_margin_db, worst_speed_rad_per_s, leading_order; // at the worst speed met
 } tacet_no_go;
 
 typedef struct {
     size_t candidate;
-    tacet_row row;    // of the worst placement
+    tacet_row row;    // of the worst placement: unreachable before failed before no verdict before
+                      // the smallest worst margin
     size_t placement; // which
-    bool extra;       // speed added besides the grid
+    bool extra;       // at a speed added besides the grid
 } tacet_cell;
 
-typedef struct { // per (speed, demand), candidates best first
+// One grid speed. Candidates best first: solved, then no scalar limit over, then clear by fuel,
+// then the rest by verdict (near, over, none) and margin; unreachable and failed last.
+typedef struct {
     double speed_rad_per_s, demand_Nm;
-    size_t *ranked; // indices into `cells`
+    size_t *ranked; // [n_ranked] indices into `cells`
     size_t n_ranked;
     size_t best; // cell index of the recommended candidate; SIZE_MAX: none is clear
 } tacet_rank;
 
-typedef struct { // what a candidate comes to
+// What a candidate comes to. Counts are of grid speeds.
+typedef struct {
     size_t candidate;
-    bool recommended;
-    char why_not[160];                                     // when not
-    size_t n_clear, n_near, n_over, n_none, n_unreachable; // of grid speeds
-    double clear_rpm;                                      // rad/s: total span of speed where clear
-    double clear_from_rad_per_s, clear_to_rad_per_s;       // of the widest clear stretch
-    double saving;     // mean fuel saving against all-fire where clear; NAN: none
-    int limiting_band; // most often, -1
-    double limiting_order;
+    bool recommended;  // best at one grid speed or more
+    char why_not[160]; // when not
+    size_t n_best;
+    size_t n_clear, n_near, n_over, n_none, n_unreachable; // n_none: failed, or no reference
+    double clear_rad_per_s; // speed span: sum of the steps between neighbouring clear cells
+    double clear_from_rad_per_s, clear_to_rad_per_s; // the widest clear stretch; NAN: clear nowhere
+    double saving;         // mean of 1 - fuel to all-fire where clear; NAN: none known
+    int limiting_band;     // limits most often where it is not clear; -1: none or a limit
+    double limiting_order; // leading order of that band at its worst margin
 } tacet_candidate_note;
 
+typedef struct {
+    size_t cell;
+    tacet_status status; // TACET_OK: `a` holds
+    tacet_agreement a;
+} tacet_referee;
+
 typedef struct tacet_screen {
+    tacet_arena *arena;
     tacet_candidate *candidates;
     size_t n_candidates;
-    double *speeds_rad_per_s;
-    size_t n_speeds; // grid of the study
-    tacet_cell *cells;
-    size_t n_cells; // candidate-major, grid first, then extra speeds
-    tacet_no_go *no_go;
+    double *speeds_rad_per_s; // grid of the study, rising
+    size_t n_speeds;
+    tacet_cell *cells; // by candidate; of each the grid first, then its extra speeds, each rising
+    size_t n_cells;
+    tacet_no_go *no_go; // by candidate, band, speed
     size_t n_no_go;
-    tacet_rank *ranks;
-    size_t n_ranks;              // one a grid speed
+    tacet_rank *ranks; // [n_ranks], one a grid speed
+    size_t n_ranks;
     tacet_candidate_note *notes; // [n_candidates]
-    struct {
-        size_t cell;
-        tacet_agreement a;
-    } * referee;
+    tacet_referee *referee;      // smallest margin first
     size_t n_referee;
-    size_t n_failed, n_solves;
+    size_t n_failed, n_solves; // conditions, those of the bisection among them
 } tacet_screen;
 
 typedef struct {
+    // Conditions done and known so far to be done; `of` grows when speeds are added. May be NULL.
     void (*progress)(void *who, size_t done, size_t of);
     void *who;
-    const volatile int *stop; // may be NULL
+    const volatile int *stop; // may be NULL; not 0: stop with TACET_STOPPED
 } tacet_watch;
+// The model must be prepared. watch may be NULL. Conditions that fail are counted and the rest goes
+// on; *out is NULL on any other status than TACET_OK.
 TACET_USE tacet_status tacet_screen_run(const tacet_model *m, const tacet_watch *watch,
                                         tacet_screen **out, tacet_problems *problems,
                                         tacet_error *e);
-void tacet_screen_destroy(tacet_screen *s);
+void tacet_screen_destroy(tacet_screen *s); // accepts NULL
 
 #pragma GCC visibility pop
 #endif
