@@ -68,6 +68,7 @@ typedef struct {
     bool wrong, keyed;                  // calls out of order; a key waits for its value
     bool array[TACET_JSON_DEPTH + 1];   // kind of each open level
     bool started[TACET_JSON_DEPTH + 1]; // holds a value already
+    bool broken[TACET_JSON_DEPTH + 1];  // its last value began a line
 } tacet_json;
 tacet_json tacet_json_start(FILE *to);
 void tacet_json_begin_object(tacet_json *j);
@@ -131,12 +132,13 @@ typedef struct {
     size_t row;
     double low_rpm, high_rpm;
 } tacet_map_range;
+#define TACET_FIGURE_ROWS_MOST 256
 typedef struct { // 1: density over speed, worst margin
     const char *title, *subtitle;
     const double *speed_rpm; // [n_speeds] strictly rising
     size_t n_speeds;
-    const char *const *row; // [n_rows] names of densities, bottom first
-    size_t n_rows;
+    const char *const *row;      // [n_rows] names of densities, bottom first
+    size_t n_rows;               // up to TACET_FIGURE_ROWS_MOST
     const tacet_map_cell *cell;  // [n_rows * n_speeds]
     const char *const *limiting; // [n_limiting] names of bands, then limits
     size_t n_limiting;
@@ -154,13 +156,14 @@ typedef struct {
     const char *name;
     double hz;
 } tacet_figure_mode;
+#define TACET_FIGURE_ORDERS_MOST 256
 typedef struct { // 2: order lines over speed
     const char *title, *subtitle;
     const char *quantity, *unit;
     const double *speed_rpm; // [n_speeds] strictly rising
     size_t n_speeds;
-    const double *order; // [n_orders]
-    size_t n_orders;
+    const double *order;     // [n_orders]
+    size_t n_orders;         // up to TACET_FIGURE_ORDERS_MOST
     const double *level_rms; // [n_orders * n_speeds]; NAN: not reachable at that speed
     const tacet_figure_band *band;
     size_t n_bands;

@@ -1,0 +1,109 @@
+// From a figure to a file: the script is written and kept, gnuplot draws it, the drawing is checked
+// before it gets its name.
+#include "show/canvas.h"
+#include "show/folder.h"
+#include "show/gnuplot.h"
+#include <math.h>
+#include <string.h>
+
+#define TIME_LIMIT_S 30.0 // a drawing takes 0.1 s; past this something hangs
+
+// Ends with `tail`?
+static bool ends_with(FILE *f, const char *tail, size_t length)
+{
+    char end[32];
+    return fseek(f, -(long)length, SEEK_END) == 0 && fread(end, 1, length, f) == length &&
+           memcmp(end, tail, length) == 0;
+}
+
+static tacet_status check_svg(FILE *f, tacet_error *e)
+{
+    if (!ends_with(f, "</svg>\n", 7) && !ends_with(f, "</svg>\n\n", 8))
+        return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot wrote no whole SVG drawing");
+    return TACET_OK;
+}
+
+static tacet_status check_png(FILE *f, tacet_error *e)
+{
+    if (!ends_with(f, "\0\0\0\0IEND\xae\x42\x60\x82", 12))
+        return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot wrote no whole PNG drawing");
+    return TACET_OK;
+}
+
+// Fonts of pngcairo are in points of 1/96 inch, those of svg in pixels.
+static const tacet_drawing_format formats[] = {
+    {"svg", "svg", "sharp at every size",
+     "svg size 1280,720 fixed background rgb 'white' noenhanced "
+     "font 'DejaVu Sans, Verdana, sans-serif,16'",
+     check_svg},
+    {"png", "png", "1280 x 720 pixels, for slides",
+     "pngcairo size 1280,720 background rgb 'white' noenhanced fontscale 0.75 "
+     "font 'DejaVu Sans, Verdana, sans-serif,16'",
+     check_png},
+    {NULL, NULL, NULL, NULL, NULL}};
+
+const tacet_drawing_format *tacet_drawing_formats(void)
+{
+    return formats;
+}
+
+const tacet_drawing_format *tacet_drawing_format_find(const char *name)
+{
+    for (const tacet_drawing_format *f = formats; f->name; f++)
+        if (strcmp(f->name, name) == 0) return f;
+    return NULL;
+}
+
+tacet_draw_how tacet_draw_default(void)
+{
+    return (tacet_draw_how){.format = formats, .time_limit_s = TIME_LIMIT_S};
+}
+
+tacet_status tacet_figure_script(const tacet_figure *f, const tacet_drawing_format *format,
+                                 FILE *to, tacet_error *e)
+{
+    canvas c = {.to = to};
+    const char *missing = figure_missing(f);
+    if (missing) return tacet_fail(e, TACET_NOT_FINITE, "nothing to draw: %s", missing);
+    fprintf(to, "set terminal %s\n", format->terminal);
+    canvas_use(&c, "common");
+    switch (f->kind) {
+    case TACET_FIGURE_MAP:
+        figure_map_script(&c, f->map);
+        break;
+    case TACET_FIGURE_ORDERS:
+        figure_orders_script(&c, f->orders);
+        break;
+    case TACET_FIGURE_BARS:
+        figure_bars_script(&c, f->bars);
+        break;
+    case TACET_FIGURE_REPEAT:
+        figure_repeat_script(&c, f->repeat);
+        break;
+    }
+    return TACET_OK;
+}
+
+tacet_status tacet_draw(tacet_folder *folder, const char *stem, const tacet_figure *f,
+                        const tacet_draw_how *how, tacet_error *e)
+{
+    char script[64], drawing[64];
+    FILE *to;
+    snprintf(script, sizeof script, "%s.gnuplot", stem);
+    snprintf(drawing, sizeof drawing, "%s.%s", stem, how->format->extension);
+    tacet_status s = tacet_folder_begin(folder, script, &to, e);
+    if (s != TACET_OK) return s;
+    s = tacet_figure_script(f, how->format, to, e);
+    if (s != TACET_OK) {
+        tacet_folder_abort(folder);
+        return s;
+    }
+    s = tacet_folder_commit(folder, e);
+    if (s == TACET_OK) s = tacet_folder_begin(folder, drawing, &to, e);
+    if (s != TACET_OK) return s;
+    s = gnuplot_run(folder_fd(folder), script, fileno(to), how->time_limit_s, e);
+    if (s == TACET_OK) s = how->format->check(to, e);
+    if (s == TACET_OK) return tacet_folder_commit(folder, e);
+    tacet_folder_abort(folder);
+    return s;
+}

@@ -1,0 +1,85 @@
+// Which labels fit, and where.
+#include "show/canvas.h"
+#include <stdlib.h>
+
+// Order of places by value: a plain insertion sort, n is a few dozen.
+static void sort_by(size_t n, const double *value, size_t *order)
+{
+    for (size_t i = 0; i < n; i++) {
+        size_t k = i;
+        for (; k > 0 && value[order[k - 1]] > value[i]; k--)
+            order[k] = order[k - 1];
+        order[k] = i;
+    }
+}
+
+bool canvas_spread(size_t n, double *at, double pitch, double low, double high)
+{
+    if (n == 0) return true;
+    if (pitch * (double)(n - 1) > high - low) return false;
+    size_t *order = malloc(n * sizeof *order);
+    if (!order) return false;
+    sort_by(n, at, order);
+    // Upward pass keeps the pitch and the low end, downward pass the high end; then groups that
+    // touch are centred on where they wanted to be, as far as their neighbours allow.
+    double *wish = malloc(n * sizeof *wish);
+    if (!wish) {
+        free(order);
+        return false;
+    }
+    for (size_t i = 0; i < n; i++)
+        wish[i] = at[order[i]];
+    for (size_t first = 0; first < n;) {
+        // grow a group from `first` until the next wish lies clear of it
+        size_t last = first;
+        double sum = wish[first];
+        for (;;) {
+            double centre = sum / (double)(last - first + 1);
+            double end = centre + pitch * (double)(last - first) / 2;
+            if (last + 1 == n || wish[last + 1] - end >= pitch) break;
+            sum += wish[++last];
+        }
+        double start = sum / (double)(last - first + 1) - pitch * (double)(last - first) / 2;
+        for (size_t i = first; i <= last; i++)
+            at[order[i]] = start + pitch * (double)(i - first);
+        first = last + 1;
+    }
+    double edge = low;
+    for (size_t i = 0; i < n; i++) {
+        if (at[order[i]] < edge) at[order[i]] = edge;
+        edge = at[order[i]] + pitch;
+    }
+    edge = high;
+    for (size_t i = n; i-- > 0;) {
+        if (at[order[i]] > edge) at[order[i]] = edge;
+        edge = at[order[i]] - pitch;
+    }
+    free(wish);
+    free(order);
+    return true;
+}
+
+size_t canvas_thin(size_t n, const double *at, const double *half, const double *weight, bool *keep)
+{
+    size_t kept = 0;
+    bool *seen = calloc(n ? n : 1, sizeof *seen);
+    for (size_t i = 0; i < n; i++)
+        keep[i] = false;
+    for (size_t round = 0; seen && round < n; round++) {
+        size_t best = n;
+        for (size_t i = 0; i < n; i++)
+            if (!seen[i] && (best == n || weight[i] > weight[best])) best = i;
+        if (best == n) break;
+        seen[best] = true;
+        bool fits = true;
+        for (size_t i = 0; i < n && fits; i++)
+            if (keep[i]) {
+                double gap = at[i] > at[best] ? at[i] - at[best] : at[best] - at[i];
+                fits = gap >= half[i] + half[best];
+            }
+        keep[best] = fits;
+        kept += fits;
+    }
+    free(seen);
+    return kept;
+}

@@ -1,0 +1,15 @@
+#include "tacet/show.h"
+#include <errno.h>
+#include <string.h>
+
+tacet_status tacet_stream_check(FILE *to, const char *what, tacet_error *e)
+{
+    errno = 0;
+    int flushed = fflush(to);
+    int reason = errno;
+    if (flushed == 0 && !ferror(to)) return TACET_OK;
+    tacet_status s = tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot write %s: %s", what,
+                                reason ? strerror(reason) : "an earlier write failed");
+    errno = reason;
+    return s;
+}
