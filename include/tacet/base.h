@@ -37,16 +37,24 @@ const char *tacet_status_text(tacet_status status); // "ok", "bad input", ..; ne
 tacet_status tacet_fail(tacet_error *e, tacet_status status, const char *format, ...)
     TACET_PRINTF(3, 4);
 
-// ---- arena: one study or model = one arena = one free
-// ----------------------------------------------
+// snprintf whose numbers have a decimal point whatever the process's locale; returns `out`. All
+// texts of this library that take a format go through it.
+char *tacet_text(char *out, size_t bytes, const char *format, ...) TACET_PRINTF(3, 4);
+
+// ---- arena: one study or model = one arena = one free -----------------------------------------
 typedef struct tacet_arena tacet_arena;
 tacet_arena *tacet_arena_create(void);                 // NULL: no memory
 void tacet_arena_destroy(tacet_arena *a);              // accepts NULL
 void *tacet_arena_alloc(tacet_arena *a, size_t bytes); // zeroed, 64-byte aligned; NULL: no memory
 char *tacet_arena_text(tacet_arena *a, const char *text); // a copy
 
-// ---- problems: everything that is wrong with an input, gathered
-// -------------------------------------
+// ---- files ------------------------------------------------------------------------------------
+// A whole file of at most `most` bytes ("-": standard input) into the arena, a zero byte after it.
+// TACET_OUTSIDE_WORLD with a text that names the file and the reason; e has no place.
+TACET_USE tacet_status tacet_file_read(const char *path, size_t most, tacet_arena *a, char **out,
+                                       size_t *n, tacet_error *e);
+
+// ---- problems: everything that is wrong with an input, gathered -------------------------------
 typedef struct {
     bool warning; // false: an error, the input is refused
     int line, column;
@@ -55,50 +63,52 @@ typedef struct {
 typedef struct tacet_problems tacet_problems;
 tacet_problems *tacet_problems_create(void);
 void tacet_problems_destroy(tacet_problems *p); // accepts NULL
-// Adds one problem; keeps at most 20 errors and 20 warnings and counts the rest.
+// Adds one problem; keeps the first 20 errors and 20 warnings by place and counts the rest.
 void tacet_problems_add(tacet_problems *p, bool warning, const char *file, int line, int column,
                         const char *format, ...) TACET_PRINTF(6, 7);
 size_t tacet_problems_kept(const tacet_problems *p);
-const tacet_problem *tacet_problems_at(const tacet_problems *p, size_t i); // sorted by place
-size_t tacet_problems_errors(const tacet_problems *p);                     // with those not kept
+const tacet_problem *tacet_problems_at(const tacet_problems *p,
+                                       size_t i);      // by file as met, then place
+size_t tacet_problems_errors(const tacet_problems *p); // with those not kept
 size_t tacet_problems_warnings(const tacet_problems *p);
 
-// ---- numbers, independent of the process's locale
-// ---------------------------------------------------- Decimal grammar
-// [+-]digits[.digits][e[+-]digits]; no nan, inf, hex, blanks. False: not a finite number.
+// ---- numbers, independent of the process's locale ---------------------------------------------
+// Decimal grammar [+-]digits[.digits][e[+-]digits], also .digits; no nan, inf, hex, blanks. False:
+// not a finite number, and `out` is left alone.
 TACET_USE bool tacet_number_parse(const char *text, double *out);
 // Shortest of %.15g, %.16g, %.17g that reads back equal; "null" for a non-finite value.
 #define TACET_NUMBER_TEXT 32
 const char *tacet_number_format(double value, char out[TACET_NUMBER_TEXT]);
-// For tables: `digits` significant digits, never exponent form between 1e-3 and 1e7.
+// For tables: `digits` significant digits without trailing zeros, digits before the point always
+// whole; never exponent form between 1e-3 and 1e7. "null" for a non-finite value.
 const char *tacet_number_format_short(double value, int digits, char out[TACET_NUMBER_TEXT]);
 
 // List grammar "a", "a, b, c", "from:to:step", mixed by commas; at most `most` values into the
-// arena.
+// arena. A range ends at the last step that does not pass `to`. e->column: place in the text.
 TACET_USE tacet_status tacet_list_parse(const char *text, size_t most, tacet_arena *a, double **out,
                                         size_t *n, tacet_error *e);
 
-// Name nearest to `word` among n names by edit distance, NULL if none is near enough to be meant.
+// Name nearest to `word` among n names, NULL if none is near enough to be meant: few edits apart,
+// or the same but for a unit ("bore" for "bore_mm"). NULL entries are passed over.
 const char *tacet_near_name(const char *word, const char *const *names, size_t n);
 
-// ---- curves
-// --------------------------------------------------------------------------------------- y over x,
-// x strictly rising, n >= 1; a plain number in the file is a curve of one point (x = 0).
+// ---- curves -----------------------------------------------------------------------------------
+// y over x, x strictly rising, n >= 1; a plain number in the file is a curve of one point (x = 0).
+// x stays in the file's unit (rpm), y is SI.
 typedef struct {
     double *x, *y; // owned by the study's arena
     size_t n;
 } tacet_curve;
-double tacet_curve_at(const tacet_curve *c, double x); // linear; held constant outside
+double tacet_curve_at(const tacet_curve *c, double x); // linear; held constant outside; n 0: NAN
 
-// ---- units
-// ------------------------------------------------------------------------------------------ Factor
-// that turns a number in `unit` ("mm", "kPa", "rpm", "deg", ..) into SI; 0: unknown unit.
+// ---- units ------------------------------------------------------------------------------------
+// Factor that turns a number in `unit` ("mm", "kPa", "rpm", "deg", ..) into SI; NULL or "": 1;
+// 0: unknown unit.
 double tacet_unit_factor(const char *unit);
 
-// ---- field tables
-// ----------------------------------------------------------------------------------- One row per
-// key of a study section; drives reading, units, defaults, ranges, messages, `tacet keys`, man page
-// and README tables. Struct members hold SI; the file holds `unit`.
+// ---- field tables -----------------------------------------------------------------------------
+// One row per key of a study section; drives reading, units, defaults, ranges, messages,
+// `tacet keys`, man page and README tables. Struct members hold SI; the file holds `unit`.
 typedef enum {
     TACET_FIELD_NUMBER, // double
     TACET_FIELD_CURVE,  // tacet_curve; number or [[x, y], ..]; `x_unit` names the abscissa
@@ -146,9 +156,9 @@ typedef struct tacet_reporter {
 void tacet_report(const tacet_reporter *r, bool warning, const char *path, const char *format, ...)
     TACET_PRINTF(4, 5);
 
-// ---- CSV
-// ------------------------------------------------------------------------------------------------
-// Numbers with one header line; '#' comment lines skipped; every row as wide as the header.
+// ---- CSV --------------------------------------------------------------------------------------
+// Numbers between commas under one header line; '#' comment lines and empty lines skipped; every
+// row as wide as the header; at least one row. e has line and column.
 typedef struct {
     size_t rows, columns;
     char **header; // [columns]

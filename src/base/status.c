@@ -1,6 +1,5 @@
 #include "tacet/base.h"
-#include <stdarg.h>
-#include <stdio.h>
+#include "text.h"
 
 const char *tacet_status_text(tacet_status status)
 {
@@ -15,7 +14,7 @@ tacet_status tacet_fail(tacet_error *e, tacet_status status, const char *format,
         va_list args;
         va_start(args, format);
         *e = (tacet_error){.status = status};
-        vsnprintf(e->text, sizeof e->text, format, args);
+        text_format(e->text, sizeof e->text, format, args);
         va_end(args);
     }
     return status;
@@ -26,7 +25,7 @@ void tacet_report(const tacet_reporter *r, bool warning, const char *path, const
     char text[512];
     va_list args;
     va_start(args, format);
-    vsnprintf(text, sizeof text, format, args);
+    text_format(text, sizeof text, format, args);
     va_end(args);
     r->say(r->who, warning, path, text);
 }
