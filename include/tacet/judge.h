@@ -27,17 +27,21 @@ typedef struct {
 } tacet_response;
 
 enum { TACET_TARGET_NONE, TACET_TARGET_NODE, TACET_TARGET_LINK };
+// A quantity's numbers are in its own `unit`, the one in which a study states limits of it (stress
+// and pressure: MPa).
 typedef struct tacet_quantity {
     const char *name, *unit, *doc;
-    int target;  // kind of target after ':'
-    bool scalar; // has no spectrum: `value` gives one number (peak-pressure, irregularity,
-                 // damper-heat)
+    int target;    // kind of target after ':'
+    bool scalar;   // has no spectrum: `value` gives one number (damper-heat, peak-pressure)
+    int statistic; // the only one that a limit may use; -1: any
+    // Lines up to out->n_lines, which is at most r->n_lines; sets out->revolutions.
     tacet_status (*spectrum)(const tacet_response *r, size_t target, tacet_spectrum *out);
     tacet_status (*value)(const tacet_response *r, size_t target, double *out);
 } tacet_quantity;
 // Ends with name == NULL: roll-torque, link-torque, link-stress, node-angle, node-speed,
-// node-acceleration, damper-heat, irregularity, peak-pressure.
+// node-acceleration, irregularity, damper-heat, peak-pressure.
 const tacet_quantity *tacet_quantities(void);
+const tacet_quantity *tacet_quantity_find(const char *name); // without target; NULL: none
 typedef struct {
     const tacet_quantity *what;
     size_t target;
@@ -67,14 +71,14 @@ typedef struct {
 typedef enum {
     TACET_STAT_PP,
     TACET_STAT_HALF_RANGE,
-    TACET_STAT_RMS,
-    TACET_STAT_MEAN,
-    TACET_STAT_MAX
+    TACET_STAT_RMS,  // of the lines, order 0 excluded
+    TACET_STAT_MEAN, // its magnitude: the sign of a torque depends on the sense of its shaft
+    TACET_STAT_MAX   // largest magnitude of the signal, mean included
 } tacet_statistic;
 typedef struct {
     const char *name, *quantity;
-    int statistic;
-    double value; // in the quantity's unit
+    int statistic; // tacet_statistic; -1: the quantity's only one
+    double value;  // in the quantity's unit
 } tacet_limit_def;
 const tacet_section *tacet_band_keys(void);
 const tacet_section *tacet_limit_keys(void);
@@ -105,19 +109,24 @@ typedef struct tacet_band {
 TACET_USE tacet_status tacet_band_create(const tacet_band_def *d, double reserve_db,
                                          const tacet_train *t, tacet_band *out, tacet_error *e);
 
-// Level of a spectrum inside the counted band, edges inclusive, order 0 excluded.
+// Level of a spectrum inside the counted band, edges inclusive, order 0 excluded. Lines past the
+// end of the spectrum are not in it: its owner chooses n_lines so that bands lie inside.
 typedef struct {
-    double nominal;       // rms of the lines
-    double dispersed;     // with both kinds of dispersion; the verdict uses this one
-    bool has_line;        // dispersed >= 1e-9 of the quantity's total rms and a line inside
-    double leading_order; // of the largest line inside (0: none)
-    double leading_peak;  // its amplitude, peak
+    double nominal;   // rms of the lines
+    double dispersed; // with both kinds of dispersion; the verdict uses this one
+    bool has_line;    // dispersed > 0 and >= 1e-9 of the quantity's total rms
+    // Largest line inside, cylinder dispersion included: unequal cylinders alone make the lines
+    // that cancel in equal ones. 0: no line.
+    double leading_order, leading_peak; // amplitude, peak
     size_t leading_line;
 } tacet_band_level;
 // `transfer[i]`: response of the band's quantity to unit torque on the throw of slot i, on the same
 // lines; `fired[i]`: spectrum of slot i's fired torque alone on the same lines; NULL: no cylinder
-// dispersion. cyclic_ms: mean square from cycle-to-cycle variation inside the band
-// (tacet_cyclic_mean_square), or 0.
+// dispersion. A cylinder that differs from the others does so in each of its cycles, so it adds to
+// every line of the repeat where its own fired torque has content (all-fire: the half-order comb):
+//   level^2 = sum |S|^2 / 2 + cylinder_sigma^2 sum_i sum |H_i F_i|^2 / 2 + cyclic_ms,
+// sums over the lines inside the counted band. cyclic_ms: mean square from cycle-to-cycle variation
+// inside the band (tacet_cyclic_mean_square), or 0.
 typedef struct {
     double cylinder_sigma;
     size_t n_slots;
@@ -144,10 +153,15 @@ typedef struct {
     tacet_verdict verdict;
     tacet_why why; // of TACET_NO_VERDICT
 } tacet_band_result;
-// all_fire_level NULL: no reference. A band that needs none (limit_rms alone) does not ask for one.
-// Truth table in tests/judge: outcome x reference x lines.
+// limit = min(limit_rms, max(floor_rms, reference * 10^(over_all_fire_db / 20))), absent terms drop
+// out. all_fire_level NULL or not finite: no reference; a band without over_all_fire_db does not
+// ask for one. Without a reference that is asked for, no line is still clear and a level over
+// limit_rms still over; else there is no verdict. A level that is not finite has failed. Truth
+// table in tests/judge/test_verdicts.c: outcome x reference x lines.
 void tacet_band_judge(const tacet_band *b, const tacet_band_level *level,
                       const double *all_fire_level, tacet_band_result *out);
+// The result of a condition that has no response.
+void tacet_band_no_verdict(tacet_why why, tacet_band_result *out);
 
 // ---- limits
 // ------------------------------------------------------------------------------------------------------
@@ -158,17 +172,18 @@ typedef struct tacet_limit {
     double value;
 } tacet_limit;
 typedef struct {
-    double value, margin_db; // 20 log10(limit / value)
+    double value, margin_db; // 20 log10(limit / value); NAN: value 0, which is clear
     tacet_verdict verdict;   // near inside the reserve
     tacet_why why;
 } tacet_limit_result;
 TACET_USE tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t,
                                           tacet_limit *out, tacet_error *e);
-// spectrum: scratch of r->n_lines lines; transform and buffer for peaks (oversampled >= 6).
+// spectrum: scratch that holds r->n_lines lines; transform and buffer for peaks (oversampled >= 6).
 TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r,
                                          double reserve_db, tacet_spectrum *spectrum,
                                          const tacet_transform *transform, double *buffer,
                                          tacet_limit_result *out);
+void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
 
 // ---- order windows
 // ---------------------------------------------------------------------------------------------

@@ -1,0 +1,66 @@
+// Scalar limits: one number of a condition against one of the study.
+#include "judge/verdict.h"
+#include <math.h>
+
+static const char *const statistic_text[] = {"pp", "half_range", "rms", "mean", "max"};
+#define STATISTICS (int)(sizeof statistic_text / sizeof *statistic_text)
+
+tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t, tacet_limit *out,
+                                tacet_error *e)
+{
+    tacet_quantity_ref of;
+    tacet_status status = tacet_quantity_parse(d->quantity, t, &of, e);
+    if (status != TACET_OK) return status;
+    int only = of.what->statistic, statistic = d->statistic;
+    if (statistic < 0) statistic = only;
+    if (statistic < 0 || statistic >= STATISTICS)
+        return tacet_fail(e, TACET_BAD_INPUT,
+                          "a limit on %s needs a statistic: pp, half_range, rms, mean or max",
+                          of.what->name);
+    if (only >= 0 && statistic != only)
+        return tacet_fail(e, TACET_BAD_INPUT, "the statistic of %s is %s; read %s", of.what->name,
+                          statistic_text[only], statistic_text[statistic]);
+    if (!(d->value > 0 && isfinite(d->value)))
+        return tacet_fail(e, TACET_BAD_INPUT, "a limit is a number above 0; read %g", d->value);
+    *out = (tacet_limit){.name = d->name, .of = of, .statistic = statistic, .value = d->value};
+    return TACET_OK;
+}
+
+static double of_signal(int statistic, const tacet_spectrum *s, const tacet_transform *transform,
+                        double *buffer)
+{
+    if (statistic == TACET_STAT_RMS) return tacet_spectrum_rms(s, 1, s->n_lines);
+    if (statistic == TACET_STAT_MEAN) return fabs(s->mean);
+    tacet_peaks p;
+    tacet_spectrum_peaks(s, transform, buffer, &p);
+    if (statistic == TACET_STAT_MAX) return fmax(fabs(p.max), fabs(p.min));
+    return statistic == TACET_STAT_PP ? p.max - p.min : 0.5 * (p.max - p.min);
+}
+
+tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r, double reserve_db,
+                               tacet_spectrum *spectrum, const tacet_transform *transform,
+                               double *buffer, tacet_limit_result *out)
+{
+    double value;
+    tacet_status status;
+    if (l->of.what->scalar) {
+        status = l->of.what->value(r, l->of.target, &value);
+    } else {
+        status = l->of.what->spectrum(r, l->of.target, spectrum);
+        if (status == TACET_OK) value = of_signal(l->statistic, spectrum, transform, buffer);
+    }
+    if (status != TACET_OK) return status;
+    if (!isfinite(value)) return TACET_NOT_FINITE;
+    *out = (tacet_limit_result){.value = value, .margin_db = NAN, .verdict = TACET_CLEAR};
+    if (value > 0) {
+        out->margin_db = 20 * log10(l->value / value);
+        out->verdict = verdict_of(out->margin_db, reserve_db);
+    }
+    return TACET_OK;
+}
+
+void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out)
+{
+    *out = (tacet_limit_result){
+        .value = NAN, .margin_db = NAN, .verdict = TACET_NO_VERDICT, .why = why};
+}
