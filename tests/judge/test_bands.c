@@ -175,6 +175,22 @@ static void test_level_without_lines_inside(void **state)
     tacet_arena_destroy(b.arena);
 }
 
+// A band from 0 Hz still leaves order 0 out, and has line 1.
+static void test_level_order_zero_is_excluded(void **state)
+{
+    (void)state;
+    bench b = bench_of(7, 20);
+    tacet_band band = band_of(mount);
+    band.counted_low_hz = 0;
+    b.s.mean = 1e6;
+    b.s.line[0] = 1e6;
+    b.s.line[1] = 2;
+    tacet_band_level_of(&band, &b.s, 600 * RPM, NULL, &b.level);
+    assert_near(b.level.nominal, sqrt(2), 0, 1e-15);
+    assert_int_equal(b.level.leading_line, 1);
+    tacet_arena_destroy(b.arena);
+}
+
 // What is left of lines that cancel is no line: 1e-9 of the total rms.
 static void test_level_no_line_rule(void **state)
 {
@@ -299,6 +315,28 @@ static double level_squared(cylinders *c, const double *e)
     return c->b.level.nominal * c->b.level.nominal;
 }
 
+// The leading line is the largest with what unequal cylinders add: by hand line 5 has 9 + 0, line 6
+// 8 + 5 (all times their units), lines of 2.5 Hz.
+static void test_leading_line_counts_unequal_cylinders(void **state)
+{
+    (void)state;
+    cylinders c;
+    cylinders_init(&c, 12);
+    tacet_spectrum_zero(&c.b.s);
+    c.b.s.line[5] = 3;
+    c.b.s.line[6] = sqrt(8);
+    c.d.cylinder_sigma = 1;
+    for (size_t i = 0; i < SLOTS; i++)
+        tacet_spectrum_zero(&c.fired[i]);
+    c.transfer[2].line[6] = I;
+    c.fired[2].line[6] = -sqrt(5);
+    judge_level(&c.b, 300, &c.d);
+    assert_int_equal(c.b.level.leading_line, 6);
+    assert_near(c.b.level.leading_peak, sqrt(13), 0, 1e-14);
+    assert_near(c.b.level.dispersed, sqrt(22 / 2.0), 0, 1e-14);
+    tacet_arena_destroy(c.b.arena);
+}
+
 // Seeded Monte Carlo: the mean over engines of level^2, with strengths 1 + 0.03 xi, is the
 // formula's. 10,000 engines and their mirror images (strengths 1 - 0.03 xi), so that what is linear
 // in xi falls out of the scatter; that is measured and below 2 % of the added part.
@@ -344,6 +382,10 @@ static void test_dispersion_of_short_spectra(void **state)
     judge_level(&c.b, 300, &c.d);
     double expected = 0.03 * 2 * sqrt((100.0 / 5 * 100 / 5 + 100.0 / 6 * 100 / 6) / 2);
     assert_near(c.b.level.dispersed, expected, 0, 1e-12);
+    for (size_t i = 0; i < SLOTS; i++)
+        c.fired[i].n_lines = 5;
+    judge_level(&c.b, 300, &c.d);
+    assert_near(c.b.level.dispersed, 0.03 * 2 * (100.0 / 5) / sqrt(2), 0, 1e-12);
     tacet_arena_destroy(c.b.arena);
 }
 
@@ -466,9 +508,11 @@ int main(void)
         cmocka_unit_test(test_level_sums_the_lines_inside),
         cmocka_unit_test(test_level_edges_are_inclusive),
         cmocka_unit_test(test_level_without_lines_inside),
+        cmocka_unit_test(test_level_order_zero_is_excluded),
         cmocka_unit_test(test_level_no_line_rule),
         cmocka_unit_test(test_level_not_finite_is_told),
         cmocka_unit_test(test_false_zero_is_filled),
+        cmocka_unit_test(test_leading_line_counts_unequal_cylinders),
         cmocka_unit_test(test_cylinder_dispersion_against_random_engines),
         cmocka_unit_test(test_dispersion_of_short_spectra),
         cmocka_unit_test(test_cyclic_mean_square_by_hand),
