@@ -18,27 +18,30 @@ typedef struct {
         *line; // [n_lines + 1]; line[0] is unused and zero, so that line[h] is harmonic h
 } tacet_spectrum;
 
-// Points s at arena memory for n_lines lines, all zero. Never inside a solve.
+// Points s at arena memory for n_lines lines, all zero, of one revolution. Never inside a solve.
 TACET_USE tacet_status tacet_spectrum_init(tacet_spectrum *s, size_t n_lines, tacet_arena *a);
 void tacet_spectrum_zero(tacet_spectrum *s);
-void tacet_spectrum_add(tacet_spectrum *s, double complex factor,
-                        const tacet_spectrum *x); // mean: creal
+// s += factor x on the lines that both have, which are of equal revolutions; the mean takes
+// creal(factor).
+void tacet_spectrum_add(tacet_spectrum *s, double complex factor, const tacet_spectrum *x);
 double tacet_spectrum_rms(const tacet_spectrum *s, size_t first,
                           size_t last);                      // lines first..last, 0 excluded
 double tacet_order_hz(double order, double speed_rad_per_s); // f = order * N / 60
 double tacet_order_speed(double order, double hz);           // rad/s at which the order lies at hz
 
-// Transforms of one length; plans are made here, once (not thread-safe to create; execution is).
+// Transforms of one length; plans are made here, once. Any thread may create, destroy and use one,
+// many may use the same one on buffers of their own.
 typedef struct tacet_transform tacet_transform;
 TACET_USE tacet_status tacet_transform_create(size_t n_samples,
-                                              tacet_transform **out); // even, >= 4
+                                              tacet_transform **out); // even, 4 .. 2^28
 void tacet_transform_destroy(tacet_transform *t);
 size_t tacet_transform_samples(const tacet_transform *t);
 // Buffers from these two functions have the alignment the plans need.
 double *tacet_transform_buffer(const tacet_transform *t); // n_samples + 2 doubles; NULL: no memory
 void tacet_transform_release(double *buffer);
 // samples[n] (equally spaced over the repeat, first at angle 0) -> s (lines up to s->n_lines <
-// n/2). `samples` is overwritten.
+// n/2). `samples` is overwritten. n_lines >= n/2 gives NAN, here and below: no length could tell
+// such lines apart.
 void tacet_transform_lines(const tacet_transform *t, double *samples, tacet_spectrum *s);
 // s -> samples[n] in `samples`.
 void tacet_transform_samples_of(const tacet_transform *t, const tacet_spectrum *s, double *samples);
@@ -47,7 +50,8 @@ size_t tacet_transform_length(size_t n_lines, unsigned oversample);
 
 // Largest and smallest value of the signal, found on samples of an oversampled transform (>= 6) and
 // refined on the exact lines by Newton's method at every candidate; relative error < 1e-5 of (max -
-// min). angle of each in rad of crank rotation from the start of the repeat.
+// min). A line that is not finite gives NAN. Angle of each in rad of crank rotation from the start
+// of the repeat.
 typedef struct {
     double max, min, max_angle_rad, min_angle_rad;
 } tacet_peaks;
