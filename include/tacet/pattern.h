@@ -75,6 +75,13 @@ TACET_USE tacet_status tacet_book_read_text(const char *text, size_t bytes, cons
                                             tacet_arena *a, tacet_problems *problems,
                                             tacet_words *out);
 
+// What may stand where a pattern is asked for: a word "x.x.", a book "forest.words" (all its words)
+// or a word of a book "forest.words:front three". Books are relative to `folder` (NULL: the working
+// folder). Problems are said of `file`, those inside a book with their own places; status as of
+// tacet_book_read.
+TACET_USE tacet_status tacet_words_find(const char *text, const char *folder, const char *file,
+                                        tacet_arena *a, tacet_problems *problems, tacet_words *out);
+
 // ---- roll -------------------------------------------------------------------------------------
 // What one cylinder does in one working cycle. skips: for a fire, cycles skipped in a row before
 // it; for a skip, its own position in the run (1 = first), TACET_SKIPS_FOREVER for a cylinder that

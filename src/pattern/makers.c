@@ -15,7 +15,7 @@ const tacet_maker *const *tacet_makers(void)
         &tacet_maker_sigma_delta_2,
         &tacet_maker_cylinders,
         &tacet_maker_necklaces,
-
+        &tacet_maker_book,
         NULL,
     };
     return makers;

@@ -1,6 +1,7 @@
 // The roll: repeat, skips of each cylinder, runs, what an engine allows.
 #include "near.h"
 #include "tacet/pattern.h"
+#include <math.h>
 #include <string.h>
 
 static tacet_roll *roll(const char *text, unsigned cylinders, unsigned strokes)
@@ -34,6 +35,44 @@ static void test_repeat_k10(void **state)
         tacet_roll *r = roll(cases[i].word, cases[i].cylinders, 4);
         assert_near(1. / r->revolutions, cases[i].order, 1e-12, 0);
         assert_int_equal(r->opportunities, r->cycles * r->cylinders);
+        tacet_roll_destroy(r);
+    }
+}
+
+// Lowest order in the fires of a roll, all cylinders alike: lines of the opportunities of a repeat.
+static double lowest_order(const tacet_roll *r)
+{
+    for (unsigned h = 1; h <= r->opportunities / 2; h++) {
+        double re = 0, im = 0;
+        for (unsigned o = 0; o < r->opportunities; o++) {
+            tacet_cycle c = tacet_roll_cycle(r, o % r->cylinders, o / r->cylinders);
+            double angle = 8 * atan(1) * h * o / r->opportunities;
+            re += c.tenths * cos(angle);
+            im -= c.tenths * sin(angle);
+        }
+        if (hypot(re, im) > 1e-9) return (double)h / r->revolutions;
+    }
+    return 0;
+}
+
+// K10: with cylinders all alike the fundamental order of a primitive pattern is n/(2L) of a
+// four-stroke: n=4: L=2 1.0, 3 0.66667, 5 0.4; n=6: L=4 0.75; n=8: L=3 1.33333, L=5 0.8 (closed
+// form). A two-stroke has twice the order.
+static void test_fundamental_k10(void **state)
+{
+    (void)state;
+    static const struct {
+        unsigned cylinders;
+        const char *word;
+        double order;
+    } cases[] = {{4, "x.", 1},       {4, "xx.", 2. / 3},    {4, "x.xx.", .4}, {6, "xxx.", .75},
+                 {8, "x..", 4. / 3}, {8, "xx.xx.xx..", .4}, {8, "x.xx.", .8}};
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        tacet_roll *r = roll(cases[i].word, cases[i].cylinders, 4);
+        assert_near(lowest_order(r), cases[i].order, 1e-12, 0);
+        tacet_roll_destroy(r);
+        r = roll(cases[i].word, cases[i].cylinders, 2);
+        assert_near(lowest_order(r), 2 * cases[i].order, 1e-12, 0);
         tacet_roll_destroy(r);
     }
 }
@@ -162,10 +201,15 @@ static void test_roll_allowed(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(test_repeat_k10),     cmocka_unit_test(test_roll_by_hand),
-        cmocka_unit_test(test_roll_fixed_set), cmocka_unit_test(test_roll_tenths_and_two_strokes),
-        cmocka_unit_test(test_roll_longest),   cmocka_unit_test(test_roll_nothing_fires),
-        cmocka_unit_test(test_roll_refused),   cmocka_unit_test(test_roll_allowed),
+        cmocka_unit_test(test_repeat_k10),
+        cmocka_unit_test(test_fundamental_k10),
+        cmocka_unit_test(test_roll_by_hand),
+        cmocka_unit_test(test_roll_fixed_set),
+        cmocka_unit_test(test_roll_tenths_and_two_strokes),
+        cmocka_unit_test(test_roll_longest),
+        cmocka_unit_test(test_roll_nothing_fires),
+        cmocka_unit_test(test_roll_refused),
+        cmocka_unit_test(test_roll_allowed),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
