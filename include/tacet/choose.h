@@ -59,8 +59,8 @@ typedef struct {
 // What a candidate comes to. Counts are of grid speeds.
 typedef struct {
     size_t candidate;
-    bool recommended;  // best at one grid speed or more
-    char why_not[160]; // when not
+    bool recommended;    // best at one grid speed or more
+    const char *why_not; // "" when recommended
     size_t n_best;
     size_t n_clear, n_near, n_over, n_none, n_unreachable; // n_none: failed, or no reference
     double clear_rad_per_s; // speed span: sum of the steps between neighbouring clear cells

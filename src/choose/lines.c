@@ -1,0 +1,157 @@
+// Where a level can jump or peak between grid speeds: a significant line enters or leaves a counted
+// band, or meets a mode.
+#include "internal.h"
+#include "rules.h"
+#include <math.h>
+
+tacet_status line_marks_init(line_marks *k, const tacet_model *m, const tacet_roll *r,
+                             tacet_arena *a)
+{
+    size_t n_lines = tacet_model_lines(m, r->revolutions);
+    size_t n_bands = tacet_model_bands(m), n_limits = tacet_model_limits(m);
+    *k = (line_marks){.revolutions = r->revolutions, .n_lines = n_lines};
+    k->of_band = tacet_arena_alloc(a, n_bands * (n_lines + 1) * sizeof *k->of_band);
+    k->of_limit = tacet_arena_alloc(a, n_limits * (n_lines + 1) * sizeof *k->of_limit);
+    if (!k->of_band || !k->of_limit) return TACET_NO_MEMORY;
+    // Unequal cylinders give lines at every multiple of a working cycle's order, whatever the
+    // pattern; their share of a level is in no spectrum.
+    if (!(tacet_model_study(m)->engine.cylinder_dispersion > 0)) return TACET_OK;
+    for (size_t b = 0; b < n_bands; b++)
+        for (size_t h = r->cycles; h <= n_lines; h += r->cycles)
+            k->of_band[b * (n_lines + 1) + h] = true;
+    return TACET_OK;
+}
+
+void mark_lines(const tacet_spectrum *s, double least_peak, bool *mark)
+{
+    for (size_t h = 1; h <= s->n_lines; h++)
+        if (cabs(s->line[h]) >= least_peak) mark[h] = true;
+}
+
+static double largest_line(const tacet_spectrum *s)
+{
+    double largest = 0;
+    for (size_t h = 1; h <= s->n_lines; h++)
+        largest = fmax(largest, cabs(s->line[h]));
+    return largest;
+}
+
+static tacet_status take_band(line_marks *k, const tacet_model *m, size_t b,
+                              const tacet_band_result *result, tacet_workspace *w)
+{
+    const tacet_spectrum *s;
+    tacet_status status = tacet_workspace_quantity(w, tacet_model_band(m, b)->of, &s, NULL);
+    if (status != TACET_OK || s->n_lines > k->n_lines) return status;
+    double least = LINE_SHARE_OF_LIMIT * sqrt(2) * result->limit;
+    if (isnan(least)) least = LINE_SHARE_OF_LARGEST * largest_line(s);
+    if (least > 0) mark_lines(s, least, k->of_band + b * (k->n_lines + 1));
+    return TACET_OK;
+}
+
+static tacet_status take_limit(line_marks *k, const tacet_model *m, size_t i, tacet_workspace *w)
+{
+    const tacet_limit *limit = tacet_model_limit(m, i);
+    const tacet_spectrum *s;
+    if (limit->of.what->scalar || limit->statistic == TACET_STAT_MEAN) return TACET_OK;
+    tacet_status status = tacet_workspace_quantity(w, limit->of, &s, NULL);
+    if (status != TACET_OK || s->n_lines > k->n_lines) return status;
+    mark_lines(s, LINE_SHARE_OF_SCALAR * limit->value, k->of_limit + i * (k->n_lines + 1));
+    return TACET_OK;
+}
+
+tacet_status line_marks_take(line_marks *k, const tacet_model *m, const tacet_row *row,
+                             tacet_workspace *w)
+{
+    tacet_status status = TACET_OK;
+    if (row->outcome != TACET_SOLVED) return status;
+    for (size_t b = 0; status == TACET_OK && b < row->n_bands; b++)
+        status = take_band(k, m, b, &row->bands[b], w);
+    for (size_t i = 0; status == TACET_OK && i < row->n_limits; i++)
+        status = take_limit(k, m, i, w);
+    return status;
+}
+
+static tacet_status add_inside(speeds *out, double speed, const double range[2], tacet_arena *a)
+{
+    return speed > range[0] && speed < range[1] ? speeds_add(out, speed, a) : TACET_OK;
+}
+
+tacet_status lines_enter_and_leave(const tacet_band *b, unsigned revolutions, size_t n_lines,
+                                   const bool *mark, const double range[2], speeds *out,
+                                   tacet_arena *a)
+{
+    for (size_t h = 1; h <= n_lines; h++) {
+        if (!mark[h]) continue;
+        double low, high;
+        tacet_order_window(b, (double)h / revolutions, true, &low, &high);
+        tacet_status status = add_inside(out, low, range, a);
+        if (status == TACET_OK) status = add_inside(out, high, range, a);
+        if (status != TACET_OK) return status;
+    }
+    return TACET_OK;
+}
+
+tacet_status lines_cross(const double *hz, size_t n_hz, double low_hz, double high_hz,
+                         unsigned revolutions, size_t n_lines, const bool *mark,
+                         const double range[2], speeds *out, tacet_arena *a)
+{
+    for (size_t i = 0; i < n_hz; i++) {
+        if (hz[i] < low_hz || hz[i] > high_hz) continue;
+        for (size_t h = 1; h <= n_lines; h++) {
+            if (!mark[h]) continue;
+            double speed = tacet_order_speed((double)h / revolutions, hz[i]);
+            tacet_status status = add_inside(out, speed, range, a);
+            if (status != TACET_OK) return status;
+        }
+    }
+    return TACET_OK;
+}
+
+// Both sides of each break.
+static tacet_status step_aside(const speeds *breaks, const double range[2], speeds *out,
+                               tacet_arena *a)
+{
+    const double aside = STEP_ASIDE_RPM * RAD_PER_S_OF_RPM;
+    tacet_status status = TACET_OK;
+    for (size_t i = 0; status == TACET_OK && i < breaks->n; i++) {
+        status = add_inside(out, breaks->at[i] - aside, range, a);
+        if (status == TACET_OK) status = add_inside(out, breaks->at[i] + aside, range, a);
+    }
+    return status;
+}
+
+static void drop_grid(speeds *s, const double *grid, size_t n_grid)
+{
+    size_t n = 0, g = 0;
+    for (size_t i = 0; i < s->n; i++) {
+        while (g < n_grid && grid[g] < s->at[i])
+            g++;
+        if (g == n_grid || grid[g] != s->at[i]) s->at[n++] = s->at[i];
+    }
+    s->n = n;
+}
+
+tacet_status extra_speeds(const line_marks *k, const tacet_model *m, const double *grid,
+                          size_t n_grid, speeds *out, tacet_arena *a)
+{
+    const double range[2] = {grid[0], grid[n_grid - 1]};
+    const double *hz = tacet_model_mode_hz(m) + 1; // the rigid mode is no resonance
+    size_t n_hz = tacet_train_nodes(tacet_model_train(m)) - 1, stride = k->n_lines + 1;
+    tacet_status status = TACET_OK;
+    for (size_t b = 0; status == TACET_OK && b < tacet_model_bands(m); b++) {
+        const tacet_band *band = tacet_model_band(m, b);
+        const bool *mark = k->of_band + b * stride;
+        speeds breaks = {0};
+        status = lines_enter_and_leave(band, k->revolutions, k->n_lines, mark, range, &breaks, a);
+        if (status == TACET_OK) status = step_aside(&breaks, range, out, a);
+        if (status == TACET_OK)
+            status = lines_cross(hz, n_hz, band->counted_low_hz, band->counted_high_hz,
+                                 k->revolutions, k->n_lines, mark, range, out, a);
+    }
+    for (size_t i = 0; status == TACET_OK && i < tacet_model_limits(m); i++)
+        status = lines_cross(hz, n_hz, 0, INFINITY, k->revolutions, k->n_lines,
+                             k->of_limit + i * stride, range, out, a);
+    speeds_sort(out);
+    drop_grid(out, grid, n_grid);
+    return status;
+}

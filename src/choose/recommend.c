@@ -1,0 +1,163 @@
+// Which candidate is recommended at each speed, and why the others are not.
+//
+// A candidate that is clear over too short a span is not worth calibrating. At each speed the clear
+// ones that are left are gone through from the thirstiest: one is kept when it saves enough more
+// than the last that was kept, and the last kept is the best. So a chain of small savings is not
+// thrown away as a whole. Firing on all cylinders needs no reason.
+#include "internal.h"
+#include "rules.h"
+#include <math.h>
+#include <stdarg.h>
+#include <stdio.h>
+
+// What became of a candidate over the speeds.
+typedef struct {
+    bool too_short;
+    size_t n_kept;
+    double
+        best_gain; // largest saving over the last kept at speeds where it was not kept; NAN: none
+    size_t gain_over;   // and over which candidate
+    size_t bettered_by; // best candidate at a speed where this one was kept; SIZE_MAX: none
+} fate;
+
+static bool is_all_fire(const tacet_candidate *c)
+{
+    return c->fires == c->length;
+}
+
+// Fuel that `a` saves against `b`, as a share of all-fire's (of b's where that is not known).
+static double gain(const tacet_cell *a, const tacet_cell *b)
+{
+    double all_fire = b->row.duty.fuel_kg_per_s / b->row.fuel_to_all_fire;
+    if (!isfinite(all_fire) || all_fire <= 0) all_fire = b->row.duty.fuel_kg_per_s;
+    return (b->row.duty.fuel_kg_per_s - a->row.duty.fuel_kg_per_s) / all_fire;
+}
+
+static void note_small_gain(fate *f, double saved, size_t over)
+{
+    if (!isnan(f->best_gain) && saved <= f->best_gain) return;
+    f->best_gain = saved;
+    f->gain_over = over;
+}
+
+static void recommend_at(tacet_screen *s, tacet_rank *rank, const note_rules *rules, fate *fates)
+{
+    size_t kept = SIZE_MAX;
+    for (size_t i = rank->n_ranked; i-- > 0;) { // the clear ones lead, least fuel first
+        const tacet_cell *cell = &s->cells[rank->ranked[i]];
+        fate *f = &fates[cell->candidate];
+        if (!cell_is_clear(cell) || f->too_short) continue;
+        if (kept != SIZE_MAX) {
+            double saved = gain(cell, &s->cells[kept]);
+            if (saved < rules->least_saving) {
+                note_small_gain(f, saved, s->cells[kept].candidate);
+                continue;
+            }
+        }
+        kept = rank->ranked[i];
+        f->n_kept++;
+    }
+    rank->best = kept;
+    if (kept == SIZE_MAX) return;
+    s->notes[s->cells[kept].candidate].n_best++;
+    for (size_t i = 0; i < rank->n_ranked; i++) {
+        const tacet_cell *cell = &s->cells[rank->ranked[i]];
+        if (cell_is_clear(cell) && rank->ranked[i] != kept)
+            fates[cell->candidate].bettered_by = s->cells[kept].candidate;
+    }
+}
+
+// Formatted text in the arena, cut to what fits, never inside a letter.
+static const char *words(tacet_arena *a, const char *format, ...) TACET_PRINTF(2, 3);
+static const char *words(tacet_arena *a, const char *format, ...)
+{
+    char text[512];
+    va_list args;
+    va_start(args, format);
+    int n = vsnprintf(text, sizeof text, format, args);
+    va_end(args);
+    if (n >= (int)sizeof text) {
+        size_t end = sizeof text - 1;
+        while (end > 0 && ((unsigned char)text[end - 1] & 0xc0) == 0x80)
+            end--;
+        if (end > 0 && (unsigned char)text[end - 1] >= 0xc0) end--;
+        text[end] = '\0';
+    }
+    return tacet_arena_text(a, text);
+}
+
+static double rpm(double rad_per_s)
+{
+    return rad_per_s / RAD_PER_S_OF_RPM;
+}
+
+// The solved grid cell with the largest margin; NULL: none has one.
+static const tacet_cell *least_bad(const tacet_screen *s, const tacet_candidate *c)
+{
+    const tacet_cell *best = NULL;
+    for (size_t i = 0; i < s->n_speeds; i++) {
+        const tacet_cell *cell = &s->cells[c->first_cell + i];
+        if (cell->row.outcome != TACET_SOLVED || isnan(cell->row.worst_margin_db)) continue;
+        if (!best || cell->row.worst_margin_db > best->row.worst_margin_db) best = cell;
+    }
+    return best;
+}
+
+static const char *why_never_clear(const tacet_screen *s, const tacet_candidate *c,
+                                   const tacet_candidate_note *note, const note_rules *rules)
+{
+    if (note->n_unreachable == s->n_speeds)
+        return words(s->arena, "cannot carry the torque at any screened speed");
+    const tacet_cell *cell = least_bad(s, c);
+    if (!cell) return words(s->arena, "no verdict at any screened speed");
+    int band = cell->row.limiting_band, limit = cell->row.limiting_limit;
+    const char *limiting = band >= 0    ? rules->band_name[band]
+                           : limit >= 0 ? rules->limit_name[limit]
+                                        : "no band";
+    return words(
+        s->arena, "clear at no screened speed: at best %.1f dB at %.0f rpm (%s); %g dB are asked",
+        cell->row.worst_margin_db, rpm(cell->row.speed_rad_per_s), limiting, rules->reserve_db);
+}
+
+static const char *why_not(const tacet_screen *s, const tacet_candidate *c,
+                           const tacet_candidate_note *note, const note_rules *rules, const fate *f)
+{
+    if (c->refused) return c->refused;
+    if (note->n_clear == 0) return why_never_clear(s, c, note, rules);
+    if (f->too_short)
+        return words(s->arena, "clear over %.0f rpm only; at least %.0f are asked",
+                     rpm(note->clear_rad_per_s), rpm(rules->least_clear_rad_per_s));
+    if (f->n_kept > 0)
+        return words(s->arena, "wherever it is clear, another saves more; %s for one",
+                     s->candidates[f->bettered_by].name);
+    if (f->best_gain <= 0)
+        return words(s->arena, "saves nothing against %s, which is clear as well",
+                     s->candidates[f->gain_over].name);
+    return words(s->arena,
+                 "saves at most %.1f %% more than %s, the next clear one; %g %% are asked",
+                 100 * f->best_gain, s->candidates[f->gain_over].name, 100 * rules->least_saving);
+}
+
+tacet_status recommend(tacet_screen *s, const note_rules *rules, tacet_arena *scratch)
+{
+    fate *fates = tacet_arena_alloc(scratch, s->n_candidates * sizeof *fates);
+    if (!fates) return TACET_NO_MEMORY;
+    double screened = s->speeds_rad_per_s[s->n_speeds - 1] - s->speeds_rad_per_s[0];
+    for (size_t c = 0; c < s->n_candidates; c++) {
+        fates[c] = (fate){.best_gain = NAN, .bettered_by = SIZE_MAX};
+        // a screen narrower than the span that is asked cannot ask it
+        fates[c].too_short = !is_all_fire(&s->candidates[c]) &&
+                             screened >= rules->least_clear_rad_per_s &&
+                             s->notes[c].clear_rad_per_s < rules->least_clear_rad_per_s;
+    }
+    for (size_t i = 0; i < s->n_ranks; i++)
+        recommend_at(s, &s->ranks[i], rules, fates);
+    for (size_t c = 0; c < s->n_candidates; c++) {
+        tacet_candidate_note *note = &s->notes[c];
+        note->recommended = note->n_best > 0;
+        if (note->recommended) continue;
+        note->why_not = why_not(s, &s->candidates[c], note, rules, &fates[c]);
+        if (!note->why_not) return TACET_NO_MEMORY;
+    }
+    return TACET_OK;
+}

@@ -1,0 +1,36 @@
+// Every number that decides where a screen looks, in one place.
+#ifndef CHOOSE_RULES_H
+#define CHOOSE_RULES_H
+
+#define RAD_PER_S_OF_RPM (3.14159265358979323846 / 30)
+
+// A line is significant for a band when, at some grid speed and placement, its peak is at least
+// this share of the limit's peak (sqrt 2 times the rms limit). A line below it moves a level at the
+// limit by less than 0.004 dB; halfway between grid speeds 100 rpm apart, at 1500 rpm, it cannot
+// hide a resonance over the limit whose damping ratio is above 0.001.
+#define LINE_SHARE_OF_LIMIT 0.03
+// The same where a band has no limit to compare with: share of the largest line of its quantity.
+#define LINE_SHARE_OF_LARGEST 0.1
+// The same for a scalar limit: share of its value.
+#define LINE_SHARE_OF_SCALAR 0.1
+
+// Speeds just before and just after a line enters or leaves a counted band, rpm: far above
+// rounding, far below what an engine can hold.
+#define STEP_ASIDE_RPM 0.05
+
+// Widest bracket of a no-go edge, rpm; the result is promised to 0.5.
+#define EDGE_RPM 0.1
+// Ranges closer than this are one, rpm.
+#define GAP_RPM 0.5
+
+// Where a level is over its limit, or nearer to it than this, dB, speeds are added until their step
+// is at most this share of the speed. Resonances narrower than that are met by the speeds at which
+// lines cross modes.
+#define NEAR_LIMIT_DB 3.0
+#define STEP_SHARE    0.03
+// A largest (or smallest) margin among the speeds met that misses the limit by less than this, dB,
+// is followed to its true value by golden section, until the bracket is this narrow, rpm.
+#define TURN_DB  1.0
+#define TURN_RPM 0.5
+
+#endif
