@@ -1,6 +1,5 @@
 // Candidates: what a study asks to be screened, and what the engine may not run.
 #include "internal.h"
-#include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
 
@@ -46,10 +45,10 @@ static tacet_status refuse(builder *b, tacet_candidate *c, const tacet_error *wh
 {
     char text[sizeof why->text + 40];
     if (why->column > 0)
-        snprintf(text, sizeof text, "%s (cylinder %u)", why->text,
-                 tacet_engine_number(b->engine, (unsigned)why->column - 1));
+        tacet_text(text, sizeof text, "%s (cylinder %u)", why->text,
+                   tacet_engine_number(b->engine, (unsigned)why->column - 1));
     else
-        snprintf(text, sizeof text, "%s", why->text);
+        tacet_text(text, sizeof text, "%s", why->text);
     c->refused = tacet_arena_text(b->arena, text);
     return c->refused ? TACET_OK : no_memory(b->e);
 }
@@ -104,9 +103,9 @@ static tacet_status add_density(builder *b, unsigned fires, unsigned length)
 {
     char text[32];
     if (fires == length)
-        snprintf(text, sizeof text, "1");
+        tacet_text(text, sizeof text, "1");
     else
-        snprintf(text, sizeof text, "%u/%u", fires, length);
+        tacet_text(text, sizeof text, "%u/%u", fires, length);
     char *name = tacet_arena_text(b->arena, text);
     if (!name) return no_memory(b->e);
     tacet_maker_def d = tacet_maker_default();

@@ -7,8 +7,9 @@
 #include "internal.h"
 #include "rules.h"
 #include <math.h>
-#include <stdarg.h>
-#include <stdio.h>
+#include <string.h>
+
+#define TEXT_BYTES 512
 
 // What became of a candidate over the speeds.
 typedef struct {
@@ -67,21 +68,15 @@ static void recommend_at(tacet_screen *s, tacet_rank *rank, const note_rules *ru
     }
 }
 
-// Formatted text in the arena, cut to what fits, never inside a letter.
-static const char *words(tacet_arena *a, const char *format, ...) TACET_PRINTF(2, 3);
-static const char *words(tacet_arena *a, const char *format, ...)
+// A copy in the arena; what was cut off ends with a whole letter.
+static const char *kept(tacet_arena *a, char text[TEXT_BYTES])
 {
-    char text[512];
-    va_list args;
-    va_start(args, format);
-    int n = vsnprintf(text, sizeof text, format, args);
-    va_end(args);
-    if (n >= (int)sizeof text) {
-        size_t end = sizeof text - 1;
-        while (end > 0 && ((unsigned char)text[end - 1] & 0xc0) == 0x80)
-            end--;
-        if (end > 0 && (unsigned char)text[end - 1] >= 0xc0) end--;
-        text[end] = '\0';
+    size_t n = strlen(text);
+    if (n + 1 == TEXT_BYTES) {
+        while (n > 0 && ((unsigned char)text[n - 1] & 0xc0) == 0x80)
+            n--;
+        if (n > 0 && (unsigned char)text[n - 1] >= 0xc0) n--;
+        text[n] = '\0';
     }
     return tacet_arena_text(a, text);
 }
@@ -103,39 +98,54 @@ static const tacet_cell *least_bad(const tacet_screen *s, const tacet_candidate 
     return best;
 }
 
-static const char *why_never_clear(const tacet_screen *s, const tacet_candidate *c,
-                                   const tacet_candidate_note *note, const note_rules *rules)
+static void why_never_clear(const tacet_screen *s, const tacet_candidate *c,
+                            const tacet_candidate_note *note, const note_rules *rules, char *text)
 {
-    if (note->n_unreachable == s->n_speeds)
-        return words(s->arena, "cannot carry the torque at any screened speed");
     const tacet_cell *cell = least_bad(s, c);
-    if (!cell) return words(s->arena, "no verdict at any screened speed");
+    if (!cell) {
+        tacet_text(text, TEXT_BYTES,
+                   note->n_unreachable == s->n_speeds
+                       ? "cannot carry the torque at any screened speed"
+                       : "no verdict at any screened speed");
+        return;
+    }
     int band = cell->row.limiting_band, limit = cell->row.limiting_limit;
     const char *limiting = band >= 0    ? rules->band_name[band]
                            : limit >= 0 ? rules->limit_name[limit]
                                         : "no band";
-    return words(
-        s->arena, "clear at no screened speed: at best %.1f dB at %.0f rpm (%s); %g dB are asked",
-        cell->row.worst_margin_db, rpm(cell->row.speed_rad_per_s), limiting, rules->reserve_db);
+    tacet_text(text, TEXT_BYTES,
+               "clear at no screened speed: at best %.1f dB at %.0f rpm (%s); %g dB are asked",
+               cell->row.worst_margin_db, rpm(cell->row.speed_rad_per_s), limiting,
+               rules->reserve_db);
 }
 
-static const char *why_not(const tacet_screen *s, const tacet_candidate *c,
-                           const tacet_candidate_note *note, const note_rules *rules, const fate *f)
+static void why_not_best(const tacet_screen *s, const note_rules *rules, const fate *f, char *text)
 {
-    if (c->refused) return c->refused;
-    if (note->n_clear == 0) return why_never_clear(s, c, note, rules);
-    if (f->too_short)
-        return words(s->arena, "clear over %.0f rpm only; at least %.0f are asked",
-                     rpm(note->clear_rad_per_s), rpm(rules->least_clear_rad_per_s));
+    const char *over = s->candidates[f->gain_over].name;
     if (f->n_kept > 0)
-        return words(s->arena, "wherever it is clear, another saves more; %s for one",
-                     s->candidates[f->bettered_by].name);
-    if (f->best_gain <= 0)
-        return words(s->arena, "saves nothing against %s, which is clear as well",
-                     s->candidates[f->gain_over].name);
-    return words(s->arena,
-                 "saves at most %.1f %% more than %s, the next clear one; %g %% are asked",
-                 100 * f->best_gain, s->candidates[f->gain_over].name, 100 * rules->least_saving);
+        tacet_text(text, TEXT_BYTES, "wherever it is clear, another saves more; %s for one",
+                   s->candidates[f->bettered_by].name);
+    else if (f->best_gain <= 0)
+        tacet_text(text, TEXT_BYTES, "saves nothing against %s, which is clear as well", over);
+    else
+        tacet_text(text, TEXT_BYTES,
+                   "saves at most %.1f %% more than %s, the next clear one; %g %% are asked",
+                   100 * f->best_gain, over, 100 * rules->least_saving);
+}
+
+static void why_not(const tacet_screen *s, const tacet_candidate_note *note,
+                    const note_rules *rules, const fate *f, char *text)
+{
+    const tacet_candidate *c = &s->candidates[note->candidate];
+    if (c->refused)
+        tacet_text(text, TEXT_BYTES, "%s", c->refused);
+    else if (note->n_clear == 0)
+        why_never_clear(s, c, note, rules, text);
+    else if (f->too_short)
+        tacet_text(text, TEXT_BYTES, "clear over %.0f rpm only; at least %.0f are asked",
+                   rpm(note->clear_rad_per_s), rpm(rules->least_clear_rad_per_s));
+    else
+        why_not_best(s, rules, f, text);
 }
 
 tacet_status recommend(tacet_screen *s, const note_rules *rules, tacet_arena *scratch)
@@ -156,7 +166,9 @@ tacet_status recommend(tacet_screen *s, const note_rules *rules, tacet_arena *sc
         tacet_candidate_note *note = &s->notes[c];
         note->recommended = note->n_best > 0;
         if (note->recommended) continue;
-        note->why_not = why_not(s, &s->candidates[c], note, rules, &fates[c]);
+        char text[TEXT_BYTES];
+        why_not(s, note, rules, &fates[c], text);
+        note->why_not = kept(s->arena, text);
         if (!note->why_not) return TACET_NO_MEMORY;
     }
     return TACET_OK;

@@ -1,6 +1,5 @@
 // What a user may write where a pattern is asked for: a word, a book, or a word of a book by name.
 #include "makers.h"
-#include <stdio.h>
 #include <string.h>
 
 static tacet_status refuse(tacet_problems *problems, const char *file, const char *text,
@@ -26,7 +25,7 @@ static tacet_status read_book(const char *path, size_t letters, const char *fold
     char *full = tacet_arena_alloc(a, room);
     if (!full) return TACET_NO_MEMORY;
     bool inside = *folder && path[0] != '/';
-    snprintf(full, room, "%s%s%.*s", inside ? folder : "", inside ? "/" : "", (int)letters, path);
+    tacet_text(full, room, "%s%s%.*s", inside ? folder : "", inside ? "/" : "", (int)letters, path);
     return tacet_book_read(full, a, problems, out);
 }
 

@@ -1,6 +1,5 @@
 // Books of words, *.words: what an engineer has found before, by name.
 #include "makers.h"
-#include <errno.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
@@ -94,8 +93,8 @@ static bool check_bytes(reader *r, const char *text, size_t n, int line)
         step = letter_bytes(bytes + i, n - i);
         if (step > 0) continue;
         char what[96];
-        snprintf(what, sizeof what, "byte 0x%02x; a book is plain UTF-8 text, one word a line",
-                 bytes[i]);
+        tacet_text(what, sizeof what, "byte 0x%02x; a book is plain UTF-8 text, one word a line",
+                   bytes[i]);
         complain(r, line, (int)i + 1, what);
         return false;
     }
@@ -184,8 +183,8 @@ static void check_names_unique(reader *r, key *keys)
     for (size_t i = 1; i < n; i++) {
         if (strcmp(keys[i].name, keys[i - 1].name) != 0) continue;
         char what[NAME_LETTERS_MOST + 80];
-        snprintf(what, sizeof what, "the name '%s' again; line %d has it too", keys[i].name,
-                 w->line[keys[i - 1].at]);
+        tacet_text(what, sizeof what, "the name '%s' again; line %d has it too", keys[i].name,
+                   w->line[keys[i - 1].at]);
         complain(r, w->line[keys[i].at], 1, what);
     }
 }
@@ -268,29 +267,17 @@ tacet_status tacet_book_read_text(const char *text, size_t bytes, const char *na
     return r.bad ? TACET_BAD_INPUT : TACET_OK;
 }
 
-static tacet_status unreadable(const char *path, tacet_problems *problems, int error)
-{
-    tacet_problems_add(problems, false, path, 0, 0, "cannot be read: %s", strerror(error));
-    return TACET_OUTSIDE_WORLD;
-}
-
 tacet_status tacet_book_read(const char *path, tacet_arena *a, tacet_problems *problems,
                              tacet_words *out)
 {
+    char *text;
+    size_t bytes;
+    tacet_error e;
     *out = (tacet_words){0};
-    FILE *f = fopen(path, "rb");
-    if (!f) return unreadable(path, problems, errno);
-    char *text = malloc(BOOK_BYTES_MOST + 1); // one more shows that the file is too long
-    if (!text) {
-        fclose(f);
-        return TACET_NO_MEMORY;
-    }
-    errno = 0;
-    size_t bytes = fread(text, 1, BOOK_BYTES_MOST + 1, f);
-    tacet_status status = ferror(f) ? unreadable(path, problems, errno ? errno : EIO)
-                                    : tacet_book_read_text(text, bytes, path, a, problems, out);
-    fclose(f);
-    free(text);
+    tacet_status status = tacet_file_read(path, BOOK_BYTES_MOST, a, &text, &bytes, &e);
+    if (status == TACET_OK) return tacet_book_read_text(text, bytes, path, a, problems, out);
+    if (status == TACET_OUTSIDE_WORLD)
+        tacet_problems_add(problems, false, path, 0, 0, "%s", e.text);
     return status;
 }
 

@@ -2,7 +2,6 @@
 #include "gcd.h"
 #include "tacet/pattern.h"
 #include <math.h>
-#include <stdio.h>
 #include <string.h>
 
 static int tenths_of_letter(char letter)
@@ -28,11 +27,11 @@ static tacet_status refuse_letter(tacet_error *e, size_t position, const char *w
     unsigned char letter = (unsigned char)word[position];
     char what[48];
     if (letter > 0x20 && letter < 0x7f)
-        snprintf(what, sizeof what, "letter '%c'", letter);
+        tacet_text(what, sizeof what, "letter '%c'", letter);
     else
-        snprintf(what, sizeof what, "byte 0x%02x", letter);
+        tacet_text(what, sizeof what, "byte 0x%02x", letter);
     size_t used = strlen(what);
-    snprintf(what + used, sizeof what - used, " at position %zu", position + 1);
+    tacet_text(what + used, sizeof what - used, " at position %zu", position + 1);
     return refuse(e, position, what);
 }
 
