@@ -347,13 +347,13 @@ static level random_level(unsigned *seed)
     return v;
 }
 
-// Ranges seen by a scan in steps of 0.02 rpm, gaps below 0.5 rpm closed.
+// Ranges seen by a scan in steps of 0.05 rpm, gaps below 0.5 rpm closed.
 static size_t scan(const level *v, double low, double high, double edges[][2])
 {
     size_t n = 0;
     bool was = false;
-    for (int i = 0; low + 0.02 * i <= high; i++) {
-        double rpm = low + 0.02 * i;
+    for (int i = 0; low + 0.05 * i <= high; i++) {
+        double rpm = low + 0.05 * i;
         bool over = margin_at(v, rpm) < 0;
         if (over && !was) {
             if (n == 0 || rpm - edges[n - 1][1] > 0.5) edges[n++][0] = rpm;
@@ -364,7 +364,7 @@ static size_t scan(const level *v, double low, double high, double edges[][2])
     return n;
 }
 
-// 200 levels of many lines through a resonance: the same ranges to 0.5 rpm from grids of 25 and of
+// 120 levels of many lines through a resonance: the same ranges to 0.5 rpm from grids of 25 and of
 // 100 rpm as from the scan. Ranges and gaps narrower than 1.5 rpm may merge or be missed where a
 // level only grazes the limit.
 static void test_random_levels_against_scan(void **state)
@@ -372,7 +372,7 @@ static void test_random_levels_against_scan(void **state)
     (void)state;
     unsigned seed = 12345;
     size_t ranges = 0, probes = 0;
-    for (int k = 0; k < 200; k++) {
+    for (int k = 0; k < 120; k++) {
         level v = random_level(&seed);
         double edges[200][2];
         size_t n = scan(&v, 900, 1900, edges);
@@ -387,13 +387,13 @@ static void test_random_levels_against_scan(void **state)
             if (found.n != n) print_error("level %d, step %d\n", k, s ? 100 : 25);
             assert_int_equal(found.n, n);
             for (size_t i = 0; i < n; i++)
-                assert_range(&found.at[i], edges[i][0], edges[i][1], 0.15);
+                assert_range(&found.at[i], edges[i][0], edges[i][1], 0.2);
             ranges += n;
             probes += v.probes;
         }
         tacet_arena_destroy(v.arena);
     }
-    assert_true(ranges > 300 && probes < 20 * ranges);
+    assert_true(ranges > 200 && probes < 20 * ranges);
 }
 
 int main(void)

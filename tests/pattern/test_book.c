@@ -214,7 +214,7 @@ static void test_book_missing(void **state)
     (void)state;
     tacet_words w;
     assert_int_equal(tacet_book_read("no/such.words", arena, problems, &w), TACET_OUTSIDE_WORLD);
-    assert_non_null(strstr(tacet_problems_at(problems, 0)->text, "cannot be read"));
+    assert_non_null(strstr(tacet_problems_at(problems, 0)->text, "there is no such file"));
     assert_int_equal(tacet_book_read("/", arena, problems, &w), TACET_OUTSIDE_WORLD);
 }
 
