@@ -110,6 +110,27 @@ static void test_cosine(void **state)
     bench_clear(&b);
 }
 
+// A peak at the very start of the repeat is at its start, not at its end.
+static void test_peak_at_the_start(void **state)
+{
+    (void)state;
+    bench b = bench_of(5, 32);
+    b.s.revolutions = 3;
+    for (int i = 1; i < 200; i++) {
+        double sum = 0;
+        for (size_t h = 1; h <= 5; h++) {
+            b.s.line[h] = 0.1 * i / (double)h;
+            sum += 0.1 * i / (double)h;
+        }
+        tacet_peaks p = peaks_of(&b);
+        assert_near(p.max, sum, 0, 1e-14);
+        double end = 2 * M_PI * 3;
+        assert_true(p.max_angle_rad >= 0 && p.max_angle_rad < end);
+        assert_near(remainder(p.max_angle_rad, end), 0, 1e-6, 0);
+    }
+    bench_clear(&b);
+}
+
 // Two humps closer than the samples: -(cos x - cos a)^2 + e sin x, humps near +-a, the right one
 // higher by 2 e sin a. For some phases the samples fall from one hump all the way past the other.
 // Expected by golden section on the right hump; losing it costs up to 2e-3 of the range.
@@ -235,6 +256,7 @@ int main(void)
 {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_cosine),
+        cmocka_unit_test(test_peak_at_the_start),
         cmocka_unit_test(test_two_humps_within_a_sample),
         cmocka_unit_test(test_random_spectra),
         cmocka_unit_test(test_near_ties_far_apart),

@@ -15,6 +15,7 @@ static void test_init_is_zero(void **state)
     tacet_arena *a = tacet_arena_create();
     tacet_spectrum s = spectrum_of(a, 5);
     assert_int_equal(s.n_lines, 5);
+    assert_int_equal(s.revolutions, 1);
     for (size_t h = 0; h <= 5; h++)
         assert_near(cabs(s.line[h]), 0, 0, 0);
     assert_near(s.mean, 0, 0, 0);
