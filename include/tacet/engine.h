@@ -11,6 +11,9 @@
 
 // ---- definition (sections engine, cycle, skip of a study)
 // ---------------------------------------------
+#define TACET_ENGINE_CYLINDERS_MOST 32
+#define TACET_ENGINE_RUN_MOST       63 // skipped cycles in a row of one cylinder
+
 typedef struct {
     unsigned number;      // cylinder number, 1..n
     const char *node;     // node of the train it drives; NULL: throw<number>
