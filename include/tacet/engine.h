@@ -75,6 +75,8 @@ typedef struct tacet_engine_def {
 const tacet_section *tacet_engine_keys(void);
 const tacet_section *tacet_cycle_keys(void);
 const tacet_section *tacet_skip_keys(void);
+// Required members are NAN or absent. Pointers in a definition are borrowed. A curve with n = 0
+// stands for the default of its key.
 tacet_engine_def tacet_engine_default(void);
 // Reports what cannot be (firing order no permutation, intervals not 720 degrees, pins that
 // disagree, rod shorter than the throw, ..) as errors and what is unusual as warnings.

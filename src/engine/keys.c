@@ -276,11 +276,12 @@ static const tacet_field trace_fields[] = {
      .kind = TACET_FIELD_TEXT,
      TRACES(fired_trace),
      .fallback = "",
-     .doc = "CSV of fired cycles. angle_deg from the gas-exchange top before firing (-360; 2-stroke "
-            "-180) to the one after (360; 180), then columns pressure_kpa:manifold_kpa=60 (with "
-            "load_by: fuel pressure_kpa:fuel=0.6, the share of the most fuel) and, as needed, "
-            ":rpm=1400, :after=K (cycles skipped before it; 0), :next=fire or :next=skip, "
-            ":fuel_mg=32.5 (fuel of the cycle)"},
+     .doc =
+         "CSV of fired cycles. angle_deg from the gas-exchange top before firing (-360; 2-stroke "
+         "-180) to the one after (360; 180), then columns pressure_kpa:manifold_kpa=60 (with "
+         "load_by: fuel pressure_kpa:fuel=0.6, the share of the most fuel) and, as needed, "
+         ":rpm=1400, :after=K (cycles skipped before it; 0), :next=fire or :next=skip, "
+         ":fuel_mg=32.5 (fuel of the cycle)"},
     {.key = "skipped",
      .kind = TACET_FIELD_TEXT,
      TRACES(skipped_trace),
@@ -400,9 +401,10 @@ static const tacet_field skip_fields[] = {
      SKIP(trapped),
      .fallback = "residual",
      .choices = trapped,
-     .doc = "what a skipped cylinder holds: residual (shut after its exhaust stroke; intake first on "
-            "return), burnt (exhaust stays shut; exhaust first), air (shut after one more intake; "
-            "exhaust first), open (valves go on, no fuel)"},
+     .doc =
+         "what a skipped cylinder holds: residual (shut after its exhaust stroke; intake first on "
+         "return), burnt (exhaust stays shut; exhaust first), air (shut after one more intake; "
+         "exhaust first), open (valves go on, no fuel)"},
     {.key = "cylinders",
      .kind = TACET_FIELD_COUNTS,
      SKIP(cylinders),
