@@ -7,11 +7,12 @@
 #define SHOW_CANVAS_H
 #include "tacet/show.h"
 
-#define CANVAS_WIDTH  1280.0
-#define CANVAS_HEIGHT 720.0
-#define FONT_TITLE    24.0 // px
-#define FONT_TEXT     16.0
-#define FONT_SMALL    14.0
+#define CANVAS_WIDTH    1280.0
+#define CANVAS_HEIGHT   720.0
+#define CANVAS_POINT_PX 6.5  // radius of gnuplot's point type 7 at size 1
+#define FONT_TITLE      24.0 // px
+#define FONT_TEXT       16.0
+#define FONT_SMALL      14.0
 
 #define INK            "#1f2933" // texts, outlines
 #define INK_FAINT      "#5f6b7a"

@@ -113,7 +113,16 @@ static bool inside_judged(const tacet_figure_orders *f, double hz)
     return false;
 }
 
-// Circles that count lie above the others.
+static void circle(canvas *c, double x, double y, double radius_px, unsigned colour)
+{
+    canvas_number(c, x);
+    canvas_number(c, y);
+    canvas_number(c, radius_px / CANVAS_POINT_PX);
+    fprintf(c->to, "%u", colour);
+    canvas_end_row(c);
+}
+
+// Circles that count lie above the others; each has a white rim, so that neighbours part.
 static void circles(canvas *c, const tacet_figure_orders *f, double most)
 {
     canvas_block(c, "circles");
@@ -125,11 +134,8 @@ static void circles(canvas *c, const tacet_figure_orders *f, double most)
                 if (hz > c->y_high || radius < RADIUS_LEAST ||
                     inside_judged(f, hz) != (counts == 1))
                     continue;
-                canvas_number(c, f->speed_rpm[i]);
-                canvas_number(c, hz);
-                canvas_number(c, canvas_x_of(c, radius));
-                fprintf(c->to, "%u", counts ? COLOUR_INSIDE : COLOUR_OUTSIDE);
-                canvas_end_row(c);
+                circle(c, f->speed_rpm[i], hz, radius + 1, 0xffffff);
+                circle(c, f->speed_rpm[i], hz, radius, counts ? COLOUR_INSIDE : COLOUR_OUTSIDE);
             }
     canvas_end_block(c);
 }
