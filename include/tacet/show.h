@@ -31,6 +31,7 @@ typedef struct {
     const char *name, *unit; // name is the CSV header and JSON key; unit NULL: none
     bool text;               // cells hold text, not numbers
     int decimals;            // of numbers in the text form; -1: four significant digits
+    bool data_only;          // left out of the text form
 } tacet_table_column;
 typedef struct {
     double number;    // NAN: absent (another column of the row says why)
@@ -229,7 +230,7 @@ const tacet_drawing_format *tacet_drawing_format_find(const char *name);
 
 typedef struct {
     const tacet_drawing_format *format; // svg
-    double time_limit_s;                // 30; then gnuplot is killed
+    double time_limit_s; // 30, then gnuplot is killed; 0: only the script is written
 } tacet_draw_how;
 tacet_draw_how tacet_draw_default(void);
 // The gnuplot script of a figure with its data, whole in itself: `gnuplot script > drawing`.
@@ -250,14 +251,15 @@ typedef struct {
     tacet_status (*build)(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                           tacet_table *out);
 } tacet_screen_table;
-// summary (one row a candidate), ranking (one row a speed), no-go, agreement, levels (one row a
-// condition, every column); ends with name == NULL.
+// runs (stretches of speed), summary (one row a candidate), ranking (one row a speed), no-go,
+// agreement, levels (one row a condition, every column); ends with name == NULL.
 const tacet_screen_table *tacet_screen_tables(void);
 const tacet_screen_table *tacet_screen_table_find(const char *name);
 // First lines: what runs where, what it saves, what limits. lines[n], in the arena.
 TACET_USE tacet_status tacet_screen_summary(const tacet_model *m, const tacet_screen *s,
                                             tacet_arena *a, const char *const **lines, size_t *n);
-// The whole text of a screen in reading order: summary, ranking, no-go ranges, agreement, caution.
+// The whole text of a screen in reading order: summary lines, runs, candidates, no-go ranges,
+// agreement of the solvers, caution.
 TACET_USE tacet_status tacet_screen_print(const tacet_model *m, const tacet_screen *s,
                                           const tacet_table_style *style, FILE *to);
 // Members "summary", "candidates", "ranking", "no_go", "agreement", "conditions" into an open

@@ -6,6 +6,7 @@
 #include <math.h>
 #include <string.h>
 
+#define PROBE_MOST   4096 // bytes of a 64 x 64 picture
 #define TIME_LIMIT_S 30.0 // a drawing takes 0.1 s; past this something hangs
 
 // Ends with `tail`?
@@ -23,10 +24,46 @@ static tacet_status check_svg(FILE *f, tacet_error *e)
     return TACET_OK;
 }
 
+// Without fonts pngcairo draws no text and says nothing: the same small picture with and without a
+// letter tells.
+static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, tacet_error *e)
+{
+    FILE *script = tmpfile(), *out = tmpfile();
+    tacet_status s = script && out ? TACET_OK
+                                   : tacet_fail(e, TACET_OUTSIDE_WORLD,
+                                                "cannot make a temporary file for a drawing");
+    if (s == TACET_OK) {
+        fprintf(script,
+                "set terminal pngcairo size 64,64 font 'sans-serif,16'\n"
+                "unset border\nunset tics\nunset key\n%splot [0:1] [0:1] 2\n",
+                letter ? "set label 'M' at screen 0.3,0.5\n" : "");
+        fflush(script);
+        rewind(script);
+        s = gnuplot_run(&(gnuplot_job){.folder_fd = -1,
+                                       .script_fd = fileno(script),
+                                       .out_fd = fileno(out),
+                                       .time_limit_s = TIME_LIMIT_S},
+                        e);
+        *bytes = s == TACET_OK ? fread(picture, 1, PROBE_MOST, out) : 0;
+    }
+    if (script) fclose(script);
+    if (out) fclose(out);
+    return s;
+}
+
 static tacet_status check_png(FILE *f, tacet_error *e)
 {
+    char picture[2][PROBE_MOST];
+    size_t bytes[2];
     if (!ends_with(f, "\0\0\0\0IEND\xae\x42\x60\x82", 12))
         return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot wrote no whole PNG drawing");
+    for (int k = 0; k < 2; k++) {
+        tacet_status s = probe(k, picture[k], &bytes[k], e);
+        if (s != TACET_OK) return s;
+    }
+    if (bytes[0] == bytes[1] && memcmp(picture[0], picture[1], bytes[0]) == 0)
+        return tacet_fail(e, TACET_OUTSIDE_WORLD,
+                          "PNG drawings need a font (such as fonts-dejavu-core); SVG does not");
     return TACET_OK;
 }
 
@@ -101,9 +138,14 @@ tacet_status tacet_draw(tacet_folder *folder, const char *stem, const tacet_figu
         return s;
     }
     s = tacet_folder_commit(folder, e);
-    if (s == TACET_OK) s = tacet_folder_begin(folder, drawing, &to, e);
+    if (s != TACET_OK || !(how->time_limit_s > 0)) return s;
+    s = tacet_folder_begin(folder, drawing, &to, e);
     if (s != TACET_OK) return s;
-    s = gnuplot_run(folder_fd(folder), script, fileno(to), how->time_limit_s, e);
+    s = gnuplot_run(&(gnuplot_job){.folder_fd = folder_fd(folder),
+                                   .script = script,
+                                   .out_fd = fileno(to),
+                                   .time_limit_s = how->time_limit_s},
+                    e);
     if (s == TACET_OK) s = how->format->check(to, e);
     if (s == TACET_OK) return tacet_folder_commit(folder, e);
     tacet_folder_abort(folder);

@@ -39,43 +39,71 @@ static size_t small_environment(const char **entry, size_t most, char *store, si
     return n;
 }
 
+// Descriptors 0 to 3 of the child are set one by one; copies from HIGH_FD on are never in the way.
+#define HIGH_FD   10
+#define SCRIPT_FD 3
+typedef struct {
+    int out, error, folder, script; // -1: none
+} descriptors;
+
+static int high_copy(int fd)
+{
+    return fd < 0 ? -1 : fcntl(fd, F_DUPFD_CLOEXEC, HIGH_FD);
+}
+
+static void close_copies(descriptors d)
+{
+    const int fd[] = {d.out, d.error, d.folder, d.script};
+    for (size_t i = 0; i < sizeof fd / sizeof *fd; i++)
+        if (fd[i] >= 0) close(fd[i]);
+}
+
+static int set_files(posix_spawn_file_actions_t *files, descriptors d)
+{
+    int bad = posix_spawn_file_actions_addopen(files, 0, "/dev/null", O_RDONLY, 0);
+    if (!bad) bad = posix_spawn_file_actions_adddup2(files, d.out, 1);
+    if (!bad) bad = posix_spawn_file_actions_adddup2(files, d.error, 2);
+    if (!bad && d.script >= 0) bad = posix_spawn_file_actions_adddup2(files, d.script, SCRIPT_FD);
+    if (!bad && d.folder >= 0) bad = posix_spawn_file_actions_addfchdir_np(files, d.folder);
+    return bad;
+}
+
+static int set_how(posix_spawnattr_t *how)
+{
+    sigset_t none, normal;
+    sigemptyset(&none);
+    sigemptyset(&normal);
+    sigaddset(&normal, SIGPIPE);
+    sigaddset(&normal, SIGINT);
+    sigaddset(&normal, SIGTERM);
+    int bad = posix_spawnattr_setflags(how, POSIX_SPAWN_SETPGROUP | POSIX_SPAWN_SETSIGMASK |
+                                                POSIX_SPAWN_SETSIGDEF);
+    if (!bad) bad = posix_spawnattr_setpgroup(how, 0);
+    if (!bad) bad = posix_spawnattr_setsigmask(how, &none);
+    if (!bad) bad = posix_spawnattr_setsigdefault(how, &normal);
+    return bad;
+}
+
 // Starts gnuplot; 0 or an errno.
-static int start(int folder_fd, const char *script, int out_fd, int error_fd, pid_t *child)
+static int start(const char *script, descriptors d, pid_t *child)
 {
     char store[8192];
     const char *environment[8];
     const char *arguments[] = {"gnuplot", "-d", script, NULL};
     posix_spawn_file_actions_t files;
     posix_spawnattr_t how;
-    sigset_t none, normal;
     small_environment(environment, 8, store, sizeof store);
-    sigemptyset(&none);
-    sigemptyset(&normal);
-    sigaddset(&normal, SIGPIPE);
-    sigaddset(&normal, SIGINT);
-    sigaddset(&normal, SIGTERM);
-
     int bad = posix_spawn_file_actions_init(&files);
     if (bad) return bad;
     bad = posix_spawnattr_init(&how);
-    if (bad) {
-        posix_spawn_file_actions_destroy(&files);
-        return bad;
+    if (!bad) {
+        bad = set_files(&files, d);
+        if (!bad) bad = set_how(&how);
+        if (!bad)
+            bad = posix_spawnp(child, "gnuplot", &files, &how, (char *const *)(uintptr_t)arguments,
+                               (char *const *)(uintptr_t)environment);
+        posix_spawnattr_destroy(&how);
     }
-    if (!bad) bad = posix_spawn_file_actions_addopen(&files, 0, "/dev/null", O_RDONLY, 0);
-    if (!bad) bad = posix_spawn_file_actions_adddup2(&files, out_fd, 1);
-    if (!bad) bad = posix_spawn_file_actions_adddup2(&files, error_fd, 2);
-    if (!bad) bad = posix_spawn_file_actions_addfchdir_np(&files, folder_fd);
-    if (!bad)
-        bad = posix_spawnattr_setflags(&how, POSIX_SPAWN_SETPGROUP | POSIX_SPAWN_SETSIGMASK |
-                                                 POSIX_SPAWN_SETSIGDEF);
-    if (!bad) bad = posix_spawnattr_setpgroup(&how, 0);
-    if (!bad) bad = posix_spawnattr_setsigmask(&how, &none);
-    if (!bad) bad = posix_spawnattr_setsigdefault(&how, &normal);
-    if (!bad)
-        bad = posix_spawnp(child, "gnuplot", &files, &how, (char *const *)(uintptr_t)arguments,
-                           (char *const *)(uintptr_t)environment);
-    posix_spawnattr_destroy(&how);
     posix_spawn_file_actions_destroy(&files);
     return bad;
 }
@@ -112,7 +140,7 @@ static bool wait_until(pid_t child, double end_s, int *result)
         pid_t p = waitpid(child, result, WNOHANG);
         if (p == child) return true;
         if (p < 0 && errno != EINTR) {
-            *result = -1;
+            *result = 0; // the host reaps children itself; what gnuplot said and wrote decides
             return true;
         }
         if (now_s() >= end_s) return false;
@@ -144,23 +172,27 @@ static tacet_status verdict(int result, const char *said, tacet_error *e)
     return TACET_OK;
 }
 
-tacet_status gnuplot_run(int folder_fd, const char *script, int out_fd, double time_limit_s,
-                         tacet_error *e)
+tacet_status gnuplot_run(const gnuplot_job *job, tacet_error *e)
 {
     int ends[2];
     pid_t child;
     char said[SAID_MOST] = "";
-    double end_s = now_s() + time_limit_s;
+    double end_s = now_s() + job->time_limit_s;
     if (pipe2(ends, O_CLOEXEC) != 0)
         return tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s", strerror(errno));
-    int bad = start(folder_fd, script, out_fd, ends[1], &child);
+    descriptors d = {high_copy(job->out_fd), high_copy(ends[1]), high_copy(job->folder_fd),
+                     job->script ? -1 : high_copy(job->script_fd)};
     close(ends[1]);
+    int bad = d.out < 0 || d.error < 0
+                  ? EMFILE
+                  : start(job->script ? job->script : "/dev/fd/3", d, &child);
+    close_copies(d);
     if (bad) {
         close(ends[0]);
-        return bad == ENOENT
-                   ? tacet_fail(e, TACET_OUTSIDE_WORLD,
-                                "drawings need gnuplot, which is not installed")
-                   : tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s", strerror(bad));
+        return bad == ENOENT ? tacet_fail(e, TACET_OUTSIDE_WORLD,
+                                          "drawings need gnuplot, which is not installed")
+                             : tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s",
+                                          strerror(bad));
     }
     int result = 0;
     bool done = listen_until(ends[0], end_s, said, sizeof said);
@@ -170,6 +202,6 @@ tacet_status gnuplot_run(int folder_fd, const char *script, int out_fd, double t
     kill(-child, SIGKILL);
     while (waitpid(child, &result, 0) < 0 && errno == EINTR)
         continue;
-    return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot took longer than %.0f s and was ended",
-                      time_limit_s);
+    return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot took longer than %g s and was ended",
+                      job->time_limit_s);
 }

@@ -3,10 +3,16 @@
 #define SHOW_GNUPLOT_H
 #include "tacet/base.h"
 
-// Runs `gnuplot -d script` in the directory `folder_fd` with its standard output going to `out_fd`:
-// no shell, standard input from /dev/null, a small environment, its own process group, killed after
-// time_limit_s. script is a fixed name of ours. Any text on standard error is a failure.
-TACET_USE tacet_status gnuplot_run(int folder_fd, const char *script, int out_fd,
-                                   double time_limit_s, tacet_error *e);
+// One run: `gnuplot -d script`, no shell, standard input from /dev/null, a small environment, its own
+// process group, killed after time_limit_s.
+typedef struct {
+    int folder_fd;      // directory it runs in; -1: ours
+    const char *script; // a fixed name of ours in that directory; NULL: read from script_fd
+    int script_fd;
+    int out_fd; // its standard output
+    double time_limit_s;
+} gnuplot_job;
+// Any text on standard error is a failure.
+TACET_USE tacet_status gnuplot_run(const gnuplot_job *job, tacet_error *e);
 
 #endif

@@ -10,13 +10,36 @@
 #define FAINT        "\033[2m"
 #define PLAIN        "\033[0m"
 
-static const char *cell_text(const tacet_table *t, size_t row, size_t column,
-                             char number[TACET_NUMBER_TEXT])
+// What is shown of a table: which columns, how wide, how many rows.
+typedef struct {
+    const tacet_table *t;
+    FILE *to;
+    bool colour;
+    size_t n, column[COLUMNS_MOST], width[COLUMNS_MOST];
+    size_t n_rows;
+} view;
+
+static const char *cell_text(const view *v, size_t row, size_t i, char number[TACET_NUMBER_TEXT])
 {
-    const tacet_table_cell *cell = &t->cells[row * t->n_columns + column];
-    if (t->columns[column].text) return cell->text ? cell->text : "-";
-    return isfinite(cell->number) ? text_fixed(cell->number, t->columns[column].decimals, number)
-                                  : "-";
+    const tacet_table_column *column = &v->t->columns[v->column[i]];
+    const tacet_table_cell *cell = &v->t->cells[row * v->t->n_columns + v->column[i]];
+    if (column->text) return cell->text ? cell->text : "-";
+    return isfinite(cell->number) ? text_fixed(cell->number, column->decimals, number) : "-";
+}
+
+static void measure(view *v)
+{
+    for (size_t i = 0; i < v->n; i++) {
+        const tacet_table_column *column = &v->t->columns[v->column[i]];
+        size_t unit = column->unit ? text_columns(column->unit) : 0;
+        v->width[i] = text_columns(column->name);
+        if (unit > v->width[i]) v->width[i] = unit;
+        for (size_t r = 0; r < v->n_rows; r++) {
+            char number[TACET_NUMBER_TEXT];
+            size_t w = text_columns(cell_text(v, r, i, number));
+            if (w > v->width[i]) v->width[i] = w;
+        }
+    }
 }
 
 static void blanks(FILE *to, size_t n)
@@ -25,78 +48,71 @@ static void blanks(FILE *to, size_t n)
         fputc(' ', to);
 }
 
-// The last text column is not padded, so that lines carry no trailing blanks.
-static void put(FILE *to, const char *text, size_t width, bool left, bool last)
+// Writes one line of texts; blanks wait until something follows, so that no line ends in blanks.
+static void line(const view *v, const char *const *text, const bool *accent)
 {
-    size_t used = text_columns(text);
-    size_t pad = width > used ? width - used : 0;
-    if (!left) blanks(to, pad);
-    tacet_write_clean(to, text);
-    if (left && !last) blanks(to, pad);
-}
-
-static void widths(const tacet_table *t, size_t n_columns, size_t n_rows, size_t *width)
-{
-    for (size_t c = 0; c < n_columns; c++) {
-        width[c] = text_columns(t->columns[c].name);
-        size_t unit = t->columns[c].unit ? text_columns(t->columns[c].unit) : 0;
-        if (unit > width[c]) width[c] = unit;
-        for (size_t r = 0; r < n_rows; r++) {
-            char number[TACET_NUMBER_TEXT];
-            size_t w = text_columns(cell_text(t, r, c, number));
-            if (w > width[c]) width[c] = w;
-        }
-    }
-}
-
-static void head_line(const tacet_table *t, size_t n_columns, const size_t *width, bool units,
-                      const tacet_table_style *style, FILE *to)
-{
-    if (style->colour) fputs(FAINT, to);
-    // blanks are held back until a word follows
     size_t held = 0;
-    for (size_t c = 0; c < n_columns; c++) {
-        const char *word = units ? t->columns[c].unit : t->columns[c].name;
-        size_t used = word ? text_columns(word) : 0, pad = width[c] - used;
-        if (c) held += 2;
-        if (!t->columns[c].text) held += pad;
+    for (size_t i = 0; i < v->n; i++) {
+        size_t used = text_columns(text[i]), pad = v->width[i] > used ? v->width[i] - used : 0;
+        bool left = v->t->columns[v->column[i]].text, lit = accent && accent[i];
+        held += (i ? 2 : 0) + (left ? 0 : pad);
         if (used) {
-            blanks(to, held);
-            tacet_write_clean(to, word);
+            blanks(v->to, held);
             held = 0;
+            if (lit) fputs(ACCENT, v->to);
+            tacet_write_clean(v->to, text[i]);
+            if (lit) fputs(PLAIN, v->to);
         }
-        if (t->columns[c].text) held += pad;
+        held += left ? pad : 0;
     }
-    fputs(style->colour ? PLAIN "\n" : "\n", to);
+}
+
+static void head(const view *v)
+{
+    const char *name[COLUMNS_MOST], *unit[COLUMNS_MOST];
+    bool any_unit = false;
+    for (size_t i = 0; i < v->n; i++) {
+        const tacet_table_column *column = &v->t->columns[v->column[i]];
+        name[i] = column->name;
+        unit[i] = column->unit ? column->unit : "";
+        any_unit |= column->unit != NULL;
+    }
+    for (int k = 0; k < (any_unit ? 2 : 1); k++) {
+        if (v->colour) fputs(FAINT, v->to);
+        line(v, k ? unit : name, NULL);
+        fputs(v->colour ? PLAIN "\n" : "\n", v->to);
+    }
 }
 
 void write_table_text(const tacet_table *t, const tacet_table_style *style, FILE *to)
 {
-    size_t width[COLUMNS_MOST] = {0};
-    size_t n_columns = t->n_columns < COLUMNS_MOST ? t->n_columns : COLUMNS_MOST;
-    size_t n_rows = style->most_rows && style->most_rows < t->n_rows ? style->most_rows : t->n_rows;
-    bool any_unit = false;
-    for (size_t c = 0; c < n_columns; c++)
-        any_unit |= t->columns[c].unit != NULL;
-    widths(t, n_columns, n_rows, width);
+    view v = {.t = t, .to = to, .colour = style->colour};
+    size_t left_out = 0;
+    for (size_t c = 0; c < t->n_columns; c++) {
+        if (t->columns[c].data_only) continue;
+        if (v.n < COLUMNS_MOST)
+            v.column[v.n++] = c;
+        else
+            left_out++;
+    }
+    v.n_rows = style->most_rows && style->most_rows < t->n_rows ? style->most_rows : t->n_rows;
+    measure(&v);
     if (t->heading) {
         tacet_write_clean(to, t->heading);
         fputc('\n', to);
     }
-    head_line(t, n_columns, width, false, style, to);
-    if (any_unit) head_line(t, n_columns, width, true, style, to);
-    for (size_t r = 0; r < n_rows; r++) {
-        for (size_t c = 0; c < n_columns; c++) {
-            char number[TACET_NUMBER_TEXT];
-            bool accent = style->colour && t->cells[r * t->n_columns + c].accent;
-            if (c) fputs("  ", to);
-            if (accent) fputs(ACCENT, to);
-            put(to, cell_text(t, r, c, number), width[c], t->columns[c].text, c + 1 == n_columns);
-            if (accent) fputs(PLAIN, to);
+    head(&v);
+    for (size_t r = 0; r < v.n_rows; r++) {
+        char number[COLUMNS_MOST][TACET_NUMBER_TEXT];
+        const char *text[COLUMNS_MOST];
+        bool accent[COLUMNS_MOST];
+        for (size_t i = 0; i < v.n; i++) {
+            text[i] = cell_text(&v, r, i, number[i]);
+            accent[i] = v.colour && t->cells[r * t->n_columns + v.column[i]].accent;
         }
+        line(&v, text, accent);
         fputc('\n', to);
     }
-    if (n_rows < t->n_rows) fprintf(to, ".. %zu more\n", t->n_rows - n_rows);
-    if (n_columns < t->n_columns)
-        fprintf(to, ".. %zu more columns in the CSV form\n", t->n_columns - n_columns);
+    if (v.n_rows < t->n_rows) fprintf(to, ".. %zu more\n", t->n_rows - v.n_rows);
+    if (left_out) fprintf(to, ".. %zu more columns in the CSV form\n", left_out);
 }

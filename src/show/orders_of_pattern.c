@@ -1,0 +1,119 @@
+// Order lines of one pattern over speed, solved at every speed of the study.
+#include "show/figure_source.h"
+#include <complex.h>
+#include <math.h>
+#include <string.h>
+
+#define ORDERS_DRAWN 24
+
+// Elastic modes, named by the node that moves most in them.
+static tacet_status modes_of(const tacet_figure_source *s, tacet_figure_mode **out, size_t *n)
+{
+    const tacet_train *t = tacet_model_train(s->model);
+    size_t nodes = tacet_train_nodes(t);
+    double *hz = tacet_arena_alloc(s->arena, nodes * sizeof *hz);
+    double *shape = tacet_arena_alloc(s->arena, nodes * nodes * sizeof *shape);
+    *out = tacet_arena_alloc(s->arena, nodes * sizeof **out);
+    *n = 0;
+    if (!hz || !shape || !*out) return TACET_NO_MEMORY;
+    tacet_status status = tacet_train_modes(t, hz, shape);
+    for (size_t m = 1; status == TACET_OK && m < nodes; m++) {
+        size_t largest = 0;
+        for (size_t k = 1; k < nodes; k++)
+            if (fabs(shape[m * nodes + k]) > fabs(shape[m * nodes + largest])) largest = k;
+        (*out)[(*n)++] = (tacet_figure_mode){tacet_train_node_name(t, largest), hz[m]};
+    }
+    return status;
+}
+
+// rms of every line at every speed, lines first; NAN where the demand is not reached.
+static tacet_status levels_over_speed(const tacet_figure_source *s, size_t n_lines, double *level,
+                                      tacet_error *e)
+{
+    const tacet_study *study = tacet_model_study(s->model);
+    size_t n = study->screen.n_speeds;
+    for (size_t i = 0; i < n; i++) {
+        double speed = study->screen.speeds_rad_per_s[i];
+        const tacet_spectrum *x = NULL;
+        tacet_row row;
+        tacet_status status =
+            figure_solve(s, s->roll, speed, tacet_model_demand(s->model, speed), &row, NULL);
+        if (status == TACET_OK) status = tacet_workspace_quantity(s->work, s->of, &x, NULL);
+        if (status == TACET_NO_MEMORY) return figure_no_memory(e);
+        for (size_t h = 1; h <= n_lines; h++)
+            level[(h - 1) * n + i] =
+                status == TACET_OK && h <= x->n_lines ? cabs(x->line[h]) / sqrt(2) : NAN;
+    }
+    return TACET_OK;
+}
+
+static double largest_below(const double *level, const tacet_screen_def *d, double order,
+                            double highest_hz)
+{
+    double most = 0;
+    for (size_t i = 0; i < d->n_speeds; i++)
+        if (tacet_order_hz(order, d->speeds_rad_per_s[i]) <= highest_hz && level[i] > most)
+            most = level[i];
+    return most;
+}
+
+// Up to 12 % past the highest band, as the drawing shows it; without bands everything.
+static double drawn_hz(const tacet_model *m)
+{
+    double high = 0;
+    for (size_t b = 0; b < tacet_model_bands(m); b++)
+        high = fmax(high, 1.12 * tacet_model_band(m, b)->counted_high_hz);
+    return high > 0 ? high : INFINITY;
+}
+
+tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_orders *out,
+                                     tacet_error *e)
+{
+    const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
+    size_t n_lines = tacet_model_lines(s->model, s->roll->revolutions), n = d->n_speeds, n_bands;
+    double *level = tacet_arena_alloc(s->arena, (n_lines * n + 1) * sizeof *level);
+    double *weight = tacet_arena_alloc(s->arena, (n_lines + 1) * sizeof *weight);
+    bool *picked = tacet_arena_alloc(s->arena, (n_lines + 1) * sizeof *picked);
+    double *order = tacet_arena_alloc(s->arena, ORDERS_DRAWN * sizeof *order);
+    double *drawn = tacet_arena_alloc(s->arena, (ORDERS_DRAWN * n + 1) * sizeof *drawn);
+    double *rpm = tacet_arena_alloc(s->arena, (n + 1) * sizeof *rpm);
+    tacet_figure_band *band = figure_bands(s, &n_bands);
+    tacet_figure_mode *mode;
+    size_t n_modes, used = 0;
+    const char *quantity = screen_quantity_name(s->model, s->of, s->arena);
+    const char *pattern = figure_pattern_text(s);
+    if (!level || !weight || !picked || !order || !drawn || !rpm || !band || !quantity || !pattern)
+        return figure_no_memory(e);
+    tacet_status status = modes_of(s, &mode, &n_modes);
+    if (status != TACET_OK) return tacet_fail(e, status, "modes: %s", tacet_status_text(status));
+    status = levels_over_speed(s, n_lines, level, e);
+    if (status != TACET_OK) return status;
+    for (size_t h = 1; h <= n_lines; h++)
+        weight[h - 1] = largest_below(&level[(h - 1) * n], d, (double)h / s->roll->revolutions,
+                                      drawn_hz(s->model));
+    figure_pick_largest(n_lines, weight, ORDERS_DRAWN, picked);
+    for (size_t h = 1; h <= n_lines; h++) {
+        if (!picked[h - 1]) continue;
+        memcpy(&drawn[used * n], &level[(h - 1) * n], n * sizeof *drawn);
+        order[used++] = (double)h / s->roll->revolutions;
+    }
+    for (size_t i = 0; i < n; i++)
+        rpm[i] = screen_rpm(d->speeds_rad_per_s[i]);
+    *out = (tacet_figure_orders){
+        .title = screen_title(s->model),
+        .subtitle =
+            screen_text(s->arena, "Order lines of %s over speed, at the study's torque", pattern),
+        .quantity = quantity,
+        .unit = s->of.what->unit,
+        .speed_rpm = rpm,
+        .n_speeds = n,
+        .order = order,
+        .n_orders = used,
+        .level_rms = drawn,
+        .band = band,
+        .n_bands = n_bands,
+        .mode = mode,
+        .n_modes = n_modes};
+    return out->subtitle ? TACET_OK : figure_no_memory(e);
+}
+

@@ -1,0 +1,208 @@
+// A finished screen into its folder: data first, drawings last.
+#include "show/folder.h"
+#include "show/screen.h"
+#include <math.h>
+#include <string.h>
+
+typedef struct {
+    const tacet_model *m;
+    const tacet_screen *s;
+    tacet_folder *folder;
+    tacet_arena *a;
+} job;
+
+static tacet_status save_table(const job *b, const tacet_screen_table *table, tacet_error *e)
+{
+    char name[64];
+    tacet_table t;
+    FILE *to;
+    snprintf(name, sizeof name, "%s.csv", table->name);
+    tacet_status status = table->build(b->m, b->s, b->a, &t);
+    if (status != TACET_OK) return tacet_fail(e, status, "%s: no memory", name);
+    status = tacet_folder_begin(b->folder, name, &to, e);
+    if (status != TACET_OK) return status;
+    tacet_table_write(&t, tacet_writer_find("csv"), NULL, to);
+    return tacet_folder_commit(b->folder, e);
+}
+
+static tacet_status save_text(const job *b, tacet_error *e)
+{
+    static const tacet_table_style plain = {0};
+    FILE *to;
+    tacet_status status = tacet_folder_begin(b->folder, "summary.txt", &to, e);
+    if (status != TACET_OK) return status;
+    status = tacet_screen_print(b->m, b->s, &plain, to);
+    if (status == TACET_OK) return tacet_folder_commit(b->folder, e);
+    tacet_folder_abort(b->folder);
+    return tacet_fail(e, status, "summary.txt: %s", tacet_status_text(status));
+}
+
+static tacet_status save_json(const job *b, tacet_error *e)
+{
+    FILE *to;
+    tacet_status status = tacet_folder_begin(b->folder, "screen.json", &to, e);
+    if (status != TACET_OK) return status;
+    tacet_json j = tacet_json_start(to);
+    tacet_json_head(&j, "screen", tacet_model_study(b->m), b->s->n_failed ? "some failed" : "ok");
+    status = tacet_screen_json(&j, b->m, b->s);
+    tacet_json_end_object(&j);
+    if (status == TACET_OK) status = tacet_json_finish(&j, "screen.json", e);
+    if (status == TACET_OK) return tacet_folder_commit(b->folder, e);
+    tacet_folder_abort(b->folder);
+    return status == TACET_NO_MEMORY ? tacet_fail(e, status, "screen.json: no memory") : status;
+}
+
+// ---- what the drawings show
+
+typedef struct {
+    size_t cell; // SIZE_MAX: nothing was solved
+    tacet_quantity_ref of, shaft;
+    bool has_of, has_shaft;
+} choice;
+
+// Rank of a cell as an example: a recommended skip pattern, then any solved skip pattern, then any.
+static int example_rank(const job *b, size_t cell)
+{
+    const tacet_candidate *c = screen_candidate(b->s, cell);
+    if (b->s->cells[cell].row.outcome != TACET_SOLVED) return 0;
+    if (screen_all_fire(c)) return 1;
+    return b->s->notes[b->s->cells[cell].candidate].recommended ? 3 : 2;
+}
+
+// Of the best rank: where it is best, then with the least margin that is not over.
+static bool better_example(const job *b, size_t cell, size_t than)
+{
+    const tacet_row *r = &b->s->cells[cell].row, *best = &b->s->cells[than].row;
+    int rank = example_rank(b, cell), best_rank = example_rank(b, than);
+    if (rank != best_rank) return rank > best_rank;
+    bool over = r->worst == TACET_OVER, best_over = best->worst == TACET_OVER;
+    if (over != best_over) return !over;
+    return over ? r->worst_margin_db > best->worst_margin_db
+                : r->worst_margin_db < best->worst_margin_db;
+}
+
+static size_t pick_cell(const job *b)
+{
+    size_t best = SIZE_MAX;
+    for (size_t i = 0; i < b->s->n_cells; i++)
+        if (!b->s->cells[i].extra && example_rank(b, i) > 0 &&
+            (best == SIZE_MAX || better_example(b, i, best)))
+            best = i;
+    return best;
+}
+
+// The quantity of the band that limits there, and the torque of a shaft behind the flywheel.
+static choice choose(const job *b)
+{
+    choice c = {.cell = pick_cell(b)};
+    const tacet_train *t = tacet_model_train(b->m);
+    if (c.cell == SIZE_MAX) return c;
+    int band = b->s->cells[c.cell].row.limiting_band;
+    for (size_t i = 0; i < tacet_model_bands(b->m); i++) {
+        tacet_quantity_ref of = tacet_model_band(b->m, i)->of;
+        if (!of.what->spectrum) continue;
+        if (!c.has_of || band == (int)i) c.of = of, c.has_of = true;
+        if (!c.has_shaft && strcmp(of.what->name, "link-torque") == 0)
+            c.shaft = of, c.has_shaft = true;
+    }
+    for (size_t i = 0; i < tacet_train_links(t) && !c.has_shaft; i++) {
+        char name[160];
+        if (tacet_train_link_info(t, i).from != tacet_train_flywheel(t)) continue;
+        snprintf(name, sizeof name, "link-torque:%s", tacet_train_link_name(t, i));
+        c.has_shaft = tacet_quantity_parse(name, t, &c.shaft, NULL) == TACET_OK;
+    }
+    if (!c.has_of) c.of = c.shaft, c.has_of = c.has_shaft;
+    return c;
+}
+
+// ---- drawings
+
+typedef struct {
+    const tacet_draw_how *how;
+    tacet_error first; // reason of the first drawing that failed
+} drawing;
+
+// The first failure is kept; after it only the scripts are written, since what ails gnuplot once
+// (missing, hanging) ails it again.
+static void draw(const job *b, drawing *d, const char *stem, const tacet_figure *f)
+{
+    tacet_error e = {.status = TACET_OK};
+    tacet_draw_how how = *d->how;
+    if (d->first.status == TACET_OUTSIDE_WORLD) how.time_limit_s = 0;
+    if (tacet_draw(b->folder, stem, f, &how, &e) != TACET_OK && d->first.status == TACET_OK)
+        d->first = e;
+}
+
+static void note_failure(drawing *d, tacet_status status, const tacet_error *e)
+{
+    if (status != TACET_OK && d->first.status == TACET_OK) {
+        d->first = *e;
+        d->first.status = status;
+    }
+}
+
+static void draw_pattern(const job *b, tacet_workspace *w, drawing *d)
+{
+    choice c = choose(b);
+    tacet_figure_orders orders;
+    tacet_figure_bars bars;
+    tacet_figure_repeat repeat;
+    tacet_error e = {.status = TACET_OK};
+    if (c.cell == SIZE_MAX) return;
+    double speed = b->s->cells[c.cell].row.speed_rad_per_s;
+    double demand = b->s->cells[c.cell].row.demand_Nm;
+    tacet_figure_source src = {.model = b->m,
+                               .work = w,
+                               .arena = b->a,
+                               .roll = screen_roll(b->s, c.cell),
+                               .name = screen_candidate(b->s, c.cell)->name,
+                               .of = c.of};
+    if (c.has_of) {
+        tacet_status status = tacet_orders_of_pattern(&src, &orders, &e);
+        note_failure(d, status, &e);
+        if (status == TACET_OK)
+            draw(b, d, "orders", &(tacet_figure){TACET_FIGURE_ORDERS, {.orders = &orders}});
+        status = tacet_bars_of_condition(&src, speed, demand, &bars, &e);
+        note_failure(d, status, &e);
+        if (status == TACET_OK)
+            draw(b, d, "bars", &(tacet_figure){TACET_FIGURE_BARS, {.bars = &bars}});
+    }
+    if (!c.has_shaft) return;
+    src.of = c.shaft;
+    tacet_status status = tacet_repeat_of_condition(&src, speed, demand, &repeat, &e);
+    note_failure(d, status, &e);
+    if (status == TACET_OK)
+        draw(b, d, "repeat", &(tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &repeat}});
+}
+
+static tacet_status save_data(const job *b, tacet_error *e)
+{
+    tacet_status status = TACET_OK;
+    for (const tacet_screen_table *t = tacet_screen_tables(); status == TACET_OK && t->name; t++)
+        status = save_table(b, t, e);
+    if (status == TACET_OK) status = save_text(b, e);
+    if (status == TACET_OK) status = save_json(b, e);
+    return status;
+}
+
+tacet_status tacet_screen_save(const tacet_model *m, const tacet_screen *s, tacet_workspace *w,
+                               tacet_folder *folder, const tacet_draw_how *how,
+                               tacet_error *drawings, tacet_error *e)
+{
+    drawing d = {.how = how};
+    tacet_figure_map map;
+    job b = {m, s, folder, tacet_arena_create()};
+    if (!b.a) return tacet_fail(e, TACET_NO_MEMORY, "no memory to write the results");
+    tacet_status status = save_data(&b, e);
+    if (status == TACET_OK) {
+        tacet_status drawn = tacet_map_of_screen(m, s, b.a, &map);
+        note_failure(&d, drawn, &(tacet_error){.text = "no memory for the map"});
+        if (drawn == TACET_OK)
+            draw(&b, &d, "map", &(tacet_figure){TACET_FIGURE_MAP, {.map = &map}});
+        draw_pattern(&b, w, &d);
+        status = tacet_folder_tidy(folder, e);
+    }
+    if (drawings) *drawings = d.first;
+    tacet_arena_destroy(b.a);
+    return status;
+}

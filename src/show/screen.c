@@ -1,0 +1,155 @@
+#include "show/screen.h"
+#include <math.h>
+#include <stdarg.h>
+#include <string.h>
+
+double screen_rpm(double speed_rad_per_s)
+{
+    return round(speed_rad_per_s / tacet_unit_factor("rpm") * 1e6) / 1e6;
+}
+
+const char *screen_title(const tacet_model *m)
+{
+    const char *title = tacet_model_study(m)->title;
+    return title ? title : "untitled study";
+}
+
+const tacet_candidate *screen_candidate(const tacet_screen *s, size_t cell)
+{
+    return &s->candidates[s->cells[cell].candidate];
+}
+
+const tacet_roll *screen_roll(const tacet_screen *s, size_t cell)
+{
+    return screen_candidate(s, cell)->roll[s->cells[cell].placement];
+}
+
+tacet_condition screen_condition(const tacet_screen *s, size_t cell)
+{
+    const tacet_row *r = &s->cells[cell].row;
+    return (tacet_condition){.id = r->id,
+                             .speed_rad_per_s = r->speed_rad_per_s,
+                             .demand_Nm = r->demand_Nm,
+                             .roll = screen_roll(s, cell)};
+}
+
+bool screen_all_fire(const tacet_candidate *c)
+{
+    return c->fires == c->length && !strpbrk(c->word ? c->word : "", "123456789");
+}
+
+const char *screen_limited_by(const tacet_model *m, const tacet_row *r)
+{
+    if (r->limiting_band >= 0) return tacet_model_band(m, (size_t)r->limiting_band)->name;
+    if (r->limiting_limit >= 0) return tacet_model_limit(m, (size_t)r->limiting_limit)->name;
+    return "";
+}
+
+double screen_limiting_order(const tacet_row *r)
+{
+    if (r->limiting_band < 0) return NAN;
+    double order = r->bands[r->limiting_band].level.leading_order;
+    return order > 0 ? order : NAN;
+}
+
+const char *screen_quantity_name(const tacet_model *m, tacet_quantity_ref q, tacet_arena *a)
+{
+    const tacet_train *t = tacet_model_train(m);
+    if (q.what->target == TACET_TARGET_NONE) return q.what->name;
+    return screen_text(a, "%s:%s", q.what->name,
+                       q.what->target == TACET_TARGET_LINK ? tacet_train_link_name(t, q.target)
+                                                           : tacet_train_node_name(t, q.target));
+}
+
+const char *screen_why_text(tacet_why why)
+{
+    static const char *const text[] = {"", "unreachable", "failed", "no reference"};
+    return (unsigned)why < sizeof text / sizeof *text ? text[why] : "unknown";
+}
+
+double screen_saving_percent(const tacet_row *r)
+{
+    return r->outcome == TACET_SOLVED ? 100 * (1 - r->fuel_to_all_fire) : NAN;
+}
+
+char *screen_text(tacet_arena *a, const char *format, ...)
+{
+    va_list args;
+    va_start(args, format);
+    int length = vsnprintf(NULL, 0, format, args);
+    va_end(args);
+    char *text = length < 0 ? NULL : tacet_arena_alloc(a, (size_t)length + 1);
+    if (!text) return NULL;
+    va_start(args, format);
+    vsnprintf(text, (size_t)length + 1, format, args);
+    va_end(args);
+    return text;
+}
+
+tacet_status screen_runs(const tacet_screen *s, tacet_arena *a, screen_run **out, size_t *n)
+{
+    screen_run *run = tacet_arena_alloc(a, (s->n_ranks + 1) * sizeof *run);
+    *n = 0;
+    *out = run;
+    if (!run) return TACET_NO_MEMORY;
+    for (size_t i = 0; i < s->n_ranks; i++) {
+        size_t best = s->ranks[i].best;
+        size_t candidate = best == SIZE_MAX ? SIZE_MAX : s->cells[best].candidate;
+        if (*n > 0 && run[*n - 1].candidate == candidate)
+            run[*n - 1].last = i;
+        else
+            run[(*n)++] = (screen_run){i, i, candidate};
+    }
+    return TACET_OK;
+}
+
+void put_number(table_row *r, double value)
+{
+    *r->next++ = (tacet_table_cell){.number = value};
+}
+
+void put_text(table_row *r, const char *text)
+{
+    *r->next++ = (tacet_table_cell){.number = NAN, .text = text};
+}
+
+void put_accent(table_row *r)
+{
+    r->next[-1].accent = true;
+}
+
+tacet_status table_start(tacet_arena *a, const char *name, const char *heading,
+                         const tacet_table_column *columns, size_t n_columns, size_t n_rows,
+                         tacet_table *out, table_row *first)
+{
+    tacet_table_cell *cells = tacet_arena_alloc(a, (n_rows * n_columns + 1) * sizeof *cells);
+    *first = (table_row){cells};
+    *out = (tacet_table){.name = name,
+                         .heading = heading,
+                         .columns = columns,
+                         .n_columns = n_columns,
+                         .cells = cells,
+                         .n_rows = cells ? n_rows : 0};
+    return cells ? TACET_OK : TACET_NO_MEMORY;
+}
+
+static const tacet_screen_table tables[] = {
+    {"runs", "what runs where: stretches of speed with one recommended density", screen_runs_table},
+    {"summary", "what each density or word comes to", screen_summary_table},
+    {"ranking", "the best two at each speed", screen_ranking_table},
+    {"no-go", "speeds at which a band's level is over its limit", screen_no_go_table},
+    {"agreement", "how well the solvers agree on the worst conditions", screen_agreement_table},
+    {"levels", "every condition with every column", screen_levels_table},
+    {NULL, NULL, NULL}};
+
+const tacet_screen_table *tacet_screen_tables(void)
+{
+    return tables;
+}
+
+const tacet_screen_table *tacet_screen_table_find(const char *name)
+{
+    for (const tacet_screen_table *t = tables; t->name; t++)
+        if (strcmp(t->name, name) == 0) return t;
+    return NULL;
+}
