@@ -74,4 +74,3 @@ tacet_status tacet_bars_of_condition(const tacet_figure_source *s, double speed_
                                .n_bands = n_bands};
     return out->subtitle ? TACET_OK : figure_no_memory(e);
 }
-

@@ -6,7 +6,7 @@
 #include <math.h>
 #include <string.h>
 
-#define PROBE_MOST   4096 // bytes of a 64 x 64 picture
+#define PROBE_MOST   4096 // bytes of a 240 x 160 picture of one letter
 #define TIME_LIMIT_S 30.0 // a drawing takes 0.1 s; past this something hangs
 
 // Ends with `tail`?
@@ -34,7 +34,7 @@ static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, 
                                                 "cannot make a temporary file for a drawing");
     if (s == TACET_OK) {
         fprintf(script,
-                "set terminal pngcairo size 64,64 font 'sans-serif,16'\n"
+                "set terminal pngcairo size 240,160 font 'sans-serif,16'\n"
                 "unset border\nunset tics\nunset key\n%splot [0:1] [0:1] 2\n",
                 letter ? "set label 'M' at screen 0.3,0.5\n" : "");
         fflush(script);
@@ -44,6 +44,7 @@ static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, 
                                        .out_fd = fileno(out),
                                        .time_limit_s = TIME_LIMIT_S},
                         e);
+        rewind(out);
         *bytes = s == TACET_OK ? fread(picture, 1, PROBE_MOST, out) : 0;
     }
     if (script) fclose(script);
@@ -61,7 +62,7 @@ static tacet_status check_png(FILE *f, tacet_error *e)
         tacet_status s = probe(k, picture[k], &bytes[k], e);
         if (s != TACET_OK) return s;
     }
-    if (bytes[0] == bytes[1] && memcmp(picture[0], picture[1], bytes[0]) == 0)
+    if (bytes[0] == 0 || (bytes[0] == bytes[1] && memcmp(picture[0], picture[1], bytes[0]) == 0))
         return tacet_fail(e, TACET_OUTSIDE_WORLD,
                           "PNG drawings need a font (such as fonts-dejavu-core); SVG does not");
     return TACET_OK;

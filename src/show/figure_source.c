@@ -64,4 +64,3 @@ size_t figure_pick_largest(size_t n, const double *weight, size_t most, bool *pi
     }
     return count;
 }
-

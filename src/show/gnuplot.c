@@ -183,16 +183,15 @@ tacet_status gnuplot_run(const gnuplot_job *job, tacet_error *e)
     descriptors d = {high_copy(job->out_fd), high_copy(ends[1]), high_copy(job->folder_fd),
                      job->script ? -1 : high_copy(job->script_fd)};
     close(ends[1]);
-    int bad = d.out < 0 || d.error < 0
-                  ? EMFILE
-                  : start(job->script ? job->script : "/dev/fd/3", d, &child);
+    int bad = d.out < 0 || d.error < 0 ? EMFILE
+                                       : start(job->script ? job->script : "/dev/fd/3", d, &child);
     close_copies(d);
     if (bad) {
         close(ends[0]);
-        return bad == ENOENT ? tacet_fail(e, TACET_OUTSIDE_WORLD,
-                                          "drawings need gnuplot, which is not installed")
-                             : tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s",
-                                          strerror(bad));
+        return bad == ENOENT
+                   ? tacet_fail(e, TACET_OUTSIDE_WORLD,
+                                "drawings need gnuplot, which is not installed")
+                   : tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s", strerror(bad));
     }
     int result = 0;
     bool done = listen_until(ends[0], end_s, said, sizeof said);

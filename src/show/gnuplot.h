@@ -3,8 +3,8 @@
 #define SHOW_GNUPLOT_H
 #include "tacet/base.h"
 
-// One run: `gnuplot -d script`, no shell, standard input from /dev/null, a small environment, its own
-// process group, killed after time_limit_s.
+// One run: `gnuplot -d script`, no shell, standard input from /dev/null, a small environment, its
+// own process group, killed after time_limit_s.
 typedef struct {
     int folder_fd;      // directory it runs in; -1: ours
     const char *script; // a fixed name of ours in that directory; NULL: read from script_fd

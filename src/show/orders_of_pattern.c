@@ -116,4 +116,3 @@ tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_
         .n_modes = n_modes};
     return out->subtitle ? TACET_OK : figure_no_memory(e);
 }
-
