@@ -36,7 +36,7 @@ static unsigned colour_of(tacet_mark mark, double margin_db, double reserve_db)
     case TACET_MARK_OVER:
         return mix((rgb){0x3b, 0x0f, 0x3f}, (rgb){0xb9, 0x3a, 0x4c}, 1 - (m + 1) / MARGIN_LOW);
     case TACET_MARK_NEAR:
-        return mix((rgb){0xee, 0x9b, 0x3a}, (rgb){0xf7, 0xcc, 0x80},
+        return mix((rgb){0xee, 0x9b, 0x3a}, (rgb){0xf3, 0xb8, 0x5f},
                    reserve_db > 1 ? m / (reserve_db - 1) : 0);
     case TACET_MARK_CLEAR:
         return mix((rgb){0xcd, 0xe1, 0xec}, (rgb){0xf0, 0xf6, 0xfa},
