@@ -32,6 +32,7 @@ typedef struct {
     bool text;               // cells hold text, not numbers
     int decimals;            // of numbers in the text form; -1: four significant digits
     bool data_only;          // left out of the text form
+    const char *head;        // name in the text form; NULL: as `name`
 } tacet_table_column;
 typedef struct {
     double number;    // NAN: absent (another column of the row says why)
@@ -230,7 +231,7 @@ const tacet_drawing_format *tacet_drawing_format_find(const char *name);
 
 typedef struct {
     const tacet_drawing_format *format; // svg
-    double time_limit_s; // 30, then gnuplot is killed; 0: only the script is written
+    double time_limit_s;                // 30, then gnuplot is killed; 0: only the script is written
 } tacet_draw_how;
 tacet_draw_how tacet_draw_default(void);
 // The gnuplot script of a figure with its data, whole in itself: `gnuplot script > drawing`.

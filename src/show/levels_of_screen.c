@@ -4,16 +4,16 @@
 #include <string.h>
 
 static const tacet_table_column own[] = {
-    {"candidate", NULL, true, 0, false},
-    {"placement", NULL, false, 0, false}, // from 1
-    {"extra_speed", NULL, true, 0, false},
+    {"candidate", NULL, true, 0, false, NULL},
+    {"placement", NULL, false, 0, false, NULL}, // from 1
+    {"extra_speed", NULL, true, 0, false, NULL},
 };
 // Columns of a limit; a band's come from tacet_band_columns.
 static const tacet_table_column of_limit[] = {
-    {"value", NULL, false, -1, false},
-    {"margin_db", NULL, false, 1, false},
-    {"verdict", NULL, true, 0, false},
-    {"why", NULL, true, 0, false},
+    {"value", NULL, false, -1, false, NULL},
+    {"margin_db", NULL, false, 1, false, NULL},
+    {"verdict", NULL, true, 0, false, NULL},
+    {"why", NULL, true, 0, false, NULL},
 };
 #define N_OWN      (sizeof own / sizeof *own)
 #define N_OF_LIMIT (sizeof of_limit / sizeof *of_limit)

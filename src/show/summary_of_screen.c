@@ -142,7 +142,7 @@ static void what_limits(summary *y)
         add(y, &text, screen_text(y->a, "%s %s (%zu)", k ? "," : "", name, count[best]));
         count[best] = 0;
     }
-    add(y, &text, screen_text(y->a, ", of %zu conditions that are near or over.", n));
+    add(y, &text, screen_text(y->a, " of the %zu conditions that are near or over.", n));
     say(y, text);
 }
 

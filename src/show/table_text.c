@@ -27,12 +27,17 @@ static const char *cell_text(const view *v, size_t row, size_t i, char number[TA
     return isfinite(cell->number) ? text_fixed(cell->number, column->decimals, number) : "-";
 }
 
+static const char *head_of(const tacet_table_column *column)
+{
+    return column->head ? column->head : column->name;
+}
+
 static void measure(view *v)
 {
     for (size_t i = 0; i < v->n; i++) {
         const tacet_table_column *column = &v->t->columns[v->column[i]];
         size_t unit = column->unit ? text_columns(column->unit) : 0;
-        v->width[i] = text_columns(column->name);
+        v->width[i] = text_columns(head_of(column));
         if (unit > v->width[i]) v->width[i] = unit;
         for (size_t r = 0; r < v->n_rows; r++) {
             char number[TACET_NUMBER_TEXT];
@@ -73,7 +78,7 @@ static void head(const view *v)
     bool any_unit = false;
     for (size_t i = 0; i < v->n; i++) {
         const tacet_table_column *column = &v->t->columns[v->column[i]];
-        name[i] = column->name;
+        name[i] = head_of(column);
         unit[i] = column->unit ? column->unit : "";
         any_unit |= column->unit != NULL;
     }

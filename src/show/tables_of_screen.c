@@ -12,14 +12,14 @@ static double speed_of_rank(const tacet_screen *s, size_t rank)
 // ---- runs
 
 static const tacet_table_column runs_columns[] = {
-    {"from_rpm", NULL, false, -1, false},
-    {"to_rpm", NULL, false, -1, false},
-    {"run", NULL, true, 0, false},
-    {"word", NULL, true, 0, false},
-    {"saving_percent", NULL, false, 1, false},
-    {"least_margin_db", NULL, false, 1, false},
-    {"limited_by", NULL, true, 0, false},
-    {"at_order", NULL, false, -1, false},
+    {"from_rpm", "rpm", false, -1, false, "from"},
+    {"to_rpm", "rpm", false, -1, false, "to"},
+    {"run", NULL, true, 0, false, NULL},
+    {"word", NULL, true, 0, false, NULL},
+    {"saving_percent", "%", false, 1, false, "saves"},
+    {"least_margin_db", "dB", false, 1, false, "margin"},
+    {"limited_by", NULL, true, 0, false, "limited by"},
+    {"at_order", NULL, false, -1, false, "order"},
 };
 
 // Mean saving of a run and its cell with the smallest margin.
@@ -77,25 +77,25 @@ tacet_status screen_runs_table(const tacet_model *m, const tacet_screen *s, tace
 // ---- summary
 
 static const tacet_table_column summary_columns[] = {
-    {"candidate", NULL, true, 0, false},
-    {"word", NULL, true, 0, false},
-    {"density", NULL, false, -1, true},
-    {"placements", NULL, false, 0, true},
-    {"placements_left_out", NULL, false, 0, true},
-    {"clear", NULL, false, 0, false},
-    {"near", NULL, false, 0, false},
-    {"over", NULL, false, 0, false},
-    {"unreachable", NULL, false, 0, false},
-    {"no_verdict", NULL, false, 0, true},
-    {"best_at", NULL, false, 0, true},
-    {"clear_from_rpm", NULL, false, -1, false},
-    {"clear_to_rpm", NULL, false, -1, false},
-    {"clear_rpm", NULL, false, -1, true},
-    {"saving_percent", NULL, false, 1, false},
-    {"limited_by", NULL, true, 0, false},
-    {"limiting_order", NULL, false, -1, false},
-    {"recommended", NULL, true, 0, true},
-    {"note", NULL, true, 0, false},
+    {"candidate", NULL, true, 0, false, NULL},
+    {"word", NULL, true, 0, false, NULL},
+    {"density", NULL, false, -1, true, NULL},
+    {"placements", NULL, false, 0, true, NULL},
+    {"placements_left_out", NULL, false, 0, true, NULL},
+    {"clear", NULL, false, 0, false, NULL},
+    {"near", NULL, false, 0, false, NULL},
+    {"over", NULL, false, 0, false, NULL},
+    {"unreachable", NULL, false, 0, false, "out of reach"},
+    {"no_verdict", NULL, false, 0, true, NULL},
+    {"best_at", NULL, false, 0, true, NULL},
+    {"clear_from_rpm", "rpm", false, -1, false, "from"},
+    {"clear_to_rpm", "rpm", false, -1, false, "to"},
+    {"clear_rpm", "rpm", false, -1, true, NULL},
+    {"saving_percent", "%", false, 1, false, "saves"},
+    {"limited_by", NULL, true, 0, false, "limited by"},
+    {"limiting_order", NULL, false, -1, false, "order"},
+    {"recommended", NULL, true, 0, true, NULL},
+    {"note", NULL, true, 0, false, NULL},
 };
 
 static const char *limiting_name(const tacet_model *m, const tacet_candidate_note *note)
@@ -145,21 +145,21 @@ tacet_status screen_summary_table(const tacet_model *m, const tacet_screen *s, t
 // ---- ranking
 
 static const tacet_table_column ranking_columns[] = {
-    {"speed_rpm", NULL, false, -1, false},
-    {"demand_nm", NULL, false, -1, false},
-    {"status", NULL, true, 0, false},
-    {"run", NULL, true, 0, false},
-    {"word", NULL, true, 0, false},
-    {"verdict", NULL, true, 0, true},
-    {"margin_db", NULL, false, 1, false},
-    {"limited_by", NULL, true, 0, false},
-    {"at_order", NULL, false, -1, false},
-    {"fuel_kg_per_h", NULL, false, -1, false},
-    {"saving_percent", NULL, false, 1, false},
-    {"next", NULL, true, 0, false},
-    {"next_verdict", NULL, true, 0, false},
-    {"next_margin_db", NULL, false, 1, false},
-    {"next_saving_percent", NULL, false, 1, false},
+    {"speed_rpm", "rpm", false, -1, false, "speed"},
+    {"demand_nm", "N m", false, -1, false, "torque"},
+    {"status", NULL, true, 0, false, NULL},
+    {"run", NULL, true, 0, false, NULL},
+    {"word", NULL, true, 0, false, NULL},
+    {"verdict", NULL, true, 0, true, NULL},
+    {"margin_db", "dB", false, 1, false, "margin"},
+    {"limited_by", NULL, true, 0, false, "limited by"},
+    {"at_order", NULL, false, -1, false, "order"},
+    {"fuel_kg_per_h", "kg/h", false, -1, false, "fuel"},
+    {"saving_percent", "%", false, 1, false, "saves"},
+    {"next", NULL, true, 0, false, NULL},
+    {"next_verdict", NULL, true, 0, false, "is"},
+    {"next_margin_db", "dB", false, 1, false, "margin"},
+    {"next_saving_percent", "%", false, 1, false, "saves"},
 };
 
 static void ranked_cell(const tacet_model *m, const tacet_screen *s, size_t cell, table_row *row)
@@ -225,10 +225,14 @@ tacet_status screen_ranking_table(const tacet_model *m, const tacet_screen *s, t
 // ---- no-go ranges
 
 static const tacet_table_column no_go_columns[] = {
-    {"candidate", NULL, true, 0, false}, {"band", NULL, true, 0, false},
-    {"from_rpm", NULL, false, 1, false}, {"to_rpm", NULL, false, 1, false},
-    {"open", NULL, true, 0, false},      {"worst_margin_db", NULL, false, 1, false},
-    {"at_rpm", NULL, false, 0, false},   {"leading_order", NULL, false, -1, false},
+    {"candidate", NULL, true, 0, false, NULL},
+    {"band", NULL, true, 0, false, NULL},
+    {"from_rpm", "rpm", false, 1, false, "from"},
+    {"to_rpm", "rpm", false, 1, false, "to"},
+    {"open", NULL, true, 0, false, NULL},
+    {"worst_margin_db", "dB", false, 1, false, "worst"},
+    {"at_rpm", "rpm", false, 0, false, "at"},
+    {"leading_order", NULL, false, -1, false, "order"},
 };
 
 tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
@@ -256,11 +260,16 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
 // ---- agreement of the solvers
 
 static const tacet_table_column agreement_columns[] = {
-    {"candidate", NULL, true, 0, false},    {"word", NULL, true, 0, false},
-    {"speed_rpm", NULL, false, -1, false},  {"margin_db", NULL, false, 1, false},
-    {"same_model", NULL, false, -1, false}, {"full_model_db", NULL, false, 3, false},
-    {"repeats", NULL, false, 0, false},     {"evaluations", NULL, false, 0, false},
-    {"closure", NULL, false, -1, true},     {"status", NULL, true, 0, false},
+    {"candidate", NULL, true, 0, false, NULL},
+    {"word", NULL, true, 0, false, NULL},
+    {"speed_rpm", "rpm", false, -1, false, "speed"},
+    {"margin_db", "dB", false, 1, false, "margin"},
+    {"same_model", NULL, false, -1, false, "same model"},
+    {"full_model_db", "dB", false, 3, false, "full model"},
+    {"repeats", NULL, false, 0, false, NULL},
+    {"evaluations", NULL, false, 0, false, NULL},
+    {"closure", NULL, false, -1, true, NULL},
+    {"status", NULL, true, 0, false, NULL},
 };
 
 tacet_status screen_agreement_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,

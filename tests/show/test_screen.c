@@ -130,7 +130,7 @@ static void test_summary_lines(void **state)
         "Run all cylinders at 900 rpm, nothing clear at 925 rpm, 1/2 at 950-1000 rpm.",
         "Saves 7.0 % of the fuel against all cylinders firing at equal torque, mean of 4 speeds; "
         "most at 975 rpm, 12.5 %.",
-        "Limits: pump coupling (4), of 4 conditions that are near or over.",
+        "Limits: pump coupling (4) of the 4 conditions that are near or over.",
         "At 1 of 5 speeds nothing is clear, all cylinders included.",
         "1 of 2 checks by the second solver did not settle.",
         "1 of 4 candidates were not screened; the table says why.",

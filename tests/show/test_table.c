@@ -11,9 +11,9 @@
 #include <unistd.h>
 
 static const tacet_table_column columns[] = {
-    {"name", NULL, true, 0, false},       {"speed_rpm", "rpm", false, 0, false},
-    {"margin_db", "dB", false, 1, false}, {"hidden", NULL, false, -1, true},
-    {"why", NULL, true, 0, false},
+    {"name", NULL, true, 0, false, NULL},       {"speed_rpm", "rpm", false, 0, false, NULL},
+    {"margin_db", "dB", false, 1, false, NULL}, {"hidden", NULL, false, -1, true, NULL},
+    {"why", NULL, true, 0, false, NULL},
 };
 #define N (sizeof columns / sizeof *columns)
 static const tacet_table_cell cells[] = {
