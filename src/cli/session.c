@@ -1,0 +1,49 @@
+// A study at work: read, assembled, prepared.
+#include "cli/cli.h"
+#include <string.h>
+
+const char *cli_study_name(const char *path)
+{
+    return strcmp(path, "-") == 0 ? "standard input" : path;
+}
+
+const char *cli_title(const cli_session *s)
+{
+    return s->study->title && *s->study->title ? s->study->title : "untitled study";
+}
+
+static int read_study(const char *path, cli_session *s)
+{
+    tacet_status status = tacet_study_read(path, s->problems, &s->study);
+    cli_say_problems(s->problems);
+    if (status == TACET_OK) return CLI_DONE;
+    size_t n = tacet_problems_errors(s->problems);
+    if (n == 0) return cli_failed(status, NULL);
+    if (status == TACET_BAD_INPUT)
+        cli_say("%s: %zu error%s, nothing was done", cli_study_name(path), n, n == 1 ? "" : "s");
+    return cli_exit_of(status);
+}
+
+int cli_open(const char *path, cli_depth depth, cli_session *s)
+{
+    tacet_error e = {.text = ""};
+    *s = (cli_session){.problems = tacet_problems_create(), .arena = tacet_arena_create()};
+    if (!s->problems || !s->arena) return cli_failed(TACET_NO_MEMORY, NULL);
+    int code = read_study(path, s);
+    if (code != CLI_DONE || depth == CLI_READ) return code;
+    tacet_status status = tacet_model_create(s->study, &s->model, &e);
+    if (status == TACET_OK && depth == CLI_PREPARED) {
+        status = tacet_model_prepare(s->model, &e);
+        if (status == TACET_OK) status = tacet_workspace_create(s->model, &s->work);
+    }
+    return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
+}
+
+void cli_close(cli_session *s)
+{
+    tacet_workspace_destroy(s->work);
+    tacet_model_destroy(s->model);
+    tacet_study_destroy(s->study);
+    tacet_arena_destroy(s->arena);
+    tacet_problems_destroy(s->problems);
+}
