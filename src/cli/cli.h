@@ -137,18 +137,32 @@ void cli_close(cli_session *s);
 const char *cli_title(const cli_session *s);
 const char *cli_study_name(const char *path); // "-" reads as "standard input"
 
-// Rolls that a call means by --density or --pattern, or by a study's candidate.
+// What a call means by --density or --pattern.
 typedef struct {
-    const char *name;  // "3/7", or the word, or its name in a book
-    tacet_roll **roll; // [n], the placements
+    tacet_candidate *all;
     size_t n;
-} cli_pattern;
-// --pattern WORD|BOOK:NAME (one placement) or --density K/L (all placements of the even word).
-int cli_pattern_of(const cli_call *call, const cli_session *s, cli_pattern *out);
-void cli_pattern_clear(cli_pattern *p);
-// One density or word on n cylinders.
-int cli_pattern_of_text(const char *text, unsigned cylinders, unsigned strokes, tacet_arena *a,
-                        cli_pattern *out);
+    const tacet_candidate *it; // among them
+} cli_candidate;
+// --density K/L (all placements of the even word), or --pattern WORD|BOOK.words:NAME, or the name
+// of one of the study's own patterns.
+int cli_candidate_of(const cli_call *call, const cli_session *s, cli_candidate *out);
+void cli_candidate_clear(cli_candidate *c);
+
+// ---- criticals
+// An order that matters to a study: fires per revolution of a density, or a multiple of all-fire's.
+typedef struct {
+    double order;
+    const char *order_text, *of; // "9/7", "3/7"
+} cli_order;
+// Rising, each once, in the session's arena. CLI_DONE or another exit code.
+int cli_leading_orders(const cli_session *s, cli_order **out, size_t *n);
+// rpm at which an order meets a frequency; NAN outside the screened speeds.
+double cli_critical_rpm(const cli_session *s, double order, double hz);
+double cli_rpm(double speed_rad_per_s); // without the rounding of the way there and back
+void cli_screened_rpm(const cli_session *s, double range[2]);
+
+// tacet modes --response NODE.
+int cli_response(const cli_call *call, const cli_session *s, const char *node);
 
 // ---- signals
 // From here on the first SIGINT or SIGTERM only sets what cli_stop points at; the second ends the

@@ -1,0 +1,40 @@
+// One condition in full: what tacet point finds and how it is written. Private to cli.
+#ifndef CLI_POINT_H
+#define CLI_POINT_H
+#include "cli/cli.h"
+
+typedef struct { // lines of one quantity, of the condition and of all-fire
+    tacet_quantity_ref of;
+    const char *name; // "link-torque:coupling"
+    bool reference;   // all-fire is known
+    double mean, pp, reference_mean, reference_pp;
+    size_t n;
+    double *order, *amplitude, *phase_deg; // [n]; amplitude: peak
+    double *reference_amplitude;           // [n]; 0: all-fire has no such order
+} point_quantity;
+
+typedef struct {
+    const cli_call *call;
+    const cli_session *s;
+    const tacet_candidate *candidate;
+    tacet_level level;
+    size_t placement; // the worst one
+    tacet_condition condition;
+    tacet_row row, all_fire;
+    point_quantity *quantity; // what bands and limits judge, and roll torque
+    size_t n_quantities;      // 0: not solved
+    bool refereed;
+    tacet_status referee_status;
+    tacet_agreement agreement;
+} point;
+
+// Solves every placement and keeps the worst, with the lines of every quantity beside all-fire's.
+int point_solve(point *p);
+int point_write_text(const point *p);
+int point_write_csv(const point *p); // a line of a quantity a row
+int point_write_json(const point *p, FILE *to);
+const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows); // most 0: all
+int point_save(point *p, const char *path); // drawings, lines.csv, point.json into a folder
+const char *point_headline(const point *p);
+
+#endif
