@@ -269,8 +269,10 @@ TACET_USE tacet_status tacet_screen_json(tacet_json *j, const tacet_model *m,
                                          const tacet_screen *s);
 // Members of one condition into an open object: "speed_rpm", "demand_nm", "outcome", "duty",
 // "solver", "verdict", "bands", "limits".
+// With how well the solvers agree on it, or why that is not known; both NULL: the members are left
+// out.
 void tacet_row_json(tacet_json *j, const tacet_model *m, const tacet_condition *c,
-                    const tacet_row *r);
+                    const tacet_row *r, const tacet_agreement *agreement, const char *why_none);
 
 // ---- of a screen: figures
 TACET_USE tacet_status tacet_map_of_screen(const tacet_model *m, const tacet_screen *s,

@@ -2,18 +2,23 @@
 #include "cli/cli.h"
 #include <string.h>
 
-static int create(const cli_session *s, const tacet_study *asked, cli_candidate *out)
+static int create(const cli_session *s, const tacet_study *asked, tacet_candidate **out, size_t *n)
 {
     tacet_error e = {.text = ""};
     tacet_problems *p = tacet_problems_create();
     if (!p) return cli_failed(TACET_NO_MEMORY, NULL);
-    tacet_status status = tacet_candidates_create(asked, tacet_model_engine(s->model), s->arena, p,
-                                                  &out->all, &out->n, &e);
+    tacet_status status =
+        tacet_candidates_create(asked, tacet_model_engine(s->model), s->arena, p, out, n, &e);
     cli_say_problems(p);
     bool said = tacet_problems_errors(p) > 0;
     tacet_problems_destroy(p);
     if (status == TACET_OK) return CLI_DONE;
     return said ? cli_exit_of(status) : cli_failed(status, &e);
+}
+
+int cli_study_candidates(const cli_session *s, tacet_candidate **out, size_t *n)
+{
+    return create(s, s->study, out, n);
 }
 
 // The study's own screen, but for one density and the word or book that is asked for.
@@ -27,7 +32,7 @@ static int create_one(const cli_session *s, const char *density, const char *pat
     asked.screen.n_patterns = pattern ? 1 : 0;
     asked.folder = NULL; // a book on the command line is relative to the working folder
     asked.path = "--pattern";
-    return create(s, &asked, out);
+    return create(s, &asked, &out->all, &out->n);
 }
 
 static int not_found(const char *name, const cli_candidate *c)
@@ -51,7 +56,7 @@ static int of_pattern(const cli_session *s, const char *text, cli_candidate *out
         code = create_one(s, "1", text, out); // all-fire first, then what is asked for
         out->it = code == CLI_DONE && out->n == 2 ? &out->all[1] : NULL;
     } else {
-        code = create(s, s->study, out);
+        code = cli_study_candidates(s, &out->all, &out->n);
         for (size_t i = 0; code == CLI_DONE && i < out->n; i++)
             if (strcmp(out->all[i].name, text) == 0) out->it = &out->all[i];
     }

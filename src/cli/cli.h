@@ -133,10 +133,13 @@ typedef struct {
 // Reads a study ("-": standard input), says its problems and goes on to the depth wanted.
 // CLI_DONE, or another exit code with the reason said; cli_close either way.
 int cli_open(const char *path, cli_depth depth, cli_session *s);
+int cli_deepen(cli_session *s, cli_depth depth); // from CLI_READ on
 void cli_close(cli_session *s);
 const char *cli_title(const cli_session *s);
 const char *cli_study_name(const char *path); // "-" reads as "standard input"
 
+// What a screen of the study would try; problems are said. To be freed by tacet_candidates_destroy.
+int cli_study_candidates(const cli_session *s, tacet_candidate **out, size_t *n);
 // What a call means by --density or --pattern.
 typedef struct {
     tacet_candidate *all;
@@ -163,6 +166,18 @@ void cli_screened_rpm(const cli_session *s, double range[2]);
 
 // tacet modes --response NODE.
 int cli_response(const cli_call *call, const cli_session *s, const char *node);
+
+// Opens a result folder, unless it holds the file `foreign` of another command's results.
+int cli_folder(const char *path, const char *foreign, tacet_folder **out);
+
+// ---- progress: nothing unless standard error is a terminal
+typedef struct {
+    bool on, shown;
+    double last_s;
+} cli_progress;
+cli_progress cli_progress_start(void);
+void cli_progress_step(void *progress, size_t done, size_t of);
+void cli_progress_end(cli_progress *p); // clears the line
 
 // ---- signals
 // From here on the first SIGINT or SIGTERM only sets what cli_stop points at; the second ends the

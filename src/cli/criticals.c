@@ -47,16 +47,10 @@ static cli_order of_fires(const cli_session *s, unsigned fires, unsigned revolut
 
 static int of_candidates(const cli_session *s, cli_order **out, size_t *n, unsigned multiples)
 {
-    tacet_error e = {.text = ""};
     tacet_candidate *c = NULL;
     size_t n_candidates = 0;
-    tacet_problems *p = tacet_problems_create();
-    if (!p) return cli_failed(TACET_NO_MEMORY, NULL);
-    tacet_status status = tacet_candidates_create(s->study, tacet_model_engine(s->model), s->arena,
-                                                  p, &c, &n_candidates, &e);
-    cli_say_problems(p);
-    tacet_problems_destroy(p);
-    if (status != TACET_OK) return cli_failed(status, &e);
+    int code = cli_study_candidates(s, &c, &n_candidates);
+    if (code != CLI_DONE) return code;
     *out = tacet_arena_alloc(s->arena, (n_candidates + multiples) * sizeof **out);
     for (size_t i = 0; *out && i < n_candidates; i++)
         if (!c[i].refused)

@@ -4,19 +4,13 @@
 
 static int of_study(const cli_call *call, const cli_session *s)
 {
-    tacet_error e = {.text = ""};
     tacet_candidate *c = NULL;
     size_t n = 0;
-    tacet_problems *p = tacet_problems_create();
-    if (!p) return cli_failed(TACET_NO_MEMORY, NULL);
-    tacet_status status =
-        tacet_candidates_create(s->study, tacet_model_engine(s->model), s->arena, p, &c, &n, &e);
-    cli_say_problems(p);
-    tacet_problems_destroy(p);
-    if (status != TACET_OK) return cli_failed(status, &e);
+    int code = cli_study_candidates(s, &c, &n);
+    if (code != CLI_DONE) return code;
     pattern_list l = {.call = call, .arena = s->arena, .study = s->study};
     l.entry = tacet_arena_alloc(s->arena, (n + 1) * sizeof *l.entry);
-    int code = l.entry ? CLI_DONE : cli_failed(TACET_NO_MEMORY, NULL);
+    code = l.entry ? CLI_DONE : cli_failed(TACET_NO_MEMORY, NULL);
     for (size_t i = 0; l.entry && i < n; i++) {
         if (c[i].refused)
             cli_say("%s (%s) cannot run on this engine: %s", c[i].name, c[i].word, c[i].refused);

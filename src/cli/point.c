@@ -26,7 +26,7 @@ static int read_condition(const cli_call *call, point *p)
     return code;
 }
 
-static int write(point *p)
+static int write_out(point *p)
 {
     if (cli_given(p->call, "json")) return point_write_json(p, stdout);
     return cli_given(p->call, "csv") ? point_write_csv(p) : point_write_text(p);
@@ -55,7 +55,7 @@ static int solve(const cli_call *call, const cli_session *s)
         p.refereed = true;
         p.referee_status = tacet_solve_referee(s->model, &p.condition, s->work, &p.agreement);
     }
-    if (code == CLI_DONE) code = write(&p);
+    if (code == CLI_DONE) code = write_out(&p);
     if (code == CLI_DONE && cli_given(call, "output"))
         code = point_save(&p, cli_value(call, "output"));
     if (code == CLI_DONE || code == CLI_OUTSIDE_WORLD) code = cli_worse(code, answer(&p));

@@ -1,7 +1,7 @@
 // How tacet point writes its condition as JSON, and its folder.
 #include "cli/point.h"
 #include <math.h>
-#include <unistd.h>
+#include <string.h>
 
 static void put_pattern(tacet_json *j, const point *p)
 {
@@ -54,7 +54,7 @@ int point_write_json(const point *p, FILE *to)
     const char *why = !p->refereed ? "not asked for" : "the march did not settle";
     tacet_json_head(&j, "point", p->s->study, p->row.outcome == TACET_FAILED ? "failed" : "ok");
     put_pattern(&j, p);
-    tacet_row_json_with(&j, p->s->model, &p->condition, &p->row, a, why);
+    tacet_row_json(&j, p->s->model, &p->condition, &p->row, a, why);
     put_quantities(&j, p);
     return cli_end_json(&j);
 }

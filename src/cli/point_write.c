@@ -1,6 +1,7 @@
 // How tacet point writes its condition as text and CSV.
 #include "cli/point.h"
 #include <math.h>
+#include <string.h>
 
 #define LINES_SHOWN 6
 

@@ -1,6 +1,7 @@
 // A study at work: read, assembled, prepared.
 #include "cli/cli.h"
 #include <string.h>
+#include <unistd.h>
 
 const char *cli_study_name(const char *path)
 {
@@ -24,19 +25,24 @@ static int read_study(const char *path, cli_session *s)
     return cli_exit_of(status);
 }
 
-int cli_open(const char *path, cli_depth depth, cli_session *s)
+int cli_deepen(cli_session *s, cli_depth depth)
 {
     tacet_error e = {.text = ""};
-    *s = (cli_session){.problems = tacet_problems_create(), .arena = tacet_arena_create()};
-    if (!s->problems || !s->arena) return cli_failed(TACET_NO_MEMORY, NULL);
-    int code = read_study(path, s);
-    if (code != CLI_DONE || depth == CLI_READ) return code;
-    tacet_status status = tacet_model_create(s->study, &s->model, &e);
+    tacet_status status = TACET_OK;
+    if (depth >= CLI_ASSEMBLED && !s->model) status = tacet_model_create(s->study, &s->model, &e);
     if (status == TACET_OK && depth == CLI_PREPARED) {
         status = tacet_model_prepare(s->model, &e);
         if (status == TACET_OK) status = tacet_workspace_create(s->model, &s->work);
     }
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
+}
+
+int cli_open(const char *path, cli_depth depth, cli_session *s)
+{
+    *s = (cli_session){.problems = tacet_problems_create(), .arena = tacet_arena_create()};
+    if (!s->problems || !s->arena) return cli_failed(TACET_NO_MEMORY, NULL);
+    int code = read_study(path, s);
+    return code == CLI_DONE ? cli_deepen(s, depth) : code;
 }
 
 void cli_close(cli_session *s)
@@ -46,4 +52,17 @@ void cli_close(cli_session *s)
     tacet_study_destroy(s->study);
     tacet_arena_destroy(s->arena);
     tacet_problems_destroy(s->problems);
+}
+
+int cli_folder(const char *path, const char *foreign, tacet_folder **out)
+{
+    char name[4200];
+    tacet_error e = {.text = ""};
+    snprintf(name, sizeof name, "%s/%s", path, foreign);
+    if (access(name, F_OK) == 0)
+        return cli_wrong("folder %s holds the results of another command (%s); give an empty or a "
+                         "new folder",
+                         path, foreign);
+    tacet_status status = tacet_folder_open(path, out, &e);
+    return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }

@@ -13,7 +13,7 @@
 static const char *const names[] = {
     "summary.txt",   "runs.csv",        "screen.json", "summary.csv",  "ranking.csv",
     "no-go.csv",     "agreement.csv",   "levels.csv",  DRAWING("map"), DRAWING("orders"),
-    DRAWING("bars"), DRAWING("repeat"), NULL};
+    DRAWING("bars"), DRAWING("repeat"), "lines.csv",   "point.json",   NULL};
 #define N_NAMES (sizeof names / sizeof *names - 1)
 
 struct tacet_folder {

@@ -87,8 +87,15 @@ static void put_limits(tacet_json *j, source s)
     tacet_json_end_array(j);
 }
 
+static void put_agreement(tacet_json *j, const tacet_agreement *a, const char *why_none)
+{
+    tacet_json_put_number(j, "same_model", a ? a->same_model : NAN);
+    tacet_json_put_number(j, "full_model_db", a ? a->full_model_db : NAN);
+    tacet_json_put_text(j, "agreement_why", a ? "" : why_none);
+}
+
 void tacet_row_json(tacet_json *j, const tacet_model *m, const tacet_condition *c,
-                    const tacet_row *r)
+                    const tacet_row *r, const tacet_agreement *agreement, const char *why_none)
 {
     source s = {m, c, r};
     put_columns(j, s, NULL);
@@ -103,6 +110,7 @@ void tacet_row_json(tacet_json *j, const tacet_model *m, const tacet_condition *
     tacet_json_key(j, "solver");
     tacet_json_begin_object(j);
     put_columns(j, s, solver_names);
+    if (agreement || why_none) put_agreement(j, agreement, why_none);
     tacet_json_end_object(j);
     put_bands(j, s);
     put_limits(j, s);
@@ -118,7 +126,7 @@ static void put_conditions(tacet_json *j, const tacet_model *m, const tacet_scre
         tacet_json_put_text(j, "candidate", screen_candidate(s, i)->name);
         tacet_json_put_count(j, "placement", s->cells[i].placement + 1);
         tacet_json_put_bool(j, "extra_speed", s->cells[i].extra);
-        tacet_row_json(j, m, &c, &s->cells[i].row);
+        tacet_row_json(j, m, &c, &s->cells[i].row, NULL, NULL);
         tacet_json_end_object(j);
     }
     tacet_json_end_array(j);
