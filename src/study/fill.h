@@ -68,6 +68,7 @@ const char *range_text(const tacet_field *field, char out[RANGE_TEXT]); // "20 t
 const char *unit_text(const char *unit, char out[32]);
 // Names between commas into out, cut with ".." where it is full.
 const char *joined(const char *const *names, size_t n, char *out, size_t bytes);
-// "1.5" when a decimal comma may have split a number of this node in two; else NULL.
-const char *decimal_comma(const tree_node *node, char out[SHOWN_TEXT]);
+// "1.5" when a decimal comma seems to have split a number of this node in two, else NULL. A list of
+// which it is not known that it holds too_many must have commas with and without blanks.
+const char *decimal_comma(const tree_node *node, bool too_many, char out[SHOWN_TEXT]);
 #endif

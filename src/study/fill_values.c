@@ -45,7 +45,7 @@ static void refuse_number(filler *f, const tacet_field *field, const tree_node *
     place at = node_place(node);
     needed(field, what, want);
     bool is_text = node->kind == TREE_TEXT;
-    const char *meant = is_text ? decimal_comma(node, point) : NULL;
+    const char *meant = is_text ? decimal_comma(node, false, point) : NULL;
     size_t number = is_text ? leading_number(node->text) : 0;
     if (node_is_nothing(node))
         fill_say(f, false, at, "%s has no value; %s", key, want);
@@ -110,7 +110,7 @@ static bool read_point(filler *f, const tacet_field *field, const tree_node *nod
     }
     if (node->n != 2) {
         char point[SHOWN_TEXT];
-        const char *meant = decimal_comma(node, point);
+        const char *meant = decimal_comma(node, node->n > 2, point);
         fill_say(f, false, at, "a point of %s holds %zu numbers; it is a pair [x%s, y%s]%s%s",
                  key_of(f), node->n, x_unit, y_unit,
                  meant ? "; numbers take a decimal point: " : "", meant ? meant : "");

@@ -86,20 +86,28 @@ static const char *comma_in_text(const char *text, char out[SHOWN_TEXT])
     return NULL;
 }
 
-const char *decimal_comma(const tree_node *node, char out[SHOWN_TEXT])
+// Do two neighbours stand on both sides of a comma without a blank, as in "1,5"?
+static bool tight(const tree_node *a, const tree_node *b)
+{
+    return a->line == b->line && b->column == a->column + (int)strlen(a->text) + 1;
+}
+
+const char *decimal_comma(const tree_node *node, bool too_many, char out[SHOWN_TEXT])
 {
     if (!node || node->kind == TREE_MAP) return NULL;
     if (node->kind == TREE_TEXT) return comma_in_text(node->text, out);
+    const tree_node *whole = NULL, *part = NULL;
+    bool loose = too_many;
     for (size_t i = 0; i + 1 < node->n; i++) {
         const tree_node *a = node->child[i], *b = node->child[i + 1];
-        if (a->kind != TREE_TEXT || b->kind != TREE_TEXT || a->quoted || b->quoted) continue;
-        size_t n = strlen(a->text), m = strlen(b->text);
-        bool close = a->line == b->line && b->column == a->column + (int)n + 1;
-        size_t sign = n > 0 && (*a->text == '-' || *a->text == '+');
-        if (!close || n + m > 30 || !all_digits(a->text + sign, n - sign) ||
-            !all_digits(b->text, m))
-            continue;
-        return tacet_text(out, SHOWN_TEXT, "%s.%s", a->text, b->text);
+        if (a->kind != TREE_TEXT || b->kind != TREE_TEXT || a->quoted || b->quoted) return NULL;
+        if (!tight(a, b)) loose = true;
+        size_t n = strlen(a->text), sign = n > 0 && (*a->text == '-' || *a->text == '+');
+        bool digits = n < 30 && all_digits(a->text + sign, n - sign) &&
+                      all_digits(b->text, strlen(b->text)) && strlen(b->text) < 30;
+        if (whole || !tight(a, b) || !digits) continue;
+        whole = a;
+        part = b;
     }
-    return NULL;
+    return whole && loose ? tacet_text(out, SHOWN_TEXT, "%s.%s", whole->text, part->text) : NULL;
 }

@@ -144,10 +144,11 @@ static tacet_status grow(frame *f)
     return TACET_OK;
 }
 
-static tacet_status take_key(reader *r, frame *f, tree_node *node)
+static tacet_status take_key(reader *r, frame *f, tree_node *node, bool alias)
 {
-    if (node->kind != TREE_TEXT)
-        return refuse(r, node->line, node->column, "a key must be a plain word");
+    if (alias || node->kind != TREE_TEXT)
+        return refuse(r, node->line, node->column, "a key must be a plain word%s",
+                      alias ? "; this one is used as a key by an alias" : "");
     if (strcmp(node->text, "<<") == 0 && !node->quoted)
         return refuse(r, node->line, node->column,
                       "'<<' has no meaning here: write the keys out, or give the whole map by an "
@@ -170,7 +171,7 @@ static tacet_status hang(reader *r, tree_node *node, bool alias)
     }
     frame *f = &r->open[r->depth - 1];
     f->node->weight += node->weight;
-    if (f->node->kind == TREE_MAP && !f->waiting) return take_key(r, f, node);
+    if (f->node->kind == TREE_MAP && !f->waiting) return take_key(r, f, node, alias);
     tacet_status status = grow(f);
     if (status) return status;
     f->child[f->n] = node;
@@ -351,11 +352,15 @@ static tacet_status explain(reader *r)
                           tree_yaml_words(p->problem), (int)p->context_mark.line + 1);
         return refuse(r, line, column, "%s", tree_yaml_words(p->problem));
     }
-    place_of_byte(r, p->problem_offset, &line, &column);
+    size_t byte = p->problem_offset;
+    if (p->problem && strstr(p->problem, "trailing")) // back to where the letter begins
+        while (byte > 0 && ((unsigned char)r->bytes[byte] & 0xC0) != 0xC0)
+            byte--;
+    place_of_byte(r, byte, &line, &column);
     if (p->problem && strstr(p->problem, "control"))
         return refuse(r, line, column, "%s", tree_yaml_words(p->problem));
     return refuse(r, line, column, "no UTF-8 text from here (byte 0x%02X); save the file as UTF-8",
-                  (unsigned)p->problem_value & 0xFF);
+                  byte < r->n_bytes ? (unsigned char)r->bytes[byte] : 0u);
 }
 
 static tacet_status read_events(reader *r)
