@@ -9,7 +9,7 @@ typedef struct {
     size_t n, room;
 } speeds;
 TACET_USE tacet_status speeds_add(speeds *s, double speed, tacet_arena *a);
-void speeds_sort(speeds *s); // rising, each once
+void speeds_sort(speeds *s); // rising, each once (positive speeds)
 
 // What one speed says of one candidate: per band the margin of the worst placement, dB; INFINITY:
 // no line, NAN: nothing known.

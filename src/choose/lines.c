@@ -124,9 +124,9 @@ static void drop_grid(speeds *s, const double *grid, size_t n_grid)
 {
     size_t n = 0, g = 0;
     for (size_t i = 0; i < s->n; i++) {
-        while (g < n_grid && grid[g] < s->at[i])
+        while (g < n_grid && grid[g] < s->at[i] * (1 - SAME_SPEED))
             g++;
-        if (g == n_grid || grid[g] != s->at[i]) s->at[n++] = s->at[i];
+        if (g == n_grid || grid[g] > s->at[i] * (1 + SAME_SPEED)) s->at[n++] = s->at[i];
     }
     s->n = n;
 }

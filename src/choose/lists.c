@@ -1,5 +1,6 @@
 // The room's growing lists. They live in an arena: an outgrown block stays until the arena goes.
 #include "internal.h"
+#include "rules.h"
 #include <math.h>
 #include <stdlib.h>
 #include <string.h>
@@ -37,7 +38,7 @@ void speeds_sort(speeds *s)
     qsort(s->at, s->n, sizeof *s->at, by_number);
     size_t n = 1;
     for (size_t i = 1; i < s->n; i++)
-        if (s->at[i] > s->at[n - 1]) s->at[n++] = s->at[i];
+        if (s->at[i] > s->at[n - 1] * (1 + SAME_SPEED)) s->at[n++] = s->at[i];
     s->n = n;
 }
 

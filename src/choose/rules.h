@@ -18,6 +18,9 @@
 // rounding, far below what an engine can hold.
 #define STEP_ASIDE_RPM 0.05
 
+// Two speeds nearer than this share are one: far above rounding, far below any step.
+#define SAME_SPEED 1e-9
+
 // Widest bracket of a no-go edge, rpm; the result is promised to 0.5.
 #define EDGE_RPM 0.1
 // Ranges closer than this are one, rpm.

@@ -205,7 +205,7 @@ static void test_small_savings(void **state)
     synthetic_destroy(s);
 }
 
-// Saving is a share of all-fire's fuel, 0.5 g/s here; without all-fire, of the other's own.
+// Saving is a share of all-fire's fuel; where that is not known, of the other's own.
 static void test_saving_without_reference(void **state)
 {
     (void)state;
@@ -222,6 +222,10 @@ static void test_saving_without_reference(void **state)
     cell_at(s, 0, 0)->row.duty.fuel_kg_per_s = 0.989e-3;
     judge(s, &rules);
     assert_int_equal(s->cells[s->ranks[0].best].candidate, 0);
+    set_fuel(cell_at(s, 1, 0), 0.600); // 0.9 % of all-fire, though 1.5 % of the other's own
+    set_fuel(cell_at(s, 0, 0), 0.591);
+    judge(s, &rules);
+    assert_int_equal(s->cells[s->ranks[0].best].candidate, 1);
     synthetic_destroy(s);
 }
 

@@ -143,6 +143,39 @@ static void test_same_again(void **state)
     tacet_screen_destroy(b);
 }
 
+static bool has_cell(const tacet_screen *s, size_t candidate, double rpm, bool extra)
+{
+    const tacet_candidate *c = &s->candidates[candidate];
+    size_t n = 0;
+    bool is_extra = false;
+    for (size_t i = 0; i < c->n_cells; i++) {
+        const tacet_cell *cell = &s->cells[c->first_cell + i];
+        if (fabs(cell->row.speed_rad_per_s / RPM - rpm) > 1e-6) continue;
+        is_extra = cell->extra;
+        n++;
+    }
+    return n == 1 && is_extra == extra;
+}
+
+// 3/7 on a six: order 6/7 leaves the roll band (18.9 Hz) at 1323 rpm and meets the mode (22 Hz) at
+// 1540 rpm, order 9/7 leaves the coupling band (27.81 Hz) at 1297.8 rpm; both sides of the edges
+// and the crossing are looked at, and a speed of the grid is not added again.
+static void test_extra_speeds(void **state)
+{
+    (void)state;
+    for (int on_grid = 0; on_grid < 2; on_grid++) {
+        struct tacet_model m = standin(on_grid ? 20 : 100, arena);
+        m.scale = 4;
+        tacet_screen *s = run(&m, NULL);
+        size_t c = find(s, "3/7");
+        assert_true(has_cell(s, c, 1323 - 0.05, true) && has_cell(s, c, 1323 + 0.05, true));
+        assert_true(has_cell(s, c, 1297.8 - 0.05, true) && has_cell(s, c, 1297.8 + 0.05, true));
+        assert_true(has_cell(s, c, 1540, on_grid == 0));
+        assert_false(has_cell(s, find(s, "1"), 1323 - 0.05, true));
+        tacet_screen_destroy(s);
+    }
+}
+
 static void test_unreachable(void **state)
 {
     (void)state;
@@ -379,6 +412,7 @@ int main(void)
         TEST(test_worst_placement),
         TEST(test_no_go_from_two_grids),
         TEST(test_same_again),
+        TEST(test_extra_speeds),
         TEST(test_unreachable),
         TEST(test_failed_conditions),
         TEST(test_refused_are_kept),
