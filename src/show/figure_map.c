@@ -1,50 +1,14 @@
 // Density over speed, coloured by the worst margin. Colours run from dark (over) to pale (clear),
 // so that they read in grey and for the colour-blind; the letter says the same again: capital and
 // bold is over, small is near, a dot is clear.
-#include "show/canvas.h"
+#include "show/figure_map.h"
 #include <ctype.h>
 #include <math.h>
 #include <string.h>
 
-#define MARGIN_LOW    (-12.0) // dB, ends of the colour scale
-#define MARGIN_HIGH   12.0
-#define LETTER_PX     15.0 // least width of a cell or run of cells with a letter
-#define ROW_LABEL_PX  19.0 // least distance of row labels
-#define LIMITING_MOST 64
-#define KEY_PX        272.0
-#define LETTERS       "ABCDEFGHIJKLMNOPQRSTUVWXYZ"
-#define LETTER_OTHERS '*' // beyond the alphabet
-
-typedef struct {
-    double r, g, b;
-} rgb;
-
-static unsigned mix(rgb a, rgb b, double t)
-{
-    t = t < 0 ? 0 : t > 1 ? 1 : t;
-    unsigned r = (unsigned)lround(a.r + t * (b.r - a.r));
-    unsigned g = (unsigned)lround(a.g + t * (b.g - a.g));
-    unsigned bl = (unsigned)lround(a.b + t * (b.b - a.b));
-    return r << 16 | g << 8 | bl;
-}
-
-// In steps of 1 dB, each class with its own range of lightness.
-static unsigned colour_of(tacet_mark mark, double margin_db, double reserve_db)
-{
-    double m = isnan(margin_db) ? MARGIN_HIGH : floor(margin_db);
-    switch (mark) {
-    case TACET_MARK_OVER:
-        return mix((rgb){0x3b, 0x0f, 0x3f}, (rgb){0xb9, 0x3a, 0x4c}, 1 - (m + 1) / MARGIN_LOW);
-    case TACET_MARK_NEAR:
-        return mix((rgb){0xee, 0x9b, 0x3a}, (rgb){0xf3, 0xb8, 0x5f},
-                   reserve_db > 1 ? m / (reserve_db - 1) : 0);
-    case TACET_MARK_CLEAR:
-        return mix((rgb){0xcd, 0xe1, 0xec}, (rgb){0xf0, 0xf6, 0xfa},
-                   (m - reserve_db) / (MARGIN_HIGH - reserve_db));
-    default:
-        return 0xe4e7eb;
-    }
-}
+#define LETTER_PX    15.0 // least width of a cell or run of cells with a letter
+#define ROW_LABEL_PX 19.0 // least distance of row labels
+#define LETTERS      "ABCDEFGHIJKLMNOPQRSTUVWXYZ"
 
 // Edge below speed i: halfway to the neighbour; the ends as wide as their neighbours.
 static double edge(const tacet_figure_map *f, size_t i)
@@ -86,8 +50,8 @@ static size_t run_end(const tacet_figure_map *f, size_t row, size_t first, same_
 
 static bool same_colour(const tacet_figure_map *f, const tacet_map_cell *a, const tacet_map_cell *b)
 {
-    return a->mark == b->mark && colour_of(a->mark, a->margin_db, f->reserve_db) ==
-                                     colour_of(b->mark, b->margin_db, f->reserve_db);
+    return a->mark == b->mark && map_colour(a->mark, a->margin_db, f->reserve_db) ==
+                                     map_colour(b->mark, b->margin_db, f->reserve_db);
 }
 
 static bool same_mark(const tacet_figure_map *f, const tacet_map_cell *a, const tacet_map_cell *b)
@@ -136,7 +100,7 @@ static void boxes(canvas *c, const tacet_figure_map *f, const char *block,
             const tacet_map_cell *cell = cell_at(f, row, i);
             next = run_end(f, row, i, same);
             if (!wanted(cell)) continue;
-            unsigned colour = colour_of(cell->mark, cell->margin_db, f->reserve_db);
+            unsigned colour = map_colour(cell->mark, cell->margin_db, f->reserve_db);
             box_row(c, edge(f, i) + dx, edge(f, next) - dx, (double)row + dy, (double)row + 1 - dy,
                     coloured ? &colour : NULL);
         }
@@ -145,8 +109,8 @@ static void boxes(canvas *c, const tacet_figure_map *f, const char *block,
 
 static char letter_of(const tacet_map_cell *cell, const char *letter)
 {
-    bool known = cell->limiting >= 0 && cell->limiting < LIMITING_MOST;
-    char l = known ? letter[cell->limiting] : LETTER_OTHERS;
+    bool known = cell->limiting >= 0 && cell->limiting < MAP_LIMITING_MOST;
+    char l = known ? letter[cell->limiting] : MAP_LETTER_OTHERS;
     switch (cell->mark) {
     case TACET_MARK_OVER:
         return l;
@@ -171,11 +135,16 @@ static bool same_around(const tacet_figure_map *f, size_t row, size_t speed, siz
     return true;
 }
 
-// Has every cell room for a letter?
-static bool roomy(const canvas *c, const tacet_figure_map *f)
+static double px_between(const canvas *c, const tacet_figure_map *f, size_t from, size_t to)
 {
-    return c->right - c->left >= LETTER_PX * (double)f->n_speeds &&
-           c->bottom - c->top >= LETTER_PX * (double)f->n_rows;
+    return canvas_x(c, edge(f, to)) - canvas_x(c, edge(f, from));
+}
+
+bool map_has_room(const canvas *c, const tacet_figure_map *f)
+{
+    for (size_t i = 0; i < f->n_speeds; i++)
+        if (px_between(c, f, i, i + 1) < LETTER_PX) return false;
+    return c->bottom - c->top >= LETTER_PX * (double)f->n_rows;
 }
 
 // Letters of the cells with these marks: in every cell that is large enough, otherwise one in the
@@ -183,15 +152,15 @@ static bool roomy(const canvas *c, const tacet_figure_map *f)
 static void letters(canvas *c, const tacet_figure_map *f, const char *block, const char *letter,
                     tacet_mark from, tacet_mark to)
 {
-    double width = (c->right - c->left) / (double)f->n_speeds;
     size_t rows = (size_t)ceil(LETTER_PX * (double)f->n_rows / (c->bottom - c->top));
     rows += rows % 2 == 0; // covered by a letter, an odd number
     canvas_block(c, block);
     for (size_t row = rows / 2; row < f->n_rows; row += rows)
         for (size_t i = 0, next; i < f->n_speeds; i = next) {
             const tacet_map_cell *cell = cell_at(f, row, i);
-            next = width >= LETTER_PX ? i + 1 : run_end(f, row, i, same_letter);
-            if (cell->mark < from || cell->mark > to || (double)(next - i) * width < LETTER_PX ||
+            next =
+                px_between(c, f, i, i + 1) >= LETTER_PX ? i + 1 : run_end(f, row, i, same_letter);
+            if (cell->mark < from || cell->mark > to || px_between(c, f, i, next) < LETTER_PX ||
                 !same_around(f, row, (i + next - 1) / 2, rows))
                 continue;
             canvas_number(c, (edge(f, i) + edge(f, next)) / 2);
@@ -205,7 +174,8 @@ static void letters(canvas *c, const tacet_figure_map *f, const char *block, con
 static void dots(canvas *c, const tacet_figure_map *f)
 {
     canvas_block(c, "clear");
-    for (size_t i = 0; roomy(c, f) && i < f->n_rows * f->n_speeds; i++) {
+    size_t n = map_has_room(c, f) ? f->n_rows * f->n_speeds : 0;
+    for (size_t i = 0; i < n; i++) {
         size_t row = i / f->n_speeds, speed = i % f->n_speeds;
         if (f->cell[i].mark != TACET_MARK_CLEAR) continue;
         canvas_number(c, (edge(f, speed) + edge(f, speed + 1)) / 2);
@@ -257,120 +227,16 @@ static void row_labels(canvas *c, const tacet_figure_map *f)
     }
 }
 
-// ---- the key, to the right of the plot
-
-static void tile(canvas *c, double x, double y, tacet_mark mark, double margin_db,
-                 double reserve_db, const char *letter, const char *text)
-{
-    char colour[16];
-    canvas_paint paint = {.fill = colour};
-    snprintf(colour, sizeof colour, "#%06x", colour_of(mark, margin_db, reserve_db));
-    if (mark == TACET_MARK_UNREACHABLE) paint = (canvas_paint){.fill = "#9aa5b1", .hatched = true};
-    canvas_box(c, x, y - 11, x + 26, y + 11, paint);
-    canvas_style mid = {.anchor = ANCHOR_CENTRE, .size = 15};
-    mid.bold = mark == TACET_MARK_OVER;
-    mid.colour = mark == TACET_MARK_OVER ? PAPER : mark == TACET_MARK_NEAR ? "#3a2710" : INK_FAINT;
-    if (mark == TACET_MARK_CLEAR && *letter)
-        canvas_disc(c, x + 13, y, 2, "#6f8ea3", "#6f8ea3");
-    else if (mark != TACET_MARK_CLEAR)
-        canvas_text(c, x + 13, y, mid, letter);
-    canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT, .most_px = KEY_PX - 56}, text);
-}
-
-static void colour_bar(canvas *c, double x, double y, double reserve_db)
-{
-    double width = KEY_PX - 48, step = width / (MARGIN_HIGH - MARGIN_LOW);
-    canvas_text(c, x, y, (canvas_style){.size = FONT_TEXT, .bold = true}, "Worst margin, dB");
-    for (double m = MARGIN_LOW; m < MARGIN_HIGH; m++) {
-        char colour[16];
-        tacet_mark mark = m < 0            ? TACET_MARK_OVER
-                          : m < reserve_db ? TACET_MARK_NEAR
-                                           : TACET_MARK_CLEAR;
-        double at = x + 8 + (m - MARGIN_LOW) * step;
-        snprintf(colour, sizeof colour, "#%06x", colour_of(mark, m, reserve_db));
-        canvas_box(c, at, y + 16, at + step + 0.4, y + 32, (canvas_paint){.fill = colour});
-    }
-    canvas_style mid = {.anchor = ANCHOR_CENTRE, .size = FONT_SMALL};
-    const double mark[] = {MARGIN_LOW, -6, 0, reserve_db, MARGIN_HIGH};
-    for (size_t i = 0; i < 5; i++) {
-        char number[TACET_NUMBER_TEXT];
-        if (i == 3 && (reserve_db < 2 || reserve_db > 9)) continue;
-        canvas_text(c, x + 8 + (mark[i] - MARGIN_LOW) * step, y + 45, mid,
-                    tacet_number_format_short(mark[i], 3, number));
-    }
-}
-
-static bool occurs(const tacet_figure_map *f, tacet_mark mark)
-{
-    for (size_t i = 0; i < f->n_rows * f->n_speeds; i++)
-        if (f->cell[i].mark == mark) return true;
-    return false;
-}
-
-static double key_of_marks(canvas *c, const tacet_figure_map *f, double x, double y)
-{
-    char near[80], number[TACET_NUMBER_TEXT];
-    const double pitch = 30;
-    snprintf(near, sizeof near, "near: under %s dB left",
-             tacet_number_format_short(f->reserve_db, 3, number));
-    tile(c, x, y, TACET_MARK_OVER, -3, f->reserve_db, "A", "over a limit");
-    if (f->reserve_db > 0) tile(c, x, y += pitch, TACET_MARK_NEAR, 1, f->reserve_db, "a", near);
-    tile(c, x, y += pitch, TACET_MARK_CLEAR, 6, f->reserve_db, roomy(c, f) ? "." : "", "clear");
-    if (occurs(f, TACET_MARK_UNREACHABLE))
-        tile(c, x, y += pitch, TACET_MARK_UNREACHABLE, 0, 0, "", "torque not reachable");
-    if (occurs(f, TACET_MARK_FAILED))
-        tile(c, x, y += pitch, TACET_MARK_FAILED, 0, 0, "!", "not solved");
-    if (occurs(f, TACET_MARK_NO_REFERENCE))
-        tile(c, x, y += pitch, TACET_MARK_NO_REFERENCE, 0, 0, "?", "no all-fire reference");
-    y += pitch;
-    canvas_box(c, x + 1, y - 10, x + 25, y + 10, (canvas_paint){.border = "#0b1f33", .width = 2.6});
-    canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT}, "recommended there");
-    if (f->n_ranges) {
-        y += pitch;
-        canvas_box(c, x, y - 1.5, x + 26, y + 1.5, (canvas_paint){.fill = INK});
-        canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT}, "no-go range, exact");
-    }
-    return y;
-}
-
 // Letters for what limits anywhere, in the order of bands, then limits; their list in the key.
 static void assign_letters(const tacet_figure_map *f, char *letter)
 {
     size_t used = 0;
-    for (size_t l = 0; l < f->n_limiting && l < LIMITING_MOST; l++) {
+    for (size_t l = 0; l < f->n_limiting && l < MAP_LIMITING_MOST; l++) {
         bool limits = false;
         for (size_t i = 0; i < f->n_rows * f->n_speeds && !limits; i++)
             limits = f->cell[i].limiting == (int)l &&
                      (f->cell[i].mark == TACET_MARK_OVER || f->cell[i].mark == TACET_MARK_NEAR);
-        letter[l] = !limits ? 0 : used < sizeof LETTERS - 1 ? LETTERS[used++] : LETTER_OTHERS;
-    }
-}
-
-static void key_of_letters(canvas *c, const tacet_figure_map *f, const char *letter, double x,
-                           double y)
-{
-    double room = CANVAS_HEIGHT - 40 - (y + 26);
-    size_t n = 0, shown = 0;
-    for (size_t l = 0; l < f->n_limiting && l < LIMITING_MOST; l++)
-        n += letter[l] != 0;
-    if (n == 0) return;
-    double pitch = fmax(19, fmin(26, room / (double)n));
-    canvas_text(c, x, y, (canvas_style){.size = FONT_TEXT, .bold = true}, "What limits");
-    y += 4;
-    for (size_t l = 0; l < f->n_limiting && l < LIMITING_MOST; l++) {
-        char text[2] = {letter[l], 0};
-        if (!letter[l]) continue;
-        if ((double)(shown + 2) * pitch > room && shown + 1 < n) {
-            canvas_text(c, x + 38, y + pitch, (canvas_style){.size = FONT_TEXT},
-                        "and others: see the tables");
-            return;
-        }
-        shown++;
-        y += pitch;
-        canvas_text(c, x + 13, y, (canvas_style){.anchor = ANCHOR_CENTRE, .size = 15, .bold = true},
-                    text);
-        canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT, .most_px = KEY_PX - 56},
-                    f->limiting[l]);
+        letter[l] = !limits ? 0 : used < sizeof LETTERS - 1 ? LETTERS[used++] : MAP_LETTER_OTHERS;
     }
 }
 
@@ -384,9 +250,8 @@ static double left_margin(const tacet_figure_map *f)
 
 void figure_map_script(canvas *c, const tacet_figure_map *f)
 {
-    char letter[LIMITING_MOST] = {0};
-    double left = left_margin(f), right = CANVAS_WIDTH - KEY_PX - 16;
-    double key_x = right + 30;
+    char letter[MAP_LIMITING_MOST] = {0};
+    double left = left_margin(f), right = CANVAS_WIDTH - MAP_KEY_PX - 16;
     double cell_px = (right - left) / (double)f->n_speeds;
     assign_letters(f, letter);
     canvas_head(c, f->title, f->subtitle);
@@ -407,8 +272,6 @@ void figure_map_script(canvas *c, const tacet_figure_map *f)
     dots(c, f);
     no_go(c, f);
     row_labels(c, f);
-    colour_bar(c, key_x, 104, f->reserve_db);
-    double y = key_of_marks(c, f, key_x, 186);
-    key_of_letters(c, f, letter, key_x, y + 40);
+    map_key(c, f, letter, right + 30);
     canvas_use(c, "map");
 }

@@ -13,24 +13,10 @@ static void sort_by(size_t n, const double *value, size_t *order)
     }
 }
 
-bool canvas_spread(size_t n, double *at, double pitch, double low, double high)
+// Groups of neighbours that would touch are centred on where they wanted to be, wishes rising.
+static void centre_groups(size_t n, const double *wish, double pitch, double *place)
 {
-    if (n == 0) return true;
-    if (pitch * (double)(n - 1) > high - low) return false;
-    size_t *order = malloc(n * sizeof *order);
-    if (!order) return false;
-    sort_by(n, at, order);
-    // Upward pass keeps the pitch and the low end, downward pass the high end; then groups that
-    // touch are centred on where they wanted to be, as far as their neighbours allow.
-    double *wish = malloc(n * sizeof *wish);
-    if (!wish) {
-        free(order);
-        return false;
-    }
-    for (size_t i = 0; i < n; i++)
-        wish[i] = at[order[i]];
     for (size_t first = 0; first < n;) {
-        // grow a group from `first` until the next wish lies clear of it
         size_t last = first;
         double sum = wish[first];
         for (;;) {
@@ -41,22 +27,46 @@ bool canvas_spread(size_t n, double *at, double pitch, double low, double high)
         }
         double start = sum / (double)(last - first + 1) - pitch * (double)(last - first) / 2;
         for (size_t i = first; i <= last; i++)
-            at[order[i]] = start + pitch * (double)(i - first);
+            place[i] = start + pitch * (double)(i - first);
         first = last + 1;
     }
+}
+
+// Upwards for the pitch and the low end, downwards for the high end.
+static void push_inside(size_t n, double pitch, double low, double high, double *place)
+{
     double edge = low;
     for (size_t i = 0; i < n; i++) {
-        if (at[order[i]] < edge) at[order[i]] = edge;
-        edge = at[order[i]] + pitch;
+        if (place[i] < edge) place[i] = edge;
+        edge = place[i] + pitch;
     }
     edge = high;
     for (size_t i = n; i-- > 0;) {
-        if (at[order[i]] > edge) at[order[i]] = edge;
-        edge = at[order[i]] - pitch;
+        if (place[i] > edge) place[i] = edge;
+        edge = place[i] - pitch;
     }
-    free(wish);
+}
+
+bool canvas_spread(size_t n, double *at, double pitch, double low, double high)
+{
+    if (n == 0) return true;
+    if (pitch * (double)(n - 1) > high - low) return false;
+    size_t *order = malloc(n * sizeof *order);
+    double *wish = malloc(n * sizeof *wish), *place = malloc(n * sizeof *place);
+    bool fits = order && wish && place;
+    if (fits) {
+        sort_by(n, at, order);
+        for (size_t i = 0; i < n; i++)
+            wish[i] = at[order[i]];
+        centre_groups(n, wish, pitch, place);
+        push_inside(n, pitch, low, high, place);
+        for (size_t i = 0; i < n; i++)
+            at[order[i]] = place[i];
+    }
     free(order);
-    return true;
+    free(wish);
+    free(place);
+    return fits;
 }
 
 size_t canvas_thin(size_t n, const double *at, const double *half, const double *weight, bool *keep)

@@ -66,28 +66,15 @@ static double drawn_hz(const tacet_model *m)
     return high > 0 ? high : INFINITY;
 }
 
-tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_orders *out,
-                                     tacet_error *e)
+// The lines that are drawn: the largest within the drawing, rising.
+static size_t pick_lines(const tacet_figure_source *s, size_t n_lines, const double *level,
+                         double *order, double *drawn)
 {
     const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
-    size_t n_lines = tacet_model_lines(s->model, s->roll->revolutions), n = d->n_speeds, n_bands;
-    double *level = tacet_arena_alloc(s->arena, (n_lines * n + 1) * sizeof *level);
+    size_t n = d->n_speeds, used = 0;
     double *weight = tacet_arena_alloc(s->arena, (n_lines + 1) * sizeof *weight);
     bool *picked = tacet_arena_alloc(s->arena, (n_lines + 1) * sizeof *picked);
-    double *order = tacet_arena_alloc(s->arena, ORDERS_DRAWN * sizeof *order);
-    double *drawn = tacet_arena_alloc(s->arena, (ORDERS_DRAWN * n + 1) * sizeof *drawn);
-    double *rpm = tacet_arena_alloc(s->arena, (n + 1) * sizeof *rpm);
-    tacet_figure_band *band = figure_bands(s, &n_bands);
-    tacet_figure_mode *mode;
-    size_t n_modes, used = 0;
-    const char *quantity = screen_quantity_name(s->model, s->of, s->arena);
-    const char *pattern = figure_pattern_text(s);
-    if (!level || !weight || !picked || !order || !drawn || !rpm || !band || !quantity || !pattern)
-        return figure_no_memory(e);
-    tacet_status status = modes_of(s, &mode, &n_modes);
-    if (status != TACET_OK) return tacet_fail(e, status, "modes: %s", tacet_status_text(status));
-    status = levels_over_speed(s, n_lines, level, e);
-    if (status != TACET_OK) return status;
+    if (!weight || !picked) return SIZE_MAX;
     for (size_t h = 1; h <= n_lines; h++)
         weight[h - 1] = largest_below(&level[(h - 1) * n], d, (double)h / s->roll->revolutions,
                                       drawn_hz(s->model));
@@ -97,22 +84,39 @@ tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_
         memcpy(&drawn[used * n], &level[(h - 1) * n], n * sizeof *drawn);
         order[used++] = (double)h / s->roll->revolutions;
     }
+    return used;
+}
+
+tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_orders *out,
+                                     tacet_error *e)
+{
+    const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
+    size_t n_lines = tacet_model_lines(s->model, s->roll->revolutions), n = d->n_speeds;
+    double *level = tacet_arena_alloc(s->arena, (n_lines * n + 1) * sizeof *level);
+    double *order = tacet_arena_alloc(s->arena, ORDERS_DRAWN * sizeof *order);
+    double *drawn = tacet_arena_alloc(s->arena, (ORDERS_DRAWN * n + 1) * sizeof *drawn);
+    double *rpm = tacet_arena_alloc(s->arena, (n + 1) * sizeof *rpm);
+    const char *pattern = figure_pattern_text(s);
+    tacet_figure_mode *mode;
+    if (!level || !order || !drawn || !rpm || !pattern) return figure_no_memory(e);
+    *out = (tacet_figure_orders){.title = screen_title(s->model),
+                                 .unit = s->of.what->unit,
+                                 .speed_rpm = rpm,
+                                 .n_speeds = n,
+                                 .order = order,
+                                 .level_rms = drawn};
+    tacet_status status = modes_of(s, &mode, &out->n_modes);
+    if (status != TACET_OK) return tacet_fail(e, status, "modes: %s", tacet_status_text(status));
+    status = levels_over_speed(s, n_lines, level, e);
+    if (status != TACET_OK) return status;
     for (size_t i = 0; i < n; i++)
         rpm[i] = screen_rpm(d->speeds_rad_per_s[i]);
-    *out = (tacet_figure_orders){
-        .title = screen_title(s->model),
-        .subtitle =
-            screen_text(s->arena, "Order lines of %s over speed, at the study's torque", pattern),
-        .quantity = quantity,
-        .unit = s->of.what->unit,
-        .speed_rpm = rpm,
-        .n_speeds = n,
-        .order = order,
-        .n_orders = used,
-        .level_rms = drawn,
-        .band = band,
-        .n_bands = n_bands,
-        .mode = mode,
-        .n_modes = n_modes};
-    return out->subtitle ? TACET_OK : figure_no_memory(e);
+    out->mode = mode;
+    out->band = figure_bands(s, &out->n_bands);
+    out->quantity = screen_quantity_name(s->model, s->of, s->arena);
+    out->subtitle =
+        screen_text(s->arena, "Order lines of %s over speed, at the study's torque", pattern);
+    out->n_orders = pick_lines(s, n_lines, level, order, drawn);
+    bool whole = out->band && out->quantity && out->subtitle && out->n_orders != SIZE_MAX;
+    return whole ? TACET_OK : figure_no_memory(e);
 }

@@ -189,53 +189,109 @@ static tacet_roll *roll_of(const char *text)
 
 static size_t ranked[5][3] = {{5, 0, 10}, {6, 1, 11}, {2, 7, 12}, {3, 8, 13}, {4, 14, 9}};
 
+static tacet_roll *rolls[4];
+static tacet_candidate candidates[] = {{.name = "1/2",
+                                        .word = ".x",
+                                        .fires = 1,
+                                        .length = 2,
+                                        .density = 0.5,
+                                        .roll = rolls,
+                                        .n_placements = 2,
+                                        .first_cell = 0,
+                                        .n_cells = 5},
+                                       {.name = "1",
+                                        .word = "x",
+                                        .fires = 1,
+                                        .length = 1,
+                                        .density = 1,
+                                        .roll = rolls + 2,
+                                        .n_placements = 1,
+                                        .first_cell = 5,
+                                        .n_cells = 5},
+                                       {.name = "outer, \"pair\"",
+                                        .word = "x..",
+                                        .fires = 1,
+                                        .length = 3,
+                                        .density = 1.0 / 3,
+                                        .roll = rolls + 3,
+                                        .n_placements = 1,
+                                        .first_cell = 10,
+                                        .n_cells = 5},
+                                       {.name = "1/40",
+                                        .word = "x.",
+                                        .fires = 1,
+                                        .length = 40,
+                                        .density = 0.025,
+                                        .refused = "a skip run of 39 cycles"}};
+static tacet_no_go no_go[] = {{.candidate = 0,
+                               .band = 0,
+                               .low_rad_per_s = 900 * RPM,
+                               .high_rad_per_s = 918.25 * RPM,
+                               .low_open = true,
+                               .worst_margin_db = -6.25,
+                               .worst_speed_rad_per_s = 900 * RPM,
+                               .leading_order = 1.5},
+                              {.candidate = 2,
+                               .band = 0,
+                               .low_rad_per_s = 940 * RPM,
+                               .high_rad_per_s = 960 * RPM,
+                               .low_open = true,
+                               .high_open = true,
+                               .worst_margin_db = -2,
+                               .worst_speed_rad_per_s = 950 * RPM,
+                               .leading_order = 1}};
+static tacet_candidate_note notes[] = {{.candidate = 0,
+                                        .recommended = true,
+                                        .n_best = 3,
+                                        .n_clear = 3,
+                                        .n_near = 1,
+                                        .n_over = 1,
+                                        .clear_rad_per_s = 50 * RPM,
+                                        .clear_from_rad_per_s = 950 * RPM,
+                                        .clear_to_rad_per_s = 1000 * RPM,
+                                        .saving = 0.0833,
+                                        .limiting_band = 0,
+                                        .limiting_order = 1.5},
+                                       {.candidate = 1,
+                                        .recommended = true,
+                                        .n_best = 1,
+                                        .n_clear = 5,
+                                        .clear_rad_per_s = 100 * RPM,
+                                        .clear_from_rad_per_s = 900 * RPM,
+                                        .clear_to_rad_per_s = 1000 * RPM,
+                                        .saving = 0,
+                                        .limiting_band = -1},
+                                       {.candidate = 2,
+                                        .why_not = "clear over 0 rpm, under 150",
+                                        .n_clear = 1,
+                                        .n_near = 1,
+                                        .n_over = 1,
+                                        .n_unreachable = 2,
+                                        .clear_from_rad_per_s = 1000 * RPM,
+                                        .clear_to_rad_per_s = 1000 * RPM,
+                                        .saving = 0.04,
+                                        .limiting_band = 0,
+                                        .limiting_order = 1},
+                                       {.candidate = 3, .limiting_band = -1, .saving = NAN}};
+static tacet_referee referee[] = {{.cell = 0,
+                                   .status = TACET_OK,
+                                   .a = {.settled = true,
+                                         .same_model = 2e-9,
+                                         .full_model_db = 0.0421,
+                                         .repeats = 2,
+                                         .evaluations = 200000,
+                                         .closure = 1e-10}},
+                                  {.cell = 3, .status = TACET_NOT_CONVERGED}};
+static double speeds[5];
+static tacet_cell cells[15];
+static tacet_rank ranks[5];
+
 tacet_screen *standin_screen(void)
 {
-    static tacet_roll *rolls[4];
-    static tacet_candidate candidates[4];
-    static double speeds[5];
-    static tacet_cell cells[15];
-    static tacet_rank ranks[5];
-    static tacet_no_go no_go[2];
-    static tacet_candidate_note notes[4];
-    static tacet_referee referee[2];
     static tacet_screen s;
     static const char *const words[] = {".x", "x.", "x", "x..x.."};
     for (int i = 0; i < 4; i++)
         rolls[i] = roll_of(words[i]);
-    candidates[0] = (tacet_candidate){.name = "1/2",
-                                      .word = ".x",
-                                      .fires = 1,
-                                      .length = 2,
-                                      .density = 0.5,
-                                      .roll = rolls,
-                                      .n_placements = 2,
-                                      .first_cell = 0,
-                                      .n_cells = 5};
-    candidates[1] = (tacet_candidate){.name = "1",
-                                      .word = "x",
-                                      .fires = 1,
-                                      .length = 1,
-                                      .density = 1,
-                                      .roll = rolls + 2,
-                                      .n_placements = 1,
-                                      .first_cell = 5,
-                                      .n_cells = 5};
-    candidates[2] = (tacet_candidate){.name = "outer, \"pair\"",
-                                      .word = "x..",
-                                      .fires = 1,
-                                      .length = 3,
-                                      .density = 1.0 / 3,
-                                      .roll = rolls + 3,
-                                      .n_placements = 1,
-                                      .first_cell = 10,
-                                      .n_cells = 5};
-    candidates[3] = (tacet_candidate){.name = "1/40",
-                                      .word = "x.",
-                                      .fires = 1,
-                                      .length = 40,
-                                      .density = 0.025,
-                                      .refused = "a skip run of 39 cycles"};
     for (size_t i = 0; i < 15; i++)
         cells[i] =
             (tacet_cell){.candidate = i / 5, .row = row_of(i / 5, i % 5), .placement = i == 3};
@@ -247,65 +303,6 @@ tacet_screen *standin_screen(void)
                                 .n_ranked = 3,
                                 .best = i == 1 ? SIZE_MAX : ranked[i][0]};
     }
-    no_go[0] = (tacet_no_go){.candidate = 0,
-                             .band = 0,
-                             .low_rad_per_s = 900 * RPM,
-                             .high_rad_per_s = 918.25 * RPM,
-                             .low_open = true,
-                             .worst_margin_db = -6.25,
-                             .worst_speed_rad_per_s = 900 * RPM,
-                             .leading_order = 1.5};
-    no_go[1] = (tacet_no_go){.candidate = 2,
-                             .band = 0,
-                             .low_rad_per_s = 940 * RPM,
-                             .high_rad_per_s = 960 * RPM,
-                             .low_open = true,
-                             .high_open = true,
-                             .worst_margin_db = -2,
-                             .worst_speed_rad_per_s = 950 * RPM,
-                             .leading_order = 1};
-    notes[0] = (tacet_candidate_note){.candidate = 0,
-                                      .recommended = true,
-                                      .n_best = 3,
-                                      .n_clear = 3,
-                                      .n_near = 1,
-                                      .n_over = 1,
-                                      .clear_rad_per_s = 50 * RPM,
-                                      .clear_from_rad_per_s = 950 * RPM,
-                                      .clear_to_rad_per_s = 1000 * RPM,
-                                      .saving = 0.0833,
-                                      .limiting_band = 0,
-                                      .limiting_order = 1.5};
-    notes[1] = (tacet_candidate_note){.candidate = 1,
-                                      .recommended = true,
-                                      .n_best = 1,
-                                      .n_clear = 5,
-                                      .clear_rad_per_s = 100 * RPM,
-                                      .clear_from_rad_per_s = 900 * RPM,
-                                      .clear_to_rad_per_s = 1000 * RPM,
-                                      .saving = 0,
-                                      .limiting_band = -1};
-    notes[2] = (tacet_candidate_note){.candidate = 2,
-                                      .why_not = "clear over 0 rpm, under 150",
-                                      .n_clear = 1,
-                                      .n_near = 1,
-                                      .n_over = 1,
-                                      .n_unreachable = 2,
-                                      .clear_from_rad_per_s = 1000 * RPM,
-                                      .clear_to_rad_per_s = 1000 * RPM,
-                                      .saving = 0.04,
-                                      .limiting_band = 0,
-                                      .limiting_order = 1};
-    notes[3] = (tacet_candidate_note){.candidate = 3, .limiting_band = -1, .saving = NAN};
-    referee[0] = (tacet_referee){.cell = 0,
-                                 .status = TACET_OK,
-                                 .a = {.settled = true,
-                                       .same_model = 2e-9,
-                                       .full_model_db = 0.0421,
-                                       .repeats = 2,
-                                       .evaluations = 200000,
-                                       .closure = 1e-10}};
-    referee[1] = (tacet_referee){.cell = 3, .status = TACET_NOT_CONVERGED};
     s = (tacet_screen){.candidates = candidates,
                        .n_candidates = 4,
                        .speeds_rad_per_s = speeds,
