@@ -4,6 +4,15 @@
 #include "rules.h"
 #include <math.h>
 
+// Multiples of a working cycle's order move a band's margin without being in a pattern's spectrum:
+// unequal cylinders have them whatever the pattern, and all-fire at the same speed, where that is
+// the reference, has no others.
+static bool shows_the_comb(const tacet_model *m, size_t band)
+{
+    return tacet_model_study(m)->engine.cylinder_dispersion > 0 ||
+           tacet_model_band(m, band)->reference == TACET_REFERENCE_SAME_SPEED;
+}
+
 tacet_status line_marks_init(line_marks *k, const tacet_model *m, const tacet_roll *r,
                              tacet_arena *a)
 {
@@ -13,12 +22,11 @@ tacet_status line_marks_init(line_marks *k, const tacet_model *m, const tacet_ro
     k->of_band = tacet_arena_alloc(a, n_bands * (n_lines + 1) * sizeof *k->of_band);
     k->of_limit = tacet_arena_alloc(a, n_limits * (n_lines + 1) * sizeof *k->of_limit);
     if (!k->of_band || !k->of_limit) return TACET_NO_MEMORY;
-    // Unequal cylinders give lines at every multiple of a working cycle's order, whatever the
-    // pattern; their share of a level is in no spectrum.
-    if (!(tacet_model_study(m)->engine.cylinder_dispersion > 0)) return TACET_OK;
-    for (size_t b = 0; b < n_bands; b++)
+    for (size_t b = 0; b < n_bands; b++) {
+        if (!shows_the_comb(m, b)) continue;
         for (size_t h = r->cycles; h <= n_lines; h += r->cycles)
             k->of_band[b * (n_lines + 1) + h] = true;
+    }
     return TACET_OK;
 }
 

@@ -176,6 +176,21 @@ static void test_extra_speeds(void **state)
     }
 }
 
+// Order 1 is in no spectrum of 3/7, but unequal cylinders have it: it leaves the coupling band at
+// 60 * 27.81 = 1668.6 rpm. The same where all-fire at the same speed is the reference.
+static void test_extra_speeds_of_the_comb(void **state)
+{
+    (void)state;
+    for (int why = 0; why < 3; why++) {
+        struct tacet_model m = standin(100, arena);
+        if (why == 1) m.study.engine.cylinder_dispersion = 0.03;
+        if (why == 2) m.band[0].reference = TACET_REFERENCE_SAME_SPEED;
+        tacet_screen *s = run(&m, NULL);
+        assert_int_equal(has_cell(s, find(s, "3/7"), 1668.6 + 0.05, true), why > 0);
+        tacet_screen_destroy(s);
+    }
+}
+
 static void test_unreachable(void **state)
 {
     (void)state;
@@ -413,6 +428,7 @@ int main(void)
         TEST(test_no_go_from_two_grids),
         TEST(test_same_again),
         TEST(test_extra_speeds),
+        TEST(test_extra_speeds_of_the_comb),
         TEST(test_unreachable),
         TEST(test_failed_conditions),
         TEST(test_refused_are_kept),
