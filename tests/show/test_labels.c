@@ -94,6 +94,29 @@ static void test_map(void **state)
             check(&(tacet_figure){TACET_FIGURE_MAP, {.map = sample_map(speeds[i], rows[k])}}, 15);
 }
 
+// Letters and dots have room in their own cells, not on the average: a grid with two speeds 1 rpm
+// apart has no letters there.
+static void test_map_with_uneven_speeds(void **state)
+{
+    (void)state;
+    tacet_figure_map f = *sample_map(5, 4);
+    static const double rpm[] = {900, 901, 902, 1500, 2000};
+    char *script = NULL;
+    size_t bytes;
+    f.speed_rpm = rpm;
+    tacet_figure figure = {TACET_FIGURE_MAP, {.map = &f}};
+    check(&figure, 15);
+    FILE *to = open_memstream(&script, &bytes);
+    assert_int_equal(tacet_figure_script(&figure, tacet_drawing_formats(), to, NULL), TACET_OK);
+    fclose(to);
+    assert_non_null(strstr(script, "$over << END_OF_DATA"));
+    assert_null(strstr(script, "\n901 0.5 A\n"));
+    const char *dots = strstr(script, "$clear << END_OF_DATA\n");
+    assert_non_null(dots); // one row, that outside of the plot
+    assert_int_equal(strncmp(strchr(strchr(dots, '\n') + 1, '\n'), "\nEND_OF_DATA", 12), 0);
+    free(script);
+}
+
 static void test_map_with_many_limits(void **state)
 {
     (void)state;
@@ -197,6 +220,7 @@ int main(void)
 {
     static const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_map),
+        cmocka_unit_test(test_map_with_uneven_speeds),
         cmocka_unit_test(test_map_with_many_limits),
         cmocka_unit_test(test_orders),
         cmocka_unit_test(test_bars),
