@@ -1,0 +1,25 @@
+// A stand-in for the solver, for the figures of one pattern: a six with even firing, spectra that
+// are known line by line, speeds under 950 rpm out of reach.
+#ifndef SHOW_STANDIN_PATTERN_H
+#define SHOW_STANDIN_PATTERN_H
+#include "tacet/show.h"
+
+#define STANDIN_LINES_PER_REVOLUTION 3 // lines reach order 3
+
+struct tacet_model {
+    tacet_study study;
+    tacet_band band[2];
+    tacet_roll *all_fire;
+    bool all_fire_reachable;
+};
+struct tacet_workspace {
+    const tacet_model *model;
+    tacet_arena *arena;
+    tacet_spectrum spectrum, pistons[2];
+    tacet_response response;
+};
+// Amplitude (peak) of line h of a roll's drawn quantity: 1 / h of a pattern; all-fire has 100 at
+// order 3 and nothing else. Phase 0; mean 50.
+double standin_amplitude(const tacet_roll *r, size_t h);
+
+#endif
