@@ -5,7 +5,8 @@
 #include <string.h>
 
 #define LETTERS (2 * CLI_OPTIONS_MOST + 4)
-#define HELP    1000 // option codes: place in the table + 1, then help
+#define HELP    1000 // code of help, above every letter; options: FIRST + place in the table
+#define FIRST   1001
 
 static size_t n_options(const cli_command *c)
 {
@@ -26,7 +27,7 @@ static void fill_tables(const cli_command *c, struct option *longs, char *letter
     for (size_t i = 0; i < n; i++) {
         const cli_option *o = &c->options[i];
         longs[i] = (struct option){o->name, o->argument ? required_argument : no_argument, NULL,
-                                   (int)i + 1};
+                                   FIRST + (int)i};
         if (!o->letter) continue;
         letters[k++] = (char)o->letter;
         if (o->argument) letters[k++] = ':';
@@ -109,7 +110,7 @@ static int take_found(cli_call *out, int code, const struct option *longs, int p
 {
     const cli_command *c = out->command;
     if (place >= 0 && !whole_word(longs[place].name, word)) return unknown_option(c, word);
-    if (code > 0 && code <= (int)n_options(c)) return take_option(out, (size_t)code - 1, optarg);
+    if (code >= FIRST) return take_option(out, (size_t)(code - FIRST), optarg);
     for (size_t i = 0; c->options[i].name; i++)
         if (c->options[i].letter == code) return take_option(out, i, optarg);
     return unknown_letter(c, code);

@@ -15,7 +15,7 @@ void cli_overview(FILE *to)
           "\n"
           "Also: keys, modes, patterns. Each tells more about itself: tacet help COMMAND.\n"
           "Start with the first line, put your own numbers into my.yaml, then go down the list.\n"
-          "\n",
+          "What it says is a screening result, not a release: confirm it by measurement.\n",
           to);
 }
 
@@ -32,7 +32,7 @@ static void write_option(const cli_option *o, FILE *to)
     char head[80];
     cli_option_head(o, sizeof head, head);
     fprintf(to, "  %-24s %s", head, o->doc);
-    if (o->fallback) fprintf(to, " (%s)", o->fallback);
+    if (o->fallback) fprintf(to, " (default %s)", o->fallback);
     fputc('\n', to);
 }
 
@@ -53,7 +53,7 @@ static int run(const cli_call *call)
 {
     if (call->n_operands == 0) {
         cli_overview(stdout);
-        fputs("All commands:\n", stdout);
+        fputs("\nAll commands:\n", stdout);
         for (size_t i = 0; cli_commands[i]; i++)
             fprintf(stdout, "  %-10s %s\n", cli_commands[i]->name, cli_commands[i]->doc);
         return CLI_DONE;

@@ -54,8 +54,11 @@ static int make(const cli_call *call, const char *text, tacet_arena *a, tacet_ma
     else if (strcmp(names[which], "book") == 0)
         d->path = text;
     else if (!fraction && !(modulator && tacet_number_parse(text, &d->density)))
-        code = cli_wrong("'%s': a density k/L%s is allowed", text,
-                         modulator ? " or a number from 0 to 1" : "");
+        code = modulator
+                   ? cli_wrong("'%s': a density k/L or a number from 0 to 1 is allowed", text)
+                   : cli_wrong("'%s' is no density k/L (1 <= k <= L <= %d), no word (x fires, "
+                               ". skips, 1..9 tenths of the charge) and no book (*.words)",
+                               text, TACET_PATTERN_LONGEST);
     if (code == CLI_DONE && modulator) {
         if (!fraction && !cli_given(call, "length"))
             return cli_wrong("a density of %s needs --length LETTERS, the length of its word",

@@ -5,15 +5,15 @@
 static const tacet_table_column columns[] = {
     {.name = "pattern", .text = true},
     {.name = "word", .text = true},
-    {.name = "density", .text = true},
+    {.name = "density", .text = true, .data_only = true},
     {.name = "placements"},
-    {.name = "repeat_opportunities"},
-    {.name = "repeat_revolutions"},
-    {.name = "fires_per_cylinder", .text = true},
-    {.name = "longest_skip_run"},
+    {.name = "opportunities"},
+    {.name = "revolutions"},
+    {.name = "fires", .text = true},
+    {.name = "skip_run"},
     {.name = "leading_order", .text = true},
     {.name = "lowest_order", .text = true},
-    {.name = "repeat_order", .text = true},
+    {.name = "repeat_order", .text = true, .data_only = true},
 };
 static const tacet_table_column line_columns[] = {
     {.name = "line"},
@@ -49,9 +49,10 @@ static void put_entry(cli_rows *rows, tacet_arena *a, const pattern_entry *e)
     const tacet_roll *r = e->roll;
     const tacet_pattern *p = &r->pattern;
     tacet_pattern_format(p, word);
-    cli_put_text(rows, e->name ? e->name : "");
+    const char *density = fraction(a, tacet_pattern_fires(p), p->length);
+    cli_put_text(rows, e->name ? e->name : density);
     cli_put_text(rows, cli_text(a, "%s", word));
-    cli_put_text(rows, fraction(a, tacet_pattern_fires(p), p->length));
+    cli_put_text(rows, density);
     cli_put(rows, (double)e->placements);
     cli_put(rows, r->opportunities);
     cli_put(rows, r->revolutions);
@@ -146,9 +147,12 @@ int patterns_write(const pattern_list *l)
         fputc('\n', stdout);
         cli_write_table(l->call, t);
     }
-    fputs("\nOrders are per crank revolution: leading = fires per revolution; lowest of roll "
-          "torque; repeat\nof the crank, where unequal cylinders and placements show. "
-          "A skip run counts one cylinder's cycles.\n",
-          stdout);
+    fputs(
+        "\nA repeat is so many opportunities and revolutions long; fires: of each cylinder in it, "
+        "in "
+        "firing\nsequence; skip_run: cycles that one cylinder is skipped in a row. Orders are per "
+        "revolution:\nleading = fires per revolution; lowest of roll torque, where cylinders are "
+        "equal.\n",
+        stdout);
     return CLI_DONE;
 }

@@ -1,0 +1,25 @@
+#!/bin/sh
+# usage: sh run.sh CASES TACET ROOT   runs the commands of a case file in a scratch folder and compares.
+#   $ command      run by sh; `tacet` is TACET; tests/cli/studies is copied in, patterns/ is linked
+#   = 2            its exit code (0 when not said)
+#   > text         its standard output, line by line; none: must be empty
+#   ! text         its standard error, line by line; none: must be empty
+#   # comment
+# In expected text `...` stands for any text, and a line of `...` alone for any number of lines.
+set -eu
+cases=$(realpath "$1")
+tacet=$(realpath "$2")
+root=$(realpath "$3")
+scratch=$(mktemp -d)
+trap 'chmod -R u+w "$scratch"; rm -rf "$scratch"' EXIT
+mkdir "$scratch/bin" "$scratch/work"
+ln -s "$tacet" "$scratch/bin/tacet"
+cp "$root"/tests/cli/studies/* "$scratch/work/"
+ln -s "$root/patterns" "$scratch/work/patterns"
+cd "$scratch/work"
+PATH="$scratch/bin:$PATH"
+TERM=dumb
+LC_ALL=C
+export PATH TERM LC_ALL
+unset NO_COLOR POSIXLY_CORRECT || true
+awk -v out="$scratch" -f "$root/tests/cli/run.awk" "$cases"
