@@ -3,7 +3,9 @@
 #include <math.h>
 #include <string.h>
 
-#define LABEL "  %-11s"
+#define LABEL        "  %-11s"
+#define MODES_SHOWN  4 // of the criticals
+#define ORDERS_SHOWN 6
 
 static const char *number(double value, int digits, char out[TACET_NUMBER_TEXT])
 {
@@ -40,6 +42,12 @@ int check_gather(const cli_session *s, check_model *m)
     return cli_leading_orders(s, &m->order, &m->n_orders);
 }
 
+// Without the rounding of the way to rad and back.
+static double firing_deg(const tacet_engine *en, unsigned slot)
+{
+    return round(tacet_engine_firing_angle(en, slot) / tacet_unit_factor("deg") * 1e9) / 1e9;
+}
+
 static void write_engine(const check_model *m)
 {
     const tacet_engine *en = tacet_model_engine(m->s->model);
@@ -53,8 +61,8 @@ static void write_engine(const check_model *m)
            number(d->compression_ratio, 4, f));
     printf(LABEL, "firing");
     for (unsigned slot = 0; slot < tacet_engine_cylinders(en); slot++)
-        printf("%scylinder %u at %s", slot ? ", " : "", tacet_engine_number(en, slot),
-               number(tacet_engine_firing_angle(en, slot) / tacet_unit_factor("deg"), 5, a));
+        printf("%s%u at %s", slot ? ", " : "cylinder ", tacet_engine_number(en, slot),
+               number(firing_deg(en, slot), 5, a));
     printf(" deg\n");
 }
 
@@ -78,25 +86,29 @@ static void write_train(const check_model *m)
     printf(" Hz\n");
 }
 
-// Of each mode the speeds at which leading orders meet it.
+// The lowest orders that meet a mode; how many do.
+static size_t write_critical(const check_model *m, const char *label, double hz)
+{
+    size_t met = 0;
+    char a[TACET_NUMBER_TEXT];
+    for (size_t o = 0; o < m->n_orders; o++) {
+        double rpm = cli_critical_rpm(m->s, m->order[o].order, hz);
+        if (!isfinite(rpm) || ++met > ORDERS_SHOWN) continue;
+        if (met == 1) printf(LABEL "%s Hz: ", label, number(hz, 4, a));
+        printf("%sorder %s at %s", met > 1 ? ", " : "", m->order[o].order_text,
+               number(round(rpm), 6, a));
+    }
+    if (met > 0) printf(" rpm%s\n", met > ORDERS_SHOWN ? ", .." : "");
+    return met;
+}
+
+// Of the lowest modes that are met within the screened speeds; 'tacet modes' has them all.
 static void write_criticals(const check_model *m)
 {
     const double *hz = tacet_model_mode_hz(m->s->model);
     size_t n_modes = tacet_train_nodes(tacet_model_train(m->s->model)), shown = 0;
-    char a[TACET_NUMBER_TEXT];
-    for (size_t k = 1; k < n_modes; k++) {
-        size_t met = 0;
-        for (size_t o = 0; o < m->n_orders; o++) {
-            double rpm = cli_critical_rpm(m->s, m->order[o].order, hz[k]);
-            if (!isfinite(rpm)) continue;
-            if (met == 0) printf(LABEL "%s Hz: ", shown ? "" : "criticals", number(hz[k], 4, a));
-            printf("%sorder %s at %s", met ? ", " : "", m->order[o].order_text,
-                   number(round(rpm), 6, a));
-            met++;
-        }
-        if (met) printf(" rpm\n");
-        shown += met > 0;
-    }
+    for (size_t k = 1; k < n_modes && shown < MODES_SHOWN; k++)
+        shown += write_critical(m, shown ? "" : "criticals", hz[k]) > 0;
     if (!shown) printf(LABEL "none within the screened speeds\n", "criticals");
 }
 
@@ -105,11 +117,11 @@ static void write_lines(const check_model *m)
     bool limited;
     char a[TACET_NUMBER_TEXT];
     double highest = tacet_model_highest_order(m->s->model, &limited);
-    printf(LABEL "orders up to %s%s; lines in a repeat of", "lines", number(highest, 4, a),
-           limited ? " (cut: higher modes are not reached)" : "");
+    printf(LABEL "orders up to %s%s; in a repeat", "lines", number(highest, 4, a),
+           limited ? " (higher modes are cut)" : "");
     for (size_t i = 0; i < m->n_revolutions; i++)
-        printf("%s %u revolutions: %zu", i ? "," : "", m->revolutions[i],
-               tacet_model_lines(m->s->model, m->revolutions[i]));
+        printf("%s %zu%s in %u%s", i ? "," : "", tacet_model_lines(m->s->model, m->revolutions[i]),
+               i ? "" : " lines", m->revolutions[i], i ? "" : " revolutions");
     printf("\n");
 }
 
@@ -216,8 +228,7 @@ void check_put_json(tacet_json *j, const check_model *m)
     for (unsigned slot = 0; slot < tacet_engine_cylinders(en); slot++) {
         tacet_json_begin_object(j);
         tacet_json_put_count(j, "cylinder", tacet_engine_number(en, slot));
-        tacet_json_put_number(j, "angle_deg",
-                              tacet_engine_firing_angle(en, slot) / tacet_unit_factor("deg"));
+        tacet_json_put_number(j, "angle_deg", firing_deg(en, slot));
         tacet_json_put_text(j, "node", tacet_engine_node(en, slot));
         tacet_json_end_object(j);
     }

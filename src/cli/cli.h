@@ -152,10 +152,11 @@ int cli_candidate_of(const cli_call *call, const cli_session *s, cli_candidate *
 void cli_candidate_clear(cli_candidate *c);
 
 // ---- criticals
-// An order that matters to a study: fires per revolution of a density, or a multiple of all-fire's.
+// An order that matters to a study: a line of one or more of its words, or a multiple of the firing
+// order.
 typedef struct {
     double order;
-    const char *order_text, *of; // "9/7", "3/7"
+    const char *order_text, *of; // "9/7", "3/7, 4/7"
 } cli_order;
 // Rising, each once, in the session's arena. CLI_DONE or another exit code.
 int cli_leading_orders(const cli_session *s, cli_order **out, size_t *n);

@@ -1,6 +1,7 @@
 // Where the orders that a study can run meet the modes of its train.
 #include "cli/cli.h"
 #include <math.h>
+#include <string.h>
 
 double cli_rpm(double speed_rad_per_s)
 {
@@ -25,38 +26,48 @@ double cli_critical_rpm(const cli_session *s, double order, double hz)
     return hz > 0 && rpm >= range[0] && rpm <= range[1] ? rpm : NAN;
 }
 
-// At its place; an order that is there already keeps its first name.
-static void add(cli_order *at, size_t *n, cli_order new)
-{
-    size_t i = *n;
-    for (size_t k = 0; k < *n; k++)
-        if (fabs(at[k].order - new.order) < 1e-9) return;
-    for (; i > 0 && at[i - 1].order > new.order; i--)
-        at[i] = at[i - 1];
-    at[i] = new;
-    (*n)++;
-}
+#define LINE_SHARE 0.1 // of the word's mean: lines of a word below this are no critical's reason
+#define NAMES_MOST 40  // letters of the patterns named beside an order
 
-static cli_order of_fires(const cli_session *s, unsigned fires, unsigned revolutions,
-                          const char *of)
+typedef struct {
+    const cli_session *s;
+    cli_order *at;
+    size_t n, most;
+} orders;
+
+// At its place; an order that is there already also gets the new name.
+static void add(orders *o, unsigned above, unsigned below, const char *of)
 {
+    double order = (double)above / below;
     char text[24];
-    return (cli_order){(double)fires / revolutions,
-                       cli_text(s->arena, "%s", cli_fraction(fires, revolutions, text)), of};
+    size_t i = o->n;
+    for (size_t k = 0; k < o->n; k++)
+        if (fabs(o->at[k].order - order) < 1e-9) {
+            const char *old = o->at[k].of;
+            size_t length = strlen(old);
+            if (length + strlen(of) < NAMES_MOST)
+                o->at[k].of = cli_text(o->s->arena, "%s, %s", old, of);
+            else if (length < 2 || strcmp(old + length - 2, "..") != 0)
+                o->at[k].of = cli_text(o->s->arena, "%s, ..", old);
+            return;
+        }
+    if (o->n == o->most) return;
+    for (; i > 0 && o->at[i - 1].order > order; i--)
+        o->at[i] = o->at[i - 1];
+    o->at[i] =
+        (cli_order){order, cli_text(o->s->arena, "%s", cli_fraction(above, below, text)), of};
+    o->n++;
 }
 
-static int of_candidates(const cli_session *s, cli_order **out, size_t *n, unsigned multiples)
+// Lines of a word below the firing order; line m is m periods in length opportunities.
+static void add_lines(orders *o, const tacet_candidate *c)
 {
-    tacet_candidate *c = NULL;
-    size_t n_candidates = 0;
-    int code = cli_study_candidates(s, &c, &n_candidates);
-    if (code != CLI_DONE) return code;
-    *out = tacet_arena_alloc(s->arena, (n_candidates + multiples) * sizeof **out);
-    for (size_t i = 0; *out && i < n_candidates; i++)
-        if (!c[i].refused)
-            add(*out, n, of_fires(s, c[i].roll[0]->fires, c[i].roll[0]->revolutions, c[i].name));
-    tacet_candidates_destroy(c, n_candidates);
-    return *out ? CLI_DONE : cli_failed(TACET_NO_MEMORY, NULL);
+    const tacet_roll *r = c->roll[0];
+    double complex line[TACET_PATTERN_LONGEST];
+    tacet_pattern_spectrum(&r->pattern, line);
+    for (unsigned m = 1; m < r->pattern.length; m++)
+        if (cabs(line[m]) >= LINE_SHARE * cabs(line[0]))
+            add(o, 2 * m * r->cylinders, r->strokes * r->pattern.length, c->name);
 }
 
 int cli_leading_orders(const cli_session *s, cli_order **out, size_t *n)
@@ -64,11 +75,21 @@ int cli_leading_orders(const cli_session *s, cli_order **out, size_t *n)
     const tacet_roll *all = tacet_model_all_fire(s->model);
     double highest = tacet_model_highest_order(s->model, NULL);
     unsigned multiples = (unsigned)(highest * all->revolutions / all->fires);
-    *n = 0;
-    int code = of_candidates(s, out, n, multiples);
-    for (unsigned k = 1; code == CLI_DONE && k <= multiples; k++)
-        add(*out, n,
-            of_fires(s, k * all->fires, all->revolutions,
-                     cli_text(s->arena, k == 1 ? "all-fire" : "all-fire x%u", k)));
-    return code;
+    tacet_candidate *c = NULL;
+    size_t n_candidates = 0;
+    int code = cli_study_candidates(s, &c, &n_candidates);
+    if (code != CLI_DONE) return code;
+    orders o = {.s = s, .most = multiples};
+    for (size_t i = 0; i < n_candidates; i++)
+        o.most += c[i].length;
+    o.at = tacet_arena_alloc(s->arena, (o.most + 1) * sizeof *o.at);
+    for (unsigned k = 1; o.at && k <= multiples; k++)
+        add(&o, k * all->fires, all->revolutions,
+            k == 1 ? "all fire" : cli_text(s->arena, "all fire x%u", k));
+    for (size_t i = 0; o.at && i < n_candidates; i++)
+        if (!c[i].refused) add_lines(&o, &c[i]);
+    tacet_candidates_destroy(c, n_candidates);
+    *out = o.at;
+    *n = o.n;
+    return o.at ? CLI_DONE : cli_failed(TACET_NO_MEMORY, NULL);
 }

@@ -60,9 +60,12 @@ static void range_text(const tacet_field *f, char *out, size_t size)
         snprintf(out, size, "%s and more", low);
     else
         snprintf(out, size, "%s .. %s", low, tacet_number_format_short(f->high, 6, high));
-    if (!f->word) return;
-    append(out, size, ", or ");
-    append(out, size, f->word);
+    if (f->word || f->kind == TACET_FIELD_CURVE) append(out, size, ", or ");
+    if (f->kind == TACET_FIELD_CURVE) {
+        append(out, size, "a curve over ");
+        append(out, size, f->x_unit ? f->x_unit : "x");
+    }
+    if (f->word) append(out, size, f->word);
 }
 
 static const char *fallback_text(const tacet_field *f)

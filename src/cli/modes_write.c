@@ -11,6 +11,13 @@ static const char *hz_text(const modes *m, size_t mode)
     return cli_text(m->s->arena, "%s Hz", tacet_number_format_short(m->hz[mode], 4, text));
 }
 
+static bool meets_any(const modes *m, size_t order, size_t first, size_t last)
+{
+    for (size_t k = first; k < last; k++)
+        if (isfinite(cli_critical_rpm(m->s, m->order[order].order, m->hz[k]))) return true;
+    return false;
+}
+
 // Rows are nodes or orders, columns are modes first..last-1.
 static int write_block(const cli_call *call, const modes *m, bool shapes, size_t first, size_t last)
 {
@@ -24,6 +31,7 @@ static int write_block(const cli_call *call, const modes *m, bool shapes, size_t
                                           : "Criticals: rpm at which an order meets a mode",
                                    column, n_columns, n_rows);
     for (size_t r = 0; r < n_rows; r++) {
+        if (!shapes && !meets_any(m, r, first, last)) continue;
         if (shapes)
             cli_put_text(&rows, tacet_train_node_name(m->train, r));
         else
@@ -40,13 +48,13 @@ static int write_block(const cli_call *call, const modes *m, bool shapes, size_t
     return CLI_DONE;
 }
 
-// Modes that some listed order meets within the screened speeds.
+// Modes up to the last one that some listed order meets within the screened speeds.
 static size_t n_met(const modes *m)
 {
     size_t last = 1;
     for (size_t k = 1; k < m->n; k++)
         for (size_t o = 0; o < m->n_orders; o++)
-            if (isfinite(cli_critical_rpm(m->s, m->order[o].order, m->hz[k]))) last = k + 1;
+            if (meets_any(m, o, k, k + 1)) last = k + 1;
     return last;
 }
 
@@ -55,8 +63,9 @@ int modes_write_text(const cli_call *call, const modes *m)
     int code = CLI_DONE;
     double range[2];
     cli_screened_rpm(m->s, range);
-    printf("%s: %zu nodes, %zu links, %.4g kg m2 at the crank\n\n", cli_title(m->s), m->n,
-           tacet_train_links(m->train), tacet_train_total_inertia(m->train));
+    tacet_write_clean(stdout, cli_title(m->s));
+    printf(": %zu nodes, %zu links, %.4g kg m2 at the crank\n\n", m->n, tacet_train_links(m->train),
+           tacet_train_total_inertia(m->train));
     for (size_t first = 0; code == CLI_DONE && first < m->n; first += COLUMNS_MOST - 1)
         code = write_block(call, m, true, first,
                            first + COLUMNS_MOST - 1 < m->n ? first + COLUMNS_MOST - 1 : m->n);
@@ -64,8 +73,8 @@ int modes_write_text(const cli_call *call, const modes *m)
     for (size_t first = 1; code == CLI_DONE && first < met; first += COLUMNS_MOST - 1)
         code = write_block(call, m, false, first,
                            first + COLUMNS_MOST - 1 < met ? first + COLUMNS_MOST - 1 : met);
-    printf("Criticals are listed from %g to %g rpm; '-' lies outside. An order counts when "
-           "a density excites it.\n",
+    printf("Criticals are listed from %g to %g rpm; '-' lies outside. An order counts when it is a "
+           "line of a pattern, or a\nmultiple of the firing order.\n",
            range[0], range[1]);
     return code;
 }

@@ -72,7 +72,7 @@ static const tacet_table *spectrum(const pattern_list *l, cli_rows *rows)
     *rows = cli_rows_start(l->arena, "spectrum",
                            "Own spectrum of the word, relative to its mean (1: as large)",
                            line_columns, N(line_columns), TACET_PATTERN_LONGEST);
-    for (unsigned m = 1; 2 * m <= r->pattern.length; m++) {
+    for (unsigned m = 1; m < r->pattern.length; m++) {
         double above = 2.0 * m * r->cylinders, below = (double)r->strokes * r->pattern.length;
         cli_put(rows, m);
         cli_put_text(rows,
@@ -108,7 +108,7 @@ static void entry_json(tacet_json *j, const pattern_entry *e)
     tacet_json_put_number(j, "repeat_order", 1.0 / r->revolutions);
     tacet_json_key(j, "spectrum"); // [order, amplitude relative to the mean, phase in degrees]
     tacet_json_begin_array(j);
-    for (unsigned m = 1; 2 * m <= r->pattern.length; m++) {
+    for (unsigned m = 1; m < r->pattern.length; m++) {
         tacet_json_begin_array(j);
         tacet_json_number(j, 2.0 * m * r->cylinders / (r->strokes * (double)r->pattern.length));
         tacet_json_number(j, cabs(line[m]) / cabs(line[0]));

@@ -187,9 +187,9 @@ static void write_duty(const point *p)
     const tacet_duty *d = &p->row.duty;
     const tacet_roll *r = p->condition.roll;
     double heat = d->fuel_W > 0 ? d->fuel_W / 100 : NAN;
-    printf("%s; placement %zu of %zu; a repeat is %u opportunities, %u revolutions\n",
-           cli_title(p->s), p->placement + 1, p->candidate->n_placements, r->opportunities,
-           r->revolutions);
+    tacet_write_clean(stdout, cli_title(p->s));
+    printf("; placement %zu of %zu; a repeat is %u opportunities, %u revolutions\n",
+           p->placement + 1, p->candidate->n_placements, r->opportunities, r->revolutions);
     printf("Charge %.1f kPa, %.0f %% of the way from lowest to highest; peak pressure %.2f MPa%s\n",
            d->charge_Pa / 1e3, 100 * d->charge_ratio, d->peak_pressure_Pa / 1e6,
            d->peak_in_skip ? " in a skipped cycle" : "");

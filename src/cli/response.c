@@ -158,11 +158,13 @@ int cli_response(const cli_call *call, const cli_session *s, const char *node)
     const tacet_table *t = make_table(&r, !json && !csv, &rows);
     if (!t) return cli_failed(TACET_NO_MEMORY, NULL);
     if (json) return write_json(&r, t);
-    if (!csv)
-        printf("%s: peaks of the angle of %s for 1 N m there, %.4g to %.4g Hz in steps of %.3g "
-               "Hz\n",
-               cli_title(s), node, (double)r.first * r.step_hz, (double)r.last * r.step_hz,
-               r.step_hz);
+    if (!csv) {
+        tacet_write_clean(stdout, cli_title(s));
+        printf(": peaks of the angle of ");
+        tacet_write_clean(stdout, node);
+        printf(" for 1 N m there, %.4g to %.4g Hz in steps of %.3g Hz\n",
+               (double)r.first * r.step_hz, (double)r.last * r.step_hz, r.step_hz);
+    }
     cli_write_table(call, t);
     if (!csv) printf("--csv writes every frequency, and the torque of every link.\n");
     return CLI_DONE;
