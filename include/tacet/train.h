@@ -21,13 +21,17 @@ typedef struct {
     int on;                     // tacet_node_on: what its ground and loads react on
 } tacet_node_def;
 
-typedef struct { // stiffness of a crank throw by Carter's or Ker Wilson's formula; NAN journal: not
-                 // given
-    int formula; // 0 carter, 1 ker-wilson
+typedef enum { TACET_THROW_CARTER, TACET_THROW_KER_WILSON } tacet_throw_formula;
+typedef struct { // stiffness of a crank throw by Carter's or Ker Wilson's formula
+    int formula; // tacet_throw_formula; -1 and all lengths NAN: not given
     double journal_length_m, journal_outer_m, journal_inner_m, pin_length_m, pin_outer_m,
         pin_inner_m, throw_m, web_thickness_m, web_width_m;
 } tacet_throw_def;
 
+// causal: constant-Q law, |K| grows with w^alpha, alpha = (2/pi) atan(loss factor) (Kjartansson,
+// J. Geophys. Res. 84, 1979); constant: k (1 + i loss), which no system in time can have, so
+// harmonic only.
+typedef enum { TACET_LOSS_CAUSAL, TACET_LOSS_CONSTANT } tacet_loss_law;
 typedef struct {
     const char *name, *from, *to;
     // exactly one way to state the stiffness: NAN / NULL where not used
@@ -41,7 +45,7 @@ typedef struct {
     // at most one way to state the damping
     double damping_Nms_per_rad, damping_ratio, loss_factor;
     double at_hz;      // where Re K* = k for a loss factor; NAN: the link's main mode
-    int loss_law;      // 0 causal, 1 constant (harmonic only)
+    int loss_law;      // tacet_loss_law
     double gear_ratio; // default 1
 } tacet_link_def;
 
@@ -57,14 +61,15 @@ typedef struct tacet_train_def {
     size_t n_links;
     tacet_damper_def *dampers;
     size_t n_dampers;
-    const char *flywheel, *load; // node names
+    const char *flywheel, *load; // node names; load NULL: the flywheel
     // Not keys; set by the assembler before create:
     const double *added_inertia_kgm2; // [n_nodes of the file] mean reciprocating share, or NULL
-    double lowest_hz, highest_hz;     // range of lines in which the loss ladder must hold
-
+    double lowest_hz, highest_hz;     // range of lines in which a loss factor must hold
 } tacet_train_def;
 const tacet_section *tacet_train_keys(void);
-tacet_train_def tacet_train_default(void);
+tacet_train_def tacet_train_default(void); // flywheel "flywheel", load the flywheel, nothing else
+tacet_node_def tacet_node_default(void);   // without name and inertia
+tacet_link_def tacet_link_default(void);   // without name, ends, stiffness
 // A connected tree, known names, one stiffness, at most one damping, names unique.
 void tacet_train_def_check(const tacet_train_def *d, const tacet_reporter *r);
 // Stiffness of one link def from whichever way it is stated, N m/rad on the `to` side.
