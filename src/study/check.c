@@ -20,12 +20,37 @@ void check_say(checker *c, bool warning, const char *path, const char *format, .
     c->f->path[0] = '\0';
 }
 
-// A room says what is wrong with a value; the key goes before it.
+// Does this follow from an error that was already said? Things of lists that could not be read are
+// checked no further, and nodes hang together only when all links are sound.
+static bool follows(const checker *c, const char *path)
+{
+    char thing[FILL_LONGEST_PATH];
+    const char *item = strrchr(path, ']');
+    tacet_text(thing, sizeof thing, "%.*s", item ? (int)(item - path + 1) : (int)strlen(path),
+               path);
+    bool linked = strncmp(path, "train.nodes[", 12) == 0;
+    return fill_was_wrong(c->f, thing, c->n_filled) ||
+           (linked && (fill_is_wrong(c->f, "train.links") || fill_is_wrong(c->f, "train.dampers")));
+}
+
+// A room says what is wrong with a value; the key goes before it, or the name of the thing, or the
+// whole path of a key that the file does not have.
 static void say_of_room(void *who, bool warning, const char *path, const char *text)
 {
+    checker *c = who;
     const char *key = strrchr(path, '.');
+    char name[SHOWN_TEXT];
+    bool whole;
+    const tree_node *node;
+    if (follows(c, path)) return;
     key = key ? key + 1 : path;
-    check_say(who, warning, path, "%.*s: %s", (int)strcspn(key, "["), key, text);
+    (void)place_of_path(c->tree, path, &whole, &node);
+    if (strcmp(key, "name") == 0 && whole && node->kind == TREE_TEXT)
+        check_say(c, warning, path, "%s: %s", shown_text(node->text, name), text);
+    else if (!whole && !strchr(path, '['))
+        check_say(c, warning, path, "%s: %s", path, text);
+    else
+        check_say(c, warning, path, "%.*s: %s", (int)strcspn(key, "["), key, text);
 }
 
 void check_rooms(checker *c)
@@ -35,7 +60,7 @@ void check_rooms(checker *c)
     bool engine = !fill_is_wrong(c->f, "engine") && !fill_is_wrong(c->f, "cycle") &&
                   !fill_is_wrong(c->f, "skip");
     if (engine) tacet_engine_def_check(&s->engine, &reporter);
-    if (!fill_is_wrong(c->f, "train")) tacet_train_def_check(&s->train, &reporter);
+    if (s->train.n_nodes) tacet_train_def_check(&s->train, &reporter);
     for (size_t i = 0; i < s->n_bands; i++) {
         char path[32];
         tacet_text(path, sizeof path, "bands[%zu]", i);

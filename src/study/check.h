@@ -9,6 +9,7 @@ typedef struct {
     const tacet_study *study;
     const tacet_tree *tree;
     filler *f;
+    size_t n_filled; // errors that filling found: f->wrong up to here
 } checker;
 
 void check_study(checker *c);

@@ -107,12 +107,13 @@ static void check_densities(checker *c)
 {
     const tacet_densities_def *d = &c->study->screen.densities;
     char path[64];
-    if (fill_is_wrong(c->f, "screen.densities")) return;
-    for (size_t i = 0; i < d->n_list; i++) {
+    bool list = !fill_is_wrong(c->f, "screen.densities.list");
+    for (size_t i = 0; list && i < d->n_list; i++) {
         tacet_text(path, sizeof path, "screen.densities.list[%zu]", i);
         check_density(c, path, "densities", d->list[i]);
     }
-    check_density(c, "screen.densities.lowest", "lowest", d->lowest);
+    if (!fill_is_wrong(c->f, "screen.densities.lowest"))
+        check_density(c, "screen.densities.lowest", "lowest", d->lowest);
 }
 
 // Says of the pattern's place what was found of the pattern itself; faults inside a book keep

@@ -77,12 +77,17 @@ static bool begins(const char *path, const char *above)
     return strncmp(path, above, n) == 0 && (!path[n] || path[n] == '.' || path[n] == '[' || !n);
 }
 
-bool fill_is_wrong(const filler *f, const char *path)
+bool fill_was_wrong(const filler *f, const char *path, size_t first_n)
 {
     if (f->n_wrong == MOST_WRONG) return true;
-    for (size_t i = 0; i < f->n_wrong; i++)
+    for (size_t i = 0; i < first_n; i++)
         if (begins(f->wrong[i], path) || begins(path, f->wrong[i])) return true;
     return false;
+}
+
+bool fill_is_wrong(const filler *f, const char *path)
+{
+    return fill_was_wrong(f, path, f->n_wrong);
 }
 
 void fill_say(filler *f, bool warning, place at, const char *format, ...)
@@ -101,7 +106,7 @@ static const char *owner(const filler *f, const tree_node *node, char *out, size
 {
     const char *open = strrchr(f->path, '[');
     if (!*f->path) return "the study";
-    if (!open || strchr(open, '.')) return f->path;
+    if (!open || strchr(open, '.')) return tacet_text(out, bytes, "%s", f->path);
     char name_text[SHOWN_TEXT];
     const tree_node *name = tree_find(node, "name", NULL);
     int list = (int)(open - f->path);
@@ -147,7 +152,7 @@ static const char *unknown_key(filler *f, const tacet_section *s, const tree_nod
                                const tree_node *key)
 {
     const char *names[MOST_KEYS];
-    char text[SHOWN_TEXT], who[128], home[FILL_LONGEST_PATH] = "", list[200];
+    char text[SHOWN_TEXT], who[128], home[FILL_LONGEST_PATH] = "", list[160];
     const char *of = owner(f, node, who, sizeof who);
     shown_text(key->text, text);
     place at = node_place(key);
@@ -236,7 +241,7 @@ static void all_absent(const tacet_section *s, void *into)
 void fill_section(filler *f, const tacet_section *s, const tree_node *node, place at, void *into)
 {
     if (!node_is_nothing(node) && node->kind != TREE_MAP && !s->shorthand) {
-        char text[SHOWN_TEXT], list[200], who[128];
+        char text[SHOWN_TEXT], list[100], who[128];
         const char *names[MOST_KEYS];
         fill_say(f, false, node_place(node), "%s is %s; a map of keys is needed: %s",
                  owner(f, node, who, sizeof who), shown_node(node, text),

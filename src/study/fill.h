@@ -40,6 +40,7 @@ void fill_say(filler *f, bool warning, place at, const char *format, ...) TACET_
 void fill_mark(filler *f, const char *path); // an error about this path
 // Was there an error about this path, above it or in it?
 bool fill_is_wrong(const filler *f, const char *path);
+bool fill_was_wrong(const filler *f, const char *path, size_t first_n); // among the first n errors
 bool fill_is_busy(const filler *f); // so many errors that near names are not worth the time
 
 // f->path gains ".key" or "[index]"; returns the length to which fill_leave cuts it back.

@@ -7,10 +7,21 @@
 #define LONGEST_NAME      63
 #define LONGEST_FILE_TEXT 4096
 
-static const char *key_of(const filler *f)
+// "bore_mm is", or of one value in a list "firing_order holds", into out.
+#define SUBJECT_TEXT 96
+static const char *key_is(const filler *f, char out[SUBJECT_TEXT])
 {
-    const char *dot = strrchr(f->path, '.');
-    return dot ? dot + 1 : f->path;
+    const char *dot = strrchr(f->path, '.'), *key = dot ? dot + 1 : f->path;
+    size_t letters = strcspn(key, "[");
+    return tacet_text(out, SUBJECT_TEXT, "%.*s %s", letters < 80 ? (int)letters : 80, key,
+                      key[letters] ? "holds" : "is");
+}
+
+static const char *key_of(const filler *f, char out[SUBJECT_TEXT])
+{
+    key_is(f, out);
+    out[strcspn(out, " ")] = '\0';
+    return out;
 }
 
 // ---- numbers
@@ -24,48 +35,52 @@ static const char *needed(const tacet_field *field, const char *what, char out[1
     return tacet_text(out, 160, "%s%s%s is needed", what, united ? " in" : "", unit);
 }
 
-// Length of the number at the start of a text that goes on with a blank or a letter; 0: none.
-static size_t leading_number(const char *text)
+// Is this a number with its unit behind it, as "100 mm", "100mm" or "5 %"?
+static bool has_unit(const char *text)
 {
-    size_t n = strspn(text, "+-.0123456789");
-    const char *rest = text + n + strspn(text + n, " ");
+    size_t n = strspn(text, "+-.0123456789"), blanks = strspn(text + n, " ");
+    const char *rest = text + n + blanks;
     char word[TACET_NUMBER_TEXT];
     double value;
-    if (n == 0 || n >= sizeof word || !isalpha((unsigned char)*rest)) return 0;
+    if (n == 0 || n >= sizeof word || (!isalpha((unsigned char)*rest) && *rest != '%'))
+        return false;
+    if (!blanks && strcspn(rest, "0123456789") != strlen(rest)) return false; // 0x64, 1e999
     memcpy(word, text, n);
     word[n] = '\0';
-    return tacet_number_parse(word, &value) ? n : 0;
+    return tacet_number_parse(word, &value);
 }
 
 static void refuse_number(filler *f, const tacet_field *field, const tree_node *node,
                           const char *what)
 {
-    char text[SHOWN_TEXT], want[160], point[SHOWN_TEXT], unit[32];
-    const char *key = key_of(f), *shown = shown_node(node, text);
+    char text[SHOWN_TEXT], want[160], point[SHOWN_TEXT], unit[32], subject[SUBJECT_TEXT];
+    const char *is = key_is(f, subject), *shown = shown_node(node, text);
     place at = node_place(node);
     needed(field, what, want);
     bool is_text = node->kind == TREE_TEXT;
     const char *meant = is_text ? decimal_comma(node, false, point) : NULL;
-    size_t number = is_text ? leading_number(node->text) : 0;
     if (node_is_nothing(node))
-        fill_say(f, false, at, "%s has no value; %s", key, want);
+        fill_say(f, false, at, "%s has no value; %s", key_of(f, subject), want);
     else if (meant)
-        fill_say(f, false, at, "%s is %s; numbers take a decimal point: %s", key, shown, meant);
-    else if (number)
-        fill_say(f, false, at, "%s is %s; write the number alone%s%s", key, shown,
+        fill_say(f, false, at, "%s %s; numbers take a decimal point: %s", is, shown, meant);
+    else if (is_text && has_unit(node->text))
+        fill_say(f, false, at, "%s %s; write the number alone%s%s", is, shown,
                  *unit_text(field->unit, unit) ? ", it is in" : "", unit);
     else
-        fill_say(f, false, at, "%s is %s; %s", key, shown, want);
+        fill_say(f, false, at, "%s %s; %s", is, shown, want);
 }
 
-static bool check_range(filler *f, const tacet_field *field, place at, double value)
+// meant: a number that a decimal comma has split, or NULL.
+static bool check_range(filler *f, const tacet_field *field, place at, double value,
+                        const char *meant)
 {
-    char number[TACET_NUMBER_TEXT], range[RANGE_TEXT], unit[32];
+    char number[TACET_NUMBER_TEXT], range[RANGE_TEXT], unit[32], subject[SUBJECT_TEXT];
     if (field->low == 0 && field->high == 0) return true;
     if (value >= field->low && value <= field->high) return true;
-    fill_say(f, false, at, "%s is %s%s; allowed are %s", key_of(f),
+    fill_say(f, false, at, "%s %s%s; allowed are %s%s%s", key_is(f, subject),
              tacet_number_format_short(value, 6, number), unit_text(field->unit, unit),
-             range_text(field, range));
+             range_text(field, range), meant ? "; numbers take a decimal point: " : "",
+             meant ? meant : "");
     return false;
 }
 
@@ -76,7 +91,7 @@ static bool read_number(filler *f, const tacet_field *field, const tree_node *no
         refuse_number(f, field, node, "a number");
         return false;
     }
-    if (!check_range(f, field, node_place(node), value)) return false;
+    if (!check_range(f, field, node_place(node), value, NULL)) return false;
     *out = value;
     return true;
 }
@@ -91,7 +106,7 @@ static void fill_count(filler *f, const tacet_field *field, const tree_node *nod
     double value;
     if (node->kind != TREE_TEXT || !tacet_number_parse(node->text, &value) || !whole(value))
         refuse_number(f, field, node, "a whole number");
-    else if (check_range(f, field, node_place(node), value))
+    else if (check_range(f, field, node_place(node), value, NULL))
         *out = (unsigned)value;
 }
 
@@ -99,21 +114,21 @@ static void fill_count(filler *f, const tacet_field *field, const tree_node *nod
 static bool read_point(filler *f, const tacet_field *field, const tree_node *node, double *x,
                        double *y)
 {
-    char text[SHOWN_TEXT], x_unit[32], y_unit[32];
+    char text[SHOWN_TEXT], x_unit[32], y_unit[32], subject[SUBJECT_TEXT], point[SHOWN_TEXT];
+    const char *key = key_of(f, subject);
     place at = node_place(node);
     unit_text(field->x_unit, x_unit);
     unit_text(field->unit, y_unit);
     if (node->kind != TREE_LIST) {
-        fill_say(f, false, at, "a point of %s is %s; it is a pair [x%s, y%s]", key_of(f),
+        fill_say(f, false, at, "a point of %s is %s; it is a pair [x%s, y%s]", key,
                  shown_node(node, text), x_unit, y_unit);
         return false;
     }
     if (node->n != 2) {
-        char point[SHOWN_TEXT];
         const char *meant = decimal_comma(node, node->n > 2, point);
-        fill_say(f, false, at, "a point of %s holds %zu numbers; it is a pair [x%s, y%s]%s%s",
-                 key_of(f), node->n, x_unit, y_unit,
-                 meant ? "; numbers take a decimal point: " : "", meant ? meant : "");
+        fill_say(f, false, at, "a point of %s holds %zu numbers; it is a pair [x%s, y%s]%s%s", key,
+                 node->n, x_unit, y_unit, meant ? "; numbers take a decimal point: " : "",
+                 meant ? meant : "");
         return false;
     }
     tacet_field of_x = {.key = field->key, .kind = TACET_FIELD_NUMBER, .unit = field->x_unit};
@@ -122,44 +137,59 @@ static bool read_point(filler *f, const tacet_field *field, const tree_node *nod
 
 static bool check_rising(filler *f, const tree_node *point, const double *x, size_t i)
 {
-    char now[TACET_NUMBER_TEXT], before[TACET_NUMBER_TEXT];
+    char now[TACET_NUMBER_TEXT], before[TACET_NUMBER_TEXT], subject[SUBJECT_TEXT];
     if (i == 0 || x[i] > x[i - 1]) return true;
     fill_say(f, false, node_place(point), "a point of %s at %s after one at %s; points rise in x",
-             key_of(f), tacet_number_format_short(x[i], 6, now),
+             key_of(f, subject), tacet_number_format_short(x[i], 6, now),
              tacet_number_format_short(x[i - 1], 6, before));
     return false;
+}
+
+static bool read_points(filler *f, const tacet_field *field, const tree_node *node, tacet_curve *c)
+{
+    bool good = true;
+    for (size_t i = 0; i < c->n; i++) {
+        size_t length = fill_enter_item(f, i);
+        bool read = read_point(f, field, node->child[i], &c->x[i], &c->y[i]);
+        good = read && good && check_rising(f, node->child[i], c->x, i);
+        fill_leave(f, length);
+    }
+    return good;
+}
+
+// Not a curve at all?
+static bool refuse_curve(filler *f, const tacet_field *field, const tree_node *node)
+{
+    char x_unit[32], y_unit[32], subject[SUBJECT_TEXT];
+    if (node->kind == TREE_MAP || node_is_nothing(node)) {
+        refuse_number(f, field, node, "a number, or a curve [[x, y], ..],");
+    } else if (node->kind == TREE_LIST && (node->n == 0 || node->n > FILL_MOST_THINGS)) {
+        fill_say(f, false, node_place(node), "%s a curve of %zu points; 1 to %d are allowed",
+                 key_is(f, subject), node->n, FILL_MOST_THINGS);
+    } else if (node->kind == TREE_LIST && node->child[0]->kind == TREE_TEXT) {
+        fill_say(f, false, node_place(node),
+                 "%s a list of numbers; one number, or a curve of pairs [[x%s, y%s], ..] is needed",
+                 key_is(f, subject), unit_text(field->x_unit, x_unit),
+                 unit_text(field->unit, y_unit));
+    } else {
+        return false;
+    }
+    return true;
 }
 
 static void fill_curve(filler *f, const tacet_field *field, const tree_node *node, tacet_curve *out)
 {
     double factor = tacet_unit_factor(field->unit);
-    bool list = node->kind == TREE_LIST;
-    size_t n = list ? node->n : 1;
-    if (list && (n == 0 || n > FILL_MOST_THINGS)) {
-        fill_say(f, false, node_place(node), "%s has %zu points; 1 to %d are allowed", key_of(f), n,
-                 FILL_MOST_THINGS);
-        return;
-    }
-    if (node->kind == TREE_MAP || node_is_nothing(node)) {
-        refuse_number(f, field, node, "a number, or a curve [[x, y], ..],");
-        return;
-    }
+    if (refuse_curve(f, field, node)) return;
+    size_t n = node->kind == TREE_LIST ? node->n : 1;
     tacet_curve c = {tacet_arena_alloc(f->arena, n * sizeof *c.x),
                      tacet_arena_alloc(f->arena, n * sizeof *c.y), n};
     if (!c.x || !c.y) {
         f->no_memory = true;
         return;
     }
-    bool good = true;
-    if (!list) good = read_number(f, field, node, &c.y[0]);
-    for (size_t i = 0; list && i < n; i++) {
-        size_t length = fill_enter_item(f, i);
-        bool read = read_point(f, field, node->child[i], &c.x[i], &c.y[i]);
-        good = read && good && check_rising(f, node->child[i], c.x, i);
-        fill_leave(f, length);
-        if (!read && node->child[i]->kind == TREE_TEXT) break; // the same for every other number
-    }
-    if (!good) return;
+    bool list = node->kind == TREE_LIST;
+    if (!(list ? read_points(f, field, node, &c) : read_number(f, field, node, &c.y[0]))) return;
     for (size_t i = 0; i < n; i++)
         c.y[i] *= factor;
     *out = c;
@@ -168,14 +198,19 @@ static void fill_curve(filler *f, const tacet_field *field, const tree_node *nod
 // ---- texts
 static bool read_text(filler *f, const tree_node *node, const char **out)
 {
-    char text[SHOWN_TEXT];
-    if (node->kind != TREE_TEXT || node_is_nothing(node)) {
-        fill_say(f, false, node_place(node), "%s is %s; a text is needed", key_of(f),
+    char text[SHOWN_TEXT], subject[SUBJECT_TEXT];
+    if (node_is_nothing(node)) {
+        fill_say(f, false, node_place(node), "%s has no value; a text is needed",
+                 key_of(f, subject));
+        return false;
+    }
+    if (node->kind != TREE_TEXT) {
+        fill_say(f, false, node_place(node), "%s %s; a text is needed", key_is(f, subject),
                  shown_node(node, text));
         return false;
     }
     if (strlen(node->text) > LONGEST_FILE_TEXT) {
-        fill_say(f, false, node_place(node), "%s is longer than %d bytes", key_of(f),
+        fill_say(f, false, node_place(node), "%s longer than %d bytes", key_is(f, subject),
                  LONGEST_FILE_TEXT);
         return false;
     }
@@ -200,19 +235,19 @@ static const char *name_fault(const char *name)
 static void fill_name(filler *f, const tree_node *node, const char **out)
 {
     const char *name = NULL;
-    char text[SHOWN_TEXT];
+    char text[SHOWN_TEXT], subject[SUBJECT_TEXT];
     if (!read_text(f, node, &name)) return;
     const char *fault = name_fault(name);
     if (fault)
-        fill_say(f, false, node_place(node), "%s is %s; %s", key_of(f), shown_text(name, text),
-                 fault);
+        fill_say(f, false, node_place(node), "%s %s; %s", key_is(f, subject),
+                 shown_text(name, text), fault);
     else
         *out = name;
 }
 
 static void fill_choice(filler *f, const tacet_field *field, const tree_node *node, int *out)
 {
-    char text[SHOWN_TEXT], list[240];
+    char text[SHOWN_TEXT], list[240], subject[SUBJECT_TEXT];
     size_t n = 0;
     for (; field->choices[n]; n++) {
         if (node->kind != TREE_TEXT || strcmp(field->choices[n], node->text) != 0) continue;
@@ -221,7 +256,7 @@ static void fill_choice(filler *f, const tacet_field *field, const tree_node *no
     }
     const char *near =
         node->kind == TREE_TEXT ? tacet_near_name(node->text, field->choices, n) : NULL;
-    fill_say(f, false, node_place(node), "%s is %s; allowed are %s%s%s%s", key_of(f),
+    fill_say(f, false, node_place(node), "%s %s; allowed are %s%s%s%s", key_is(f, subject),
              shown_node(node, text), joined(field->choices, n, list, sizeof list),
              near ? "; did you mean " : "", near ? near : "", near ? "?" : "");
 }
@@ -232,31 +267,42 @@ typedef struct {
     size_t n;
 } part;
 
+// ", or the word all", or ""
+static const char *or_word(const tacet_field *field, char out[64])
+{
+    out[0] = '\0';
+    return field->word ? tacet_text(out, 64, ", or the word %.40s", field->word) : out;
+}
+
 // Numbers of one text in the list grammar; the place is that of the fault inside the text.
 static bool read_part(filler *f, const tacet_field *field, const tree_node *node, part *out)
 {
     tacet_error e;
-    char text[SHOWN_TEXT], what[80];
+    char text[SHOWN_TEXT], word[64], subject[SUBJECT_TEXT];
     if (node->kind != TREE_TEXT || node_is_nothing(node)) {
-        fill_say(f, false, node_place(node),
-                 "%s is %s; a list of numbers, or from:to:step, is "
-                 "needed%s%s",
-                 key_of(f), shown_node(node, text), field->word ? ", or the word " : "",
-                 field->word ? field->word : "");
+        fill_say(f, false, node_place(node), "%s %s; numbers, or from:to:step, are needed%s",
+                 key_is(f, subject), shown_node(node, text), or_word(field, word));
         return false;
     }
     tacet_status status =
         tacet_list_parse(node->text, FILL_MOST_VALUES, f->arena, &out->value, &out->n, &e);
     if (status == TACET_NO_MEMORY) f->no_memory = true;
-    if (!status) return true;
+    if (status != TACET_BAD_INPUT) return status == TACET_OK;
     place at = node_place(node);
     if (!node->quoted) at.column += e.column > 0 ? e.column - 1 : 0;
-    if (field->word)
-        tacet_text(what, sizeof what, ", or the word %s", field->word);
-    else
-        what[0] = '\0';
-    fill_say(f, false, at, "%s is %s: %s%s", key_of(f), shown_text(node->text, text), e.text, what);
+    fill_say(f, false, at, "%s %s: %s%s", key_is(f, subject), shown_text(node->text, text), e.text,
+             or_word(field, word));
     return false;
+}
+
+// One part with its range checked.
+static bool check_part(filler *f, const tacet_field *field, const tree_node *node,
+                       const char *meant, part *out)
+{
+    if (!read_part(f, field, node, out)) return false;
+    for (size_t i = 0; i < out->n; i++)
+        if (!check_range(f, field, node_place(node), out->value[i], meant)) return false;
+    return true;
 }
 
 // All parts of a list, in order.
@@ -265,32 +311,27 @@ static bool read_parts(filler *f, const tacet_field *field, const tree_node *nod
 {
     bool list = node->kind == TREE_LIST, good = true;
     size_t n_parts = list ? node->n : 1, total = 0;
-    part *parts = tacet_arena_alloc(f->arena, (n_parts + 1) * sizeof *parts);
-    if (!parts) {
-        f->no_memory = true;
-        return false;
-    }
-    for (size_t i = 0; i < n_parts; i++) {
-        const tree_node *item = list ? node->child[i] : node;
+    char point[SHOWN_TEXT], subject[SUBJECT_TEXT];
+    const char *meant = list ? decimal_comma(node, false, point) : NULL;
+    part *parts = tacet_arena_alloc(f->arena, n_parts * sizeof *parts);
+    for (size_t i = 0; parts && i < n_parts; i++) {
         size_t length = list ? fill_enter_item(f, i) : strlen(f->path);
-        good = read_part(f, field, item, &parts[i]) && good;
-        for (size_t j = 0; j < parts[i].n && good; j++)
-            good = check_range(f, field, node_place(item), parts[i].value[j]);
+        good = check_part(f, field, list ? node->child[i] : node, meant, &parts[i]) && good;
         fill_leave(f, length);
         total += parts[i].n;
     }
-    if (good && total > FILL_MOST_VALUES) {
-        fill_say(f, false, node_place(node), "%s holds more than %d values", key_of(f),
+    if (parts && good && total > FILL_MOST_VALUES) {
+        fill_say(f, false, node_place(node), "%s a list of more than %d values", key_is(f, subject),
                  FILL_MOST_VALUES);
         good = false;
     }
-    *value = good ? tacet_arena_alloc(f->arena, total * sizeof **value) : NULL;
-    if (!*value) return false;
+    *value = parts && good ? tacet_arena_alloc(f->arena, total * sizeof **value) : NULL;
+    if (!parts || (good && !*value)) f->no_memory = true;
     *n = 0;
-    for (size_t i = 0; i < n_parts; i++)
+    for (size_t i = 0; *value && i < n_parts; i++)
         for (size_t j = 0; j < parts[i].n; j++)
             (*value)[(*n)++] = parts[i].value[j];
-    return true;
+    return *value != NULL;
 }
 
 static bool is_word(const tacet_field *field, const tree_node *node)
@@ -300,10 +341,11 @@ static bool is_word(const tacet_field *field, const tree_node *node)
 
 static bool refuse_empty(filler *f, const tacet_field *field, const tree_node *node)
 {
+    char word[64], subject[SUBJECT_TEXT];
     if (node->kind != TREE_LIST || node->n > 0) return false;
-    fill_say(f, false, node_place(node), "%s is an empty list; %s%s%s", key_of(f),
+    fill_say(f, false, node_place(node), "%s an empty list; %s%s", key_is(f, subject),
              field->fallback ? "leave the key out" : "it needs one item at least",
-             field->word ? ", or write the word " : "", field->word ? field->word : "");
+             or_word(field, word));
     return true;
 }
 
@@ -325,7 +367,7 @@ static void fill_counts(filler *f, const tacet_field *field, const tree_node *no
 {
     double *value = NULL;
     size_t n = 0;
-    char text[TACET_NUMBER_TEXT];
+    char text[TACET_NUMBER_TEXT], subject[SUBJECT_TEXT];
     if (is_word(field, node) || refuse_empty(f, field, node)) return;
     if (!read_parts(f, field, node, &value, &n)) return;
     unsigned *counts = tacet_arena_alloc(f->arena, n * sizeof *counts);
@@ -336,8 +378,8 @@ static void fill_counts(filler *f, const tacet_field *field, const tree_node *no
     for (size_t i = 0; i < n; i++) {
         if (!whole(value[i])) {
             const tree_node *at = node->kind == TREE_LIST && i < node->n ? node->child[i] : node;
-            fill_say(f, false, node_place(at), "%s holds %s; whole numbers are needed", key_of(f),
-                     tacet_number_format_short(value[i], 6, text));
+            fill_say(f, false, node_place(at), "%s holds %s; whole numbers are needed",
+                     key_of(f, subject), tacet_number_format_short(value[i], 6, text));
             return;
         }
         counts[i] = (unsigned)value[i];
@@ -394,17 +436,17 @@ static void fill_sections(filler *f, const tacet_field *field, const tree_node *
                           size_t *count)
 {
     const tacet_section *s = field->section;
-    char text[SHOWN_TEXT];
+    char text[SHOWN_TEXT], subject[SUBJECT_TEXT];
     if (node->kind != TREE_LIST) {
-        fill_say(f, false, node_place(node), "%s is %s; a list is needed, each item behind '- '",
-                 key_of(f), shown_node(node, text));
+        fill_say(f, false, node_place(node), "%s %s; a list is needed, each item behind '- '",
+                 key_is(f, subject), shown_node(node, text));
         return;
     }
     if (node->n == 0 && field->fallback) return;
     if (refuse_empty(f, field, node)) return;
     if (node->n > FILL_MOST_THINGS) {
-        fill_say(f, false, node_place(node), "%s has %zu items; at most %d are allowed", key_of(f),
-                 node->n, FILL_MOST_THINGS);
+        fill_say(f, false, node_place(node), "%s a list of %zu items; at most %d are allowed",
+                 key_is(f, subject), node->n, FILL_MOST_THINGS);
         return;
     }
     char *things = tacet_arena_alloc(f->arena, node->n * s->size);

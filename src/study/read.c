@@ -84,7 +84,7 @@ static tacet_status read_study(tacet_study *s, const char *bytes, size_t n, cons
     fill_section(&f, f.root, s->tree->root, (place){1, 1}, s);
     s->engine.folder = s->folder;
     if (s->tree->root->kind == TREE_MAP) {
-        checker c = {s, s->tree, &f};
+        checker c = {s, s->tree, &f, f.n_wrong};
         check_study(&c);
     }
     bool no_memory = f.no_memory;

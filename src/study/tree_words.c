@@ -8,6 +8,8 @@ static const struct {
     {"mapping values are not allowed in this context",
      "a ':' that cannot stand here: a text with ': ' inside needs quotes, and keys of one section "
      "start in one column"},
+    {"found unexpected ':'", "a ':' that cannot stand here: a key and its ':' are followed by a "
+                             "blank and a value"},
     {"did not find expected key",
      "a key was expected here: keys of one section start in one column, and a text that begins "
      "with a quote ends with it"},

@@ -25,6 +25,11 @@ static void computed(const tacet_study *s, const walk_value *v, char out[VALUE_T
         tacet_text(out, VALUE_TEXT, "even, %s each", tacet_number_format_short(even, 6, number));
     } else if (v->section == tacet_engine_keys() && strcmp(key, "cylinders") == 0) {
         tacet_text(out, VALUE_TEXT, "inline, cylinder k on throw<k>");
+    } else if (v->field->kind == TACET_FIELD_TEXT && strcmp(v->path, "train.load") == 0) {
+        tacet_text(out, VALUE_TEXT, "%s", s->train.flywheel ? s->train.flywheel : "");
+    } else if (strncmp(v->path, "engine.cylinders[", 17) == 0 && strcmp(key, "node") == 0) {
+        const tacet_cylinder_def *d = v->owner;
+        tacet_text(out, VALUE_TEXT, "throw%u", d->number);
     } else if (v->section == study_screen_keys() && strcmp(key, "highest_order") == 0) {
         tacet_text(out, VALUE_TEXT, "from the highest mode of interest");
     }
