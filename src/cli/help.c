@@ -12,8 +12,9 @@ void cli_overview(FILE *to)
           "lines\n"
           "  tacet screen my.yaml                               the main job: what may run where\n"
           "  tacet point my.yaml --density 1/2 --speed 1400     one condition in full\n"
+          "  tacet keys bands                                   what may stand in a study\n"
           "\n"
-          "Also: keys, modes, patterns. Each tells more about itself: tacet help COMMAND.\n"
+          "Also: modes, patterns, help. Each tells more about itself: tacet help COMMAND.\n"
           "Start with the first line, put your own numbers into my.yaml, then go down the list.\n"
           "What it says is a screening result, not a release: confirm it by measurement.\n",
           to);
