@@ -216,6 +216,37 @@ static void put_criticals(tacet_json *j, const check_model *m)
     tacet_json_end_array(j);
 }
 
+static void put_judging(tacet_json *j, const check_model *m)
+{
+    const tacet_model *model = m->s->model;
+    tacet_json_key(j, "bands");
+    tacet_json_begin_array(j);
+    for (size_t i = 0; i < tacet_model_bands(model); i++) {
+        const tacet_band *band = tacet_model_band(model, i);
+        tacet_json_begin_object(j);
+        tacet_json_put_text(j, "name", band->name);
+        tacet_json_put_text(j, "quantity", m->s->study->bands[i].quantity);
+        tacet_json_put_number(j, "low_hz", band->low_hz);
+        tacet_json_put_number(j, "high_hz", band->high_hz);
+        tacet_json_put_number(j, "counted_low_hz", band->counted_low_hz);
+        tacet_json_put_number(j, "counted_high_hz", band->counted_high_hz);
+        tacet_json_end_object(j);
+    }
+    tacet_json_end_array(j);
+    tacet_json_key(j, "limits");
+    tacet_json_begin_array(j);
+    for (size_t i = 0; i < tacet_model_limits(model); i++) {
+        const tacet_limit *limit = tacet_model_limit(model, i);
+        tacet_json_begin_object(j);
+        tacet_json_put_text(j, "name", limit->name);
+        tacet_json_put_text(j, "quantity", m->s->study->limits[i].quantity);
+        tacet_json_put_number(j, "value", limit->value);
+        tacet_json_put_text(j, "unit", limit->of.what->unit);
+        tacet_json_end_object(j);
+    }
+    tacet_json_end_array(j);
+}
+
 void check_put_json(tacet_json *j, const check_model *m)
 {
     const tacet_engine *en = tacet_model_engine(m->s->model);
@@ -246,4 +277,7 @@ void check_put_json(tacet_json *j, const check_model *m)
     }
     tacet_json_end_array(j);
     put_criticals(j, m);
+    put_judging(j, m);
+    tacet_json_put_count(j, "patterns", m->n_candidates - m->n_refused);
+    tacet_json_put_count(j, "speeds", m->s->study->screen.n_speeds);
 }

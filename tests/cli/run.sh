@@ -1,6 +1,7 @@
 #!/bin/sh
-# usage: sh run.sh CASES TACET ROOT   runs the commands of a case file in a scratch folder and compares.
-#   $ command      run by sh; `tacet` is TACET; tests/cli/studies is copied in, patterns/ is linked
+# usage: sh run.sh CASES TACET ROOT [JSON_PATHS]   runs the commands of a case file in a scratch folder and compares.
+#   $ command      run by sh; `tacet` is TACET; tests/cli/studies is copied in, patterns/ and
+#                  tests/cli/json are linked, `json-paths` is JSON_PATHS
 #   = 2            its exit code (0 when not said)
 #   > text         its standard output, line by line; none: must be empty
 #   ! text         its standard error, line by line; none: must be empty
@@ -14,8 +15,10 @@ scratch=$(mktemp -d)
 trap 'chmod -R u+w "$scratch"; rm -rf "$scratch"' EXIT
 mkdir "$scratch/bin" "$scratch/work"
 ln -s "$tacet" "$scratch/bin/tacet"
+[ $# -lt 4 ] || ln -s "$(realpath "$4")" "$scratch/bin/json-paths"
 cp "$root"/tests/cli/studies/* "$scratch/work/"
 ln -s "$root/patterns" "$scratch/work/patterns"
+ln -s "$root/tests/cli/json" "$scratch/work/json"
 cd "$scratch/work"
 PATH="$scratch/bin:$PATH"
 TERM=dumb
