@@ -49,23 +49,35 @@ double gas_piston_speed(double stroke_m, double speed_rad_per_s)
     return stroke_m * speed_rad_per_s / M_PI;
 }
 
-// Isentropic nozzle, subsonic: ratio = down over up, not below the critical one.
-static double subsonic(double gamma, double ratio)
+// Isentropic nozzle, subsonic: ratio = down over up, not below the critical one. Flow function and
+// its slope over the ratio.
+static double subsonic(double gamma, double ratio, double *slope)
 {
-    double power = pow(ratio, 1 / gamma);
-    return sqrt(2 * gamma / (gamma - 1) * power * (power - ratio));
+    double power = pow(ratio, 1 / gamma), over = gamma / (gamma - 1);
+    double flow = sqrt(2 * over * power * (power - ratio));
+    *slope = over * power * (2 * power / ratio - (gamma + 1)) / (gamma * flow);
+    return flow;
+}
+
+// Parabola through rest, with the value and slope of the nozzle at its other end.
+static double near_rest(double gamma, double ratio)
+{
+    double x = 1 - ratio, end = GAS_ORIFICE_REST, slope;
+    double flow = subsonic(gamma, 1 - end, &slope);
+    double a = 2 * flow / end + slope, b = -(slope * end + flow) / (end * end);
+    return x * (a + b * x);
 }
 
 double gas_orifice(const gas_law *g, double up_Pa, double up_K, double down_Pa)
 {
-    double gamma = gas_gamma(g, up_K), ratio = down_Pa / up_Pa, flow;
+    double gamma = gas_gamma(g, up_K), ratio = down_Pa / up_Pa, flow, slope;
     double log_half = log(2 / (gamma + 1)), over = 1 / (gamma - 1);
     if (ratio <= exp(gamma * over * log_half))
         flow = sqrt(gamma) * exp(0.5 * (gamma + 1) * over * log_half);
-    else if (ratio <= 1 - GAS_ORIFICE_LINEAR)
-        flow = subsonic(gamma, ratio);
+    else if (ratio <= 1 - GAS_ORIFICE_REST)
+        flow = subsonic(gamma, ratio, &slope);
     else
-        flow = subsonic(gamma, 1 - GAS_ORIFICE_LINEAR) * (1 - ratio) / GAS_ORIFICE_LINEAR;
+        flow = near_rest(gamma, ratio);
     return flow * up_Pa / sqrt(g->R_J_per_kgK * up_K);
 }
 

@@ -70,9 +70,10 @@ double gas_piston_speed(double stroke_m, double speed_rad_per_s); // mean, 2 S N
 
 // ---- flow through an orifice ------------------------------------------------------------------
 // Mass flow per effective area, kg/(s m2), from upstream (p, T) to a lower pressure: isentropic
-// nozzle, choked below the critical ratio. Within GAS_ORIFICE_LINEAR of equal pressures the flow is
-// taken linear in the difference, as the root law has no finite slope at rest.
-#define GAS_ORIFICE_LINEAR 0.005
+// nozzle, choked below the critical ratio. Within GAS_ORIFICE_REST of equal pressures the root law,
+// which has no finite slope at rest, gives way to a parabola through rest that joins it with value
+// and slope: slow flow past rings is laminar, and a table interpolates it well.
+#define GAS_ORIFICE_REST 0.05
 double gas_orifice(const gas_law *g, double up_Pa, double up_K, double down_Pa);
 
 // ---- mean effective pressure ------------------------------------------------------------------

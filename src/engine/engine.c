@@ -1,0 +1,249 @@
+// The engine: create, destroy, what it is, and the cycle table.
+#include "internal.h"
+#include "traces.h"
+#include <stdlib.h>
+#include <string.h>
+
+// A range of speeds narrower than this share of its middle is widened to it, so that nodes differ.
+#define LEAST_RANGE 0.02
+
+static void hear(void *who, bool warning, const char *path, const char *text)
+{
+    tacet_error *e = who;
+    if (warning || e->status != TACET_OK) return;
+    (void)tacet_fail(e, TACET_BAD_INPUT, "%s: %s", path, text);
+}
+
+static bool listed(const tacet_skip_def *s, unsigned number)
+{
+    for (size_t i = 0; i < s->n_cylinders; i++)
+        if (s->cylinders[i] == number) return true;
+    return s->n_cylinders == 0;
+}
+
+static void fill_slots(tacet_engine *en)
+{
+    const tacet_engine_def *d = &en->def;
+    en->n_slots = (unsigned)d->n_cylinders;
+    for (unsigned i = 0; i < en->n_slots; i++) {
+        engine_slot *s = &en->slot[i];
+        tacet_cylinder_def c = engine_cylinder(d, d->firing_order[i]);
+        *s = (engine_slot){.number = c.number,
+                           .firing_rad = engine_firing_angle(d, i),
+                           .charge_factor = c.charge_factor,
+                           .may_skip = listed(&d->skip, c.number)};
+        if (c.node)
+            tacet_text(s->node, sizeof s->node, "%s", c.node);
+        else
+            tacet_text(s->node, sizeof s->node, "throw%u", c.number);
+        bool seen = false;
+        for (unsigned j = 0; j < i; j++)
+            seen = seen || en->slot[j].charge_factor == c.charge_factor;
+        en->n_factors += !seen;
+    }
+}
+
+// x', x'' and x''' at an angle, with g = sqrt(l^2 - b^2) and its derivatives (slider.c for b).
+static void lever_at(const tacet_slider *s, double angle_rad, double out[3])
+{
+    double r = s->crank_m, l = s->rod_m, e = s->offset_m, phi = angle_rad + asin(e / (l + r));
+    double b = r * sin(phi) - e, b1 = r * cos(phi), b2 = -r * sin(phi), b3 = -b1;
+    double g = sqrt(l * l - b * b), g1 = -b * b1 / g, g2 = -(b1 * b1 + b * b2 + g1 * g1) / g;
+    double g3 = -(3 * b1 * b2 + b * b3 + 3 * g1 * g2) / g;
+    out[0] = -b2 - g1;
+    out[1] = b1 - g2;
+    out[2] = b2 - g3;
+}
+
+// Polynomial of fifth degree over 0..1 with value, slope and bend (per unit) at both ends.
+static void between(const double a[3], const double b[3], double c[6])
+{
+    double d0 = b[0] - a[0] - a[1] - a[2] / 2, d1 = b[1] - a[1] - a[2], d2 = b[2] - a[2];
+    c[0] = a[0], c[1] = a[1], c[2] = a[2] / 2;
+    c[3] = 10 * d0 - 4 * d1 + d2 / 2;
+    c[4] = -15 * d0 + 7 * d1 - d2;
+    c[5] = 6 * d0 - 3 * d1 + d2 / 2;
+}
+
+static void fill_geometry(tacet_engine *en)
+{
+    const tacet_slider *s = &en->cyl.slider;
+    double sum = 0, h = M_PI / 180, at[3], next[3];
+    en->half_degrees = en->def.strokes == 4 ? 360 : 180;
+    en->displacement_m3 = en->n_slots * en->cyl.swept_m3;
+    for (unsigned i = 0; i <= 360; i++) {
+        lever_at(s, i * h, next);
+        en->lever_m[i] = next[0];
+        en->lever_slope_m[i] = next[1];
+        next[1] *= h, next[2] *= h * h;
+        if (i > 0) {
+            between(at, next, en->lever_in[i - 1]);
+            sum += at[0] * at[0]; // trapezoid over a period: exact to rounding
+        }
+        memcpy(at, next, sizeof at);
+    }
+    en->mean_inertia_kgm2 = s->mass_kg * sum / 360;
+}
+
+tacet_status tacet_engine_create(const tacet_engine_def *d, tacet_engine **out, tacet_error *e)
+{
+    tacet_error first = {0};
+    tacet_reporter r = {hear, &first};
+    tacet_engine_def_check(d, &r);
+    if (first.status != TACET_OK) {
+        if (e) *e = first;
+        return first.status;
+    }
+    tacet_engine *en = calloc(1, sizeof *en);
+    if (!en) return tacet_fail(e, TACET_NO_MEMORY, "no memory for the engine");
+    en->def = *d;
+    en->cyl = cylinder_of(d);
+    fill_slots(en);
+    fill_geometry(en);
+    if (!isfinite(en->mean_inertia_kgm2) || !isfinite(en->displacement_m3)) {
+        free(en);
+        return tacet_fail(e, TACET_BAD_INPUT, "the engine's dimensions are not finite");
+    }
+    *out = en;
+    return TACET_OK;
+}
+
+void tacet_engine_destroy(tacet_engine *en)
+{
+    if (!en) return;
+    cylinder_clear(&en->cyl);
+    table_clear(&en->table);
+    free(en);
+}
+
+unsigned tacet_engine_cylinders(const tacet_engine *en)
+{
+    return en->n_slots;
+}
+
+unsigned tacet_engine_strokes(const tacet_engine *en)
+{
+    return en->def.strokes;
+}
+
+double tacet_engine_displacement(const tacet_engine *en)
+{
+    return en->displacement_m3;
+}
+
+unsigned tacet_engine_number(const tacet_engine *en, unsigned slot)
+{
+    return en->slot[slot].number;
+}
+
+double tacet_engine_firing_angle(const tacet_engine *en, unsigned slot)
+{
+    return en->slot[slot].firing_rad;
+}
+
+const char *tacet_engine_node(const tacet_engine *en, unsigned slot)
+{
+    return en->slot[slot].node;
+}
+
+bool tacet_engine_may_skip(const tacet_engine *en, unsigned slot)
+{
+    return en->slot[slot].may_skip;
+}
+
+const tacet_slider *tacet_engine_slider(const tacet_engine *en)
+{
+    return &en->cyl.slider;
+}
+
+double tacet_engine_mean_inertia(const tacet_engine *en)
+{
+    return en->mean_inertia_kgm2;
+}
+
+const tacet_engine_def *tacet_engine_def_of(const tacet_engine *en)
+{
+    return &en->def;
+}
+
+// Lowest and highest charge that any cylinder may see at any speed of the range.
+static void charge_range(const tacet_engine *en, const double *speed, size_t n, double range[2])
+{
+    const tacet_cycle_def *c = &en->def.cycle;
+    double least = 1, most = 1;
+    for (unsigned i = 0; i < en->n_slots; i++) {
+        least = fmin(least, en->slot[i].charge_factor);
+        most = fmax(most, en->slot[i].charge_factor);
+    }
+    range[0] = INFINITY, range[1] = 0;
+    for (size_t i = 0; i < n; i++) {
+        double rpm = speed[i] * 60 / (2 * M_PI);
+        range[0] = fmin(range[0], least * engine_lowest(c, rpm));
+        range[1] = fmax(range[1], most * engine_highest(c, rpm));
+    }
+    if (c->load_by == TACET_LOAD_FUEL) range[0] = 0, range[1] = most;
+}
+
+// The limits of the charge bend at points of their curves, which lie between the nodes.
+static void widen_by_curve(const tacet_engine *en, const tacet_curve *curve, double low,
+                           double high, double range[2])
+{
+    for (size_t i = 0; i < curve->n; i++) {
+        double speed = curve->x[i] * 2 * M_PI / 60, own[2];
+        if (!(speed > low && speed < high)) continue;
+        charge_range(en, &speed, 1, own);
+        range[0] = fmin(range[0], own[0]);
+        range[1] = fmax(range[1], own[1]);
+    }
+}
+
+static tacet_status compute(tacet_engine *en, double low, double high, unsigned longest,
+                            tacet_error *e)
+{
+    halves h = halves_of(en->def.skip.trapped, longest, en->exhaust_first);
+    tacet_status status =
+        table_create(&en->table, &h, CYLINDER_SAMPLES, TABLE_SPEEDS, TABLE_CHARGES);
+    if (status == TACET_OK) status = cylinder_grid(&en->cyl, 1);
+    if (status != TACET_OK) return tacet_fail(e, status, "no memory for the cycle table");
+    double range[2], middle = (low + high) / 2, least = LEAST_RANGE / 2 * middle;
+    double from = fmin(low, middle - least), to = fmax(high, middle + least);
+    table_nodes(en->table.speed_rad_per_s, TABLE_SPEEDS, from, to);
+    charge_range(en, en->table.speed_rad_per_s, TABLE_SPEEDS, range);
+    widen_by_curve(en, &en->def.cycle.lowest_Pa, from, to, range);
+    widen_by_curve(en, &en->def.cycle.highest_Pa, from, to, range);
+    table_nodes(en->table.charge, TABLE_CHARGES, range[0], range[1]);
+    return table_compute(&en->table, &en->cyl, &en->def, e);
+}
+
+tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_per_s,
+                                  double highest_rad_per_s, unsigned longest_run, tacet_error *e)
+{
+    if (!(lowest_rad_per_s > 0 && lowest_rad_per_s <= highest_rad_per_s &&
+          isfinite(highest_rad_per_s)))
+        return tacet_fail(e, TACET_BAD_INPUT,
+                          "speeds from %g to %g rad/s; from above 0, rising, is allowed",
+                          lowest_rad_per_s, highest_rad_per_s);
+    if (longest_run > TACET_ENGINE_RUN_MOST)
+        return tacet_fail(e, TACET_BAD_INPUT, "runs of %u skips; at most %d are allowed",
+                          longest_run, TACET_ENGINE_RUN_MOST);
+    table_clear(&en->table);
+    en->prepared = false;
+    tacet_status status = en->def.cycle.kind == TACET_CYCLE_TRACES
+                              ? traces_table(en, longest_run, e)
+                              : compute(en, lowest_rad_per_s, highest_rad_per_s, longest_run, e);
+    if (status != TACET_OK) {
+        table_clear(&en->table);
+        return status;
+    }
+    const table *t = &en->table;
+    // traces of one speed, or of none stated, serve all
+    bool bounded = en->def.cycle.kind == TACET_CYCLE_TRACES && t->n_speeds > 1;
+    en->lowest_rad_per_s = lowest_rad_per_s;
+    en->highest_rad_per_s = highest_rad_per_s;
+    if (bounded) {
+        en->lowest_rad_per_s = fmax(lowest_rad_per_s, t->speed_rad_per_s[0]);
+        en->highest_rad_per_s = fmin(highest_rad_per_s, t->speed_rad_per_s[t->n_speeds - 1]);
+    }
+    en->prepared = true;
+    return TACET_OK;
+}
