@@ -144,8 +144,10 @@ static void check_patterns(checker *c)
             return;
         }
         tacet_text(path, sizeof path, "screen.patterns[%zu]", i);
-        tacet_status status = tacet_words_find(d->patterns[i], c->study->folder, c->f->file,
-                                               c->f->arena, found, &words);
+        const char *folder = c->study->folder;
+        if (strcmp(folder, ".") == 0) folder = NULL;
+        tacet_status status =
+            tacet_words_find(d->patterns[i], folder, c->f->file, c->f->arena, found, &words);
         if (status == TACET_NO_MEMORY) c->f->no_memory = true;
         pass_on(c, path, found);
         tacet_problems_destroy(found);

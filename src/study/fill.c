@@ -148,17 +148,21 @@ static bool home_of(const tacet_section *s, const char *key, char *path, size_t 
 }
 
 // Reports a key that the section has not, and returns the one that was probably meant.
-static const char *unknown_key(filler *f, const tacet_section *s, const tree_node *node,
-                               const tree_node *key)
+static const char *unknown_key(filler *f, const tacet_section *s, const tree_node *node, size_t i)
 {
+    const tree_node *key = node->key[i];
     const char *names[MOST_KEYS];
-    char text[SHOWN_TEXT], who[128], home[FILL_LONGEST_PATH] = "", list[160];
+    char text[SHOWN_TEXT], point[SHOWN_TEXT], who[128], home[FILL_LONGEST_PATH] = "", list[160];
     const char *of = owner(f, node, who, sizeof who);
     shown_text(key->text, text);
     place at = node_place(key);
     size_t n = keys_of(s, names), length = fill_enter(f, key->text);
     const char *near = fill_is_busy(f) ? NULL : tacet_near_name(key->text, names, n);
-    if (near)
+    const char *meant = decimal_comma_in_map(node, i, point);
+    if (meant)
+        fill_say(f, false, at, "%s is no key of %s; numbers take a decimal point: %s", text, of,
+                 meant);
+    else if (near)
         fill_say(f, false, at, "%s is no key of %s; did you mean %s?", text, of, near);
     else if (!fill_is_busy(f) && f->root && home_of(f->root, key->text, home, sizeof home))
         fill_say(f, false, at, "%s is no key of %s; it belongs to %s", text, of,
@@ -252,7 +256,7 @@ void fill_section(filler *f, const tacet_section *s, const tree_node *node, plac
     bool meant[MOST_KEYS] = {false}; // keys that a mistyped one stands for
     for (size_t i = 0; node && node->kind == TREE_MAP && i < node->n; i++) {
         if (find_field(s, node->key[i]->text)) continue;
-        const char *near = unknown_key(f, s, node, node->key[i]);
+        const char *near = unknown_key(f, s, node, i);
         const tacet_field *field = near ? find_field(s, near) : NULL;
         if (field && field - s->fields < MOST_KEYS) meant[field - s->fields] = true;
     }

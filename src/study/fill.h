@@ -72,4 +72,6 @@ const char *joined(const char *const *names, size_t n, char *out, size_t bytes);
 // "1.5" when a decimal comma seems to have split a number of this node in two, else NULL. A list of
 // which it is not known that it holds too_many must have commas with and without blanks.
 const char *decimal_comma(const tree_node *node, bool too_many, char out[SHOWN_TEXT]);
+// The same for a number of digits that stands as a key: {mass_kg: 1,5}.
+const char *decimal_comma_in_map(const tree_node *map, size_t key, char out[SHOWN_TEXT]);
 #endif

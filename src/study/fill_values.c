@@ -256,9 +256,12 @@ static void fill_choice(filler *f, const tacet_field *field, const tree_node *no
     }
     const char *near =
         node->kind == TREE_TEXT ? tacet_near_name(node->text, field->choices, n) : NULL;
-    fill_say(f, false, node_place(node), "%s %s; allowed are %s%s%s%s", key_is(f, subject),
-             shown_node(node, text), joined(field->choices, n, list, sizeof list),
-             near ? "; did you mean " : "", near ? near : "", near ? "?" : "");
+    bool nothing = node_is_nothing(node);
+    fill_say(f, false, node_place(node), "%s %s; allowed are %s%s%s%s",
+             nothing ? key_of(f, subject) : key_is(f, subject),
+             nothing ? "has no value" : shown_node(node, text),
+             joined(field->choices, n, list, sizeof list), near ? "; did you mean " : "",
+             near ? near : "", near ? "?" : "");
 }
 
 // ---- lists

@@ -111,3 +111,16 @@ const char *decimal_comma(const tree_node *node, bool too_many, char out[SHOWN_T
     }
     return whole && loose ? tacet_text(out, SHOWN_TEXT, "%s.%s", whole->text, part->text) : NULL;
 }
+
+const char *decimal_comma_in_map(const tree_node *map, size_t key, char out[SHOWN_TEXT])
+{
+    if (key == 0) return NULL;
+    const tree_node *whole = map->child[key - 1], *part = map->key[key];
+    if (whole->kind != TREE_TEXT || whole->quoted || part->quoted || !tight(whole, part))
+        return NULL;
+    size_t n = strlen(whole->text), sign = n > 0 && (*whole->text == '-' || *whole->text == '+');
+    if (n + strlen(part->text) > 40 || !all_digits(whole->text + sign, n - sign) ||
+        !all_digits(part->text, strlen(part->text)))
+        return NULL;
+    return tacet_text(out, SHOWN_TEXT, "%s.%s", whole->text, part->text);
+}
