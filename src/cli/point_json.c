@@ -118,10 +118,10 @@ int point_save(point *p, const char *path)
     if (code == CLI_DONE) code = write_file(f, p, "point.json");
     bool data = code == CLI_DONE;
     if (data) code = draw(p, f);
+    bool drawn = tacet_folder_wrote(f, "bars.svg") || tacet_folder_wrote(f, "bars.png");
     tacet_folder_close(f);
     if (data)
-        cli_say("look at %s/%s%s", path,
-                code == CLI_DONE && p->n_quantities > 0 ? "bars and repeat for the drawings, " : "",
-                "lines.csv for every line");
+        cli_say("look at %s/%slines.csv for every line", path,
+                drawn ? "bars and repeat for the drawings, " : "");
     return code;
 }

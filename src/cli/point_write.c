@@ -199,10 +199,10 @@ static void write_duty(const point *p)
                p->row.fuel_to_all_fire <= 1 ? "less" : "more");
     else
         printf(", all cylinders firing cannot meet this demand");
-    printf("\nOf the fuel's heat: brake %.1f %%, pumping %.1f %%, friction %.1f %%, walls %.1f %%, "
-           "exhaust %.1f %%, blow-by %.1f %%\n\n",
-           d->brake_W / heat, d->pumping_W / heat, d->friction_W / heat, d->wall_heat_W / heat,
-           d->exhaust_W / heat, d->blow_by_W / heat);
+    printf("\nOf the fuel's heat: brake %.1f %%, friction %.1f %%, walls %.1f %%, exhaust %.1f %%, "
+           "blow-by %.1f %% (pumping, %.1f %%, leaves with the exhaust)\n\n",
+           d->brake_W / heat, d->friction_W / heat, d->wall_heat_W / heat, d->exhaust_W / heat,
+           d->blow_by_W / heat, d->pumping_W / heat);
 }
 
 static void write_solver(const point *p)

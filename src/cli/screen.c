@@ -89,6 +89,10 @@ static int screen_study(const cli_call *call, const cli_session *s, tacet_folder
     cli_say_problems(problems);
     bool said = tacet_problems_errors(problems) > 0;
     tacet_problems_destroy(problems);
+    if (status == TACET_STOPPED) {
+        cli_say("%s; nothing was written", e.text);
+        return CLI_DONE; // the signal is raised again
+    }
     if (status != TACET_OK) return said ? cli_exit_of(status) : cli_failed(status, &e);
     int code = write_out(call, s, screen);
     if (code == CLI_DONE && folder) code = save(call, s, screen, folder);

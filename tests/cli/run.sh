@@ -20,9 +20,10 @@ cp "$root"/tests/cli/studies/* "$scratch/work/"
 ln -s "$root/patterns" "$scratch/work/patterns"
 ln -s "$root/tests/cli/json" "$scratch/work/json"
 cd "$scratch/work"
+TACET=$tacet
 PATH="$scratch/bin:$PATH"
 TERM=dumb
 LC_ALL=C
-export PATH TERM LC_ALL
+export TACET PATH TERM LC_ALL
 unset NO_COLOR POSIXLY_CORRECT || true
 awk -v out="$scratch" -f "$root/tests/cli/run.awk" "$cases"
