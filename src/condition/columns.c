@@ -14,7 +14,8 @@ static double reached(const tacet_row *r, double value)
 static double speed_rpm(ROW)
 {
     USE;
-    return 60 * tacet_order_hz(1, r->speed_rad_per_s);
+    // the way from rpm and back is not exact
+    return round(60e6 * tacet_order_hz(1, r->speed_rad_per_s)) / 1e6;
 }
 
 static double demand_nm(ROW)

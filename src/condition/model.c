@@ -274,8 +274,9 @@ double tacet_model_reference(const tacet_model *m, size_t band)
 
 double tacet_model_demand(const tacet_model *m, double speed_rad_per_s)
 {
-    return tacet_curve_at(&m->study->screen.brake_torque_Nm,
-                          60 * tacet_order_hz(1, speed_rad_per_s));
+    // the way from rpm and back is not exact
+    double rpm = round(60e6 * tacet_order_hz(1, speed_rad_per_s)) / 1e6;
+    return tacet_curve_at(&m->study->screen.brake_torque_Nm, rpm);
 }
 
 size_t tacet_model_lines(const tacet_model *m, unsigned revolutions)
