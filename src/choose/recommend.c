@@ -114,7 +114,7 @@ static void why_never_clear(const tacet_screen *s, const tacet_candidate *c,
                            : limit >= 0 ? rules->limit_name[limit]
                                         : "no band";
     tacet_text(text, TEXT_BYTES,
-               "clear at no screened speed: at best %.1f dB at %.0f rpm (%s); %g dB are asked",
+               "clear at no screened speed: at best %.2f dB at %.0f rpm (%s); %g dB are asked",
                cell->row.worst_margin_db, rpm(cell->row.speed_rad_per_s), limiting,
                rules->reserve_db);
 }

@@ -87,10 +87,10 @@ static void test_rank_none_clear(void **state)
     assert_false(s->notes[1].recommended);
     assert_string_equal(
         s->notes[1].why_not,
-        "clear at no screened speed: at best 2.0 dB at 1200 rpm (roll); 3 dB are asked");
+        "clear at no screened speed: at best 2.00 dB at 1200 rpm (roll); 3 dB are asked");
     assert_string_equal(
         s->notes[0].why_not,
-        "clear at no screened speed: at best -2.2 dB at 1000 rpm (coupling); 3 dB are asked");
+        "clear at no screened speed: at best -2.25 dB at 1000 rpm (coupling); 3 dB are asked");
     assert_int_equal(s->notes[1].n_near, 1);
     assert_int_equal(s->notes[1].n_over, 2);
     assert_near(s->notes[1].clear_rad_per_s, 0, 0, 0);
@@ -193,7 +193,7 @@ static void test_small_savings(void **state)
     assert_true(s->notes[0].recommended);
     assert_string_equal(s->notes[0].why_not, "");
     assert_string_equal(s->notes[1].why_not,
-                        "saves at most 0.6 % more than 3/4, the next clear one; 1 % are asked");
+                        "saves at most 0.60 % more than 3/4, the next clear one; 1 % are asked");
     assert_string_equal(s->notes[2].why_not,
                         "wherever it is clear, another saves more; 1/2 for one");
     set_margin(cell_at(s, 3, 0), -1, 3, 0); // all-fire over: the thirstiest clear one stands first
@@ -251,7 +251,7 @@ static void test_limit_is_named(void **state)
     judge(s, &rules);
     assert_string_equal(
         s->notes[0].why_not,
-        "clear at no screened speed: at best -1.0 dB at 1000 rpm (stress); 3 dB are asked");
+        "clear at no screened speed: at best -1.00 dB at 1000 rpm (stress); 3 dB are asked");
     assert_int_equal(s->notes[0].limiting_band, -1);
     synthetic_destroy(s);
 }
