@@ -129,7 +129,7 @@ static void why_not_best(const tacet_screen *s, const note_rules *rules, const f
         tacet_text(text, TEXT_BYTES, "saves nothing against %s, which is clear as well", over);
     else
         tacet_text(text, TEXT_BYTES,
-                   "saves at most %.1f %% more than %s, the next clear one; %g %% are asked",
+                   "saves at most %.2f %% more than %s, the next clear one; %g %% are asked",
                    100 * f->best_gain, over, 100 * rules->least_saving);
 }
 
