@@ -26,10 +26,9 @@ static bool follows(const checker *c, const char *path)
 {
     char thing[FILL_LONGEST_PATH];
     const char *item = strrchr(path, ']');
-    tacet_text(thing, sizeof thing, "%.*s", item ? (int)(item - path + 1) : (int)strlen(path),
-               path);
+    tacet_text(thing, sizeof thing, "%.*s", item ? (int)(item - path + 1) : 0, path);
     bool linked = strncmp(path, "train.nodes[", 12) == 0;
-    return fill_was_wrong(c->f, thing, c->n_filled) ||
+    return (item && fill_was_wrong(c->f, thing, c->n_filled)) ||
            (linked && (fill_is_wrong(c->f, "train.links") || fill_is_wrong(c->f, "train.dampers")));
 }
 

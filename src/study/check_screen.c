@@ -6,6 +6,7 @@
 #define RPM        (2 * M_PI / 60)
 #define MOST_BANDS 16 // and limits: what one row of results holds
 #define SLACK      1e-9
+#define MOST_KEPT  20 // problems of a kind that are kept with their texts
 
 static void check_counts(checker *c)
 {
@@ -120,7 +121,10 @@ static void check_densities(checker *c)
 // theirs.
 static void pass_on(checker *c, const char *path, const tacet_problems *found)
 {
-    for (size_t i = 0; i < tacet_problems_kept(found); i++) {
+    size_t kept = tacet_problems_kept(found);
+    size_t told = tacet_problems_errors(found) + tacet_problems_warnings(found);
+    if (kept < told && kept < MOST_KEPT) c->f->no_memory = true; // their texts were lost
+    for (size_t i = 0; i < kept; i++) {
         const tacet_problem *p = tacet_problems_at(found, i);
         if (p->line == 0) {
             check_say(c, p->warning, path, "patterns: %s", p->text);

@@ -315,8 +315,12 @@ void fill_check_names(filler *f, const tacet_section *s, const tree_node *list, 
     const tacet_field *field = s->fields;
     while (field->key && field->kind != TACET_FIELD_NAME)
         field++;
-    named *names = field->key && n > 1 ? malloc(n * sizeof *names) : NULL;
-    if (!names) return;
+    if (!field->key || n < 2) return;
+    named *names = malloc(n * sizeof *names);
+    if (!names) {
+        f->no_memory = true;
+        return;
+    }
     size_t m = 0;
     for (size_t i = 0; i < n; i++) {
         const char *thing = (const char *)things + i * s->size + field->offset;

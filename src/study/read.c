@@ -32,31 +32,38 @@ void tacet_study_destroy(tacet_study *s)
     free(s);
 }
 
-// The bytes of files that a study names count as its values do.
-static uint64_t hash_file(const tacet_study *s, uint64_t hash, const char *name)
+// The bytes of files that a study names count as its values do. They were read before: only memory
+// can be lacking, or somebody has taken a file away since.
+static tacet_status hash_file(tacet_study *s, const char *name, size_t letters,
+                              tacet_problems *problems)
 {
-    char *bytes, *path = name ? study_path(s, name, s->arena) : NULL;
+    char *bytes, *own = tacet_arena_alloc(s->arena, letters + 1);
+    if (!own) return TACET_NO_MEMORY;
+    memcpy(own, name, letters);
+    char *path = study_path(s, own, s->arena);
     size_t n;
-    if (!path || tacet_file_read(path, TREE_MOST_BYTES, s->arena, &bytes, &n, NULL)) return hash;
-    return fnv_bytes(hash, bytes, n);
+    tacet_error e;
+    if (!path) return TACET_NO_MEMORY;
+    tacet_status status = tacet_file_read(path, TREE_MOST_BYTES, s->arena, &bytes, &n, &e);
+    if (status == TACET_OUTSIDE_WORLD)
+        tacet_problems_add(problems, false, s->path, 0, 0, "%s", e.text);
+    if (!status) s->fingerprint = fnv_bytes(s->fingerprint, bytes, n);
+    return status;
 }
 
-static uint64_t hash_files(const tacet_study *s, uint64_t hash)
+static tacet_status hash_files(tacet_study *s, tacet_problems *problems)
 {
     const tacet_cycle_def *d = &s->engine.cycle;
-    if (d->kind == TACET_CYCLE_TRACES) {
-        hash = hash_file(s, hash, d->fired_trace);
-        hash = hash_file(s, hash, d->skipped_trace);
+    const char *traces[] = {d->fired_trace, d->skipped_trace};
+    tacet_status status = TACET_OK;
+    for (size_t i = 0; i < 2 && d->kind == TACET_CYCLE_TRACES && !status; i++)
+        if (traces[i]) status = hash_file(s, traces[i], strlen(traces[i]), problems);
+    for (size_t i = 0; i < s->screen.n_patterns && !status; i++) {
+        static const char ending[] = ".words";
+        const char *text = s->screen.patterns[i], *end = strstr(text, ending);
+        if (end) status = hash_file(s, text, (size_t)(end - text) + strlen(ending), problems);
     }
-    for (size_t i = 0; i < s->screen.n_patterns; i++) {
-        const char *text = s->screen.patterns[i], *end = strstr(text, ".words");
-        size_t letters = end ? (size_t)(end - text) + strlen(".words") : 0;
-        char *book = end ? tacet_arena_alloc(s->arena, letters + 1) : NULL;
-        if (!book) continue;
-        memcpy(book, text, letters);
-        hash = hash_file(s, hash, book);
-    }
-    return hash;
+    return status;
 }
 
 static tacet_status read_tree(tacet_study *s, const char *bytes, size_t n, const char *file,
@@ -91,8 +98,8 @@ static tacet_status read_study(tacet_study *s, const char *bytes, size_t n, cons
     filler_clear(&f);
     if (no_memory) return TACET_NO_MEMORY;
     if (tacet_problems_errors(problems) > errors) return TACET_BAD_INPUT;
-    s->fingerprint = hash_files(s, walk_fingerprint(tacet_study_keys(), s));
-    return TACET_OK;
+    s->fingerprint = walk_fingerprint(tacet_study_keys(), s);
+    return hash_files(s, problems);
 }
 
 tacet_status tacet_study_read_text(const char *text, size_t bytes, const char *name,
