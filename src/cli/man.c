@@ -105,8 +105,10 @@ static void page(void)
         roff(target[q->target]);
         printf("\n");
         roff(q->doc);
-        printf(", in ");
-        roff(q->unit ? q->unit : "no unit");
+        if (q->unit && strcmp(q->unit, "1") != 0) {
+            printf(", in ");
+            roff(q->unit);
+        }
         printf("\n");
     }
     printf(
