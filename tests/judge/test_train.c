@@ -29,7 +29,7 @@ static tacet_link_def link_of(const char *name, const char *from, const char *to
         .outer_m = NAN,
         .inner_m = NAN,
         .stress_concentration = 1,
-        .throw_ = {0, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN},
+        .throw_ = {-1, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN},
         .damping_Nms_per_rad = NAN,
         .damping_ratio = NAN,
         .loss_factor = NAN,
