@@ -177,7 +177,7 @@ static void order_names(canvas *c, const tacet_figure_orders *f, bool *named)
 }
 
 // Names of bands and modes in one column, moved apart where they would touch.
-static void names(canvas *c, const tacet_figure_orders *f, double low_px)
+static void names(canvas *c, const tacet_figure_orders *f, double high_px)
 {
     double at[NAMES_MOST], wish[NAMES_MOST];
     const char *name[NAMES_MOST];
@@ -202,7 +202,7 @@ static void names(canvas *c, const tacet_figure_orders *f, double low_px)
     }
     do
         memcpy(at, wish, n * sizeof *at);
-    while (!canvas_spread(n, at, 22, c->top, low_px) && n--); // the last modes drop out first
+    while (!canvas_spread(n, at, 22, high_px, c->bottom) && n--); // the last modes drop out first
     for (size_t i = 0; i < n; i++) {
         canvas_line(c, c->right + 3, wish[i], c->right + 24, at[i], is_mode[i] ? INK : INK_FAINT, 1,
                     is_mode[i]);
@@ -226,24 +226,25 @@ static void key(canvas *c, const tacet_figure_orders *f, double most, double y)
     char text[160];
     double x = c->right + 30;
     canvas_style style = {.size = FONT_SMALL, .most_px = KEY_PX - 46};
-    snprintf(text, sizeof text, "%s, %s rms", f->quantity, f->unit);
     canvas_text(c, x, y, (canvas_style){.size = FONT_SMALL, .bold = true, .most_px = KEY_PX - 46},
-                text);
+                f->quantity);
+    snprintf(text, sizeof text, "%s rms, shown by area", f->unit);
+    canvas_text(c, x, y + 22, style, text);
     double value = most > 0 ? round_below(most) : 0, at = x;
     for (int i = 0; i < 3 && value > 0; i++, value /= 4) {
         char number[TACET_NUMBER_TEXT];
         double radius = RADIUS_PX * sqrt(value / most);
         tacet_number_format_short(value, 3, number);
-        canvas_disc(c, at + radius, y + 30, radius, "#5b8fb9", PAPER);
-        canvas_text(c, at + 2 * radius + 5, y + 30, style, number);
+        canvas_disc(c, at + radius, y + 50, radius, "#5b8fb9", PAPER);
+        canvas_text(c, at + 2 * radius + 5, y + 50, style, number);
         at += 2 * radius + canvas_text_width(number, FONT_SMALL, false) + 22;
     }
     bool judged = false;
     for (size_t b = 0; b < f->n_bands; b++)
         judged |= f->band[b].judged;
     if (!judged) return;
-    canvas_disc(c, x + 8, y + 60, 7, FILL_DARK, PAPER);
-    canvas_text(c, x + 24, y + 60, style, "inside a band judged on it");
+    canvas_disc(c, x + 8, y + 78, 7, FILL_DARK, PAPER);
+    canvas_text(c, x + 24, y + 78, style, "inside a band judged on it");
 }
 
 void figure_orders_script(canvas *c, const tacet_figure_orders *f)
@@ -270,7 +271,7 @@ void figure_orders_script(canvas *c, const tacet_figure_orders *f)
     rays(c, f, named);
     mode_lines(c, f, named);
     circles(c, f, most);
-    names(c, f, c->bottom - 104);
-    key(c, f, most, c->bottom - 66);
+    key(c, f, most, c->top - 34);
+    names(c, f, c->top + 74);
     canvas_use(c, "orders");
 }

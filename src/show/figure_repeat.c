@@ -156,7 +156,7 @@ void figure_repeat_script(canvas *c, const tacet_figure_repeat *f)
                  {"bottom", 1 - p->bottom / CANVAS_HEIGHT},
                  {"low", p->low},
                  {"high", p->high},
-                 {"step", canvas_step(p->low, p->high, 5)}};
+                 {"step", canvas_step(p->low, p->high, 7)}};
         for (size_t k = 0; k < 5; k++) {
             snprintf(name, sizeof name, "%s_%s", which, v[k].tail);
             variable(c, name, v[k].value);

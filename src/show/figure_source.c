@@ -1,4 +1,5 @@
 #include "show/figure_source.h"
+#include <math.h>
 #include <string.h>
 
 tacet_status figure_no_memory(tacet_error *e)
@@ -54,11 +55,17 @@ const char *figure_at_text(const tacet_figure_source *s, const char *of, double 
 size_t figure_pick_largest(size_t n, const double *weight, size_t most, bool *picked)
 {
     size_t count = 0;
-    memset(picked, 0, n * sizeof *picked);
+    double least = 0;
+    for (size_t i = 0; i < n; i++) {
+        least = fmax(least, FIGURE_LEAST_SHARE * weight[i]);
+        picked[i] = false;
+    }
     for (; count < most; count++) {
         size_t best = n;
         for (size_t i = 0; i < n; i++)
-            if (!picked[i] && weight[i] > 0 && (best == n || weight[i] > weight[best])) best = i;
+            if (!picked[i] && weight[i] > 0 && weight[i] >= least &&
+                (best == n || weight[i] > weight[best]))
+                best = i;
         if (best == n) break;
         picked[best] = true;
     }

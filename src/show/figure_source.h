@@ -15,7 +15,10 @@ tacet_figure_band *figure_bands(const tacet_figure_source *s, size_t *n);
 TACET_USE tacet_status figure_solve(const tacet_figure_source *s, const tacet_roll *roll,
                                     double speed_rad_per_s, double demand_Nm, tacet_row *row,
                                     tacet_error *e);
-// Sets picked[i] for the `most` largest weights above 0; gives how many there are.
+// Lines under this share of the largest (-50 dB) are not drawn: they are the rounding and the
+// half orders of nearly equal cylinders, too small to see.
+#define FIGURE_LEAST_SHARE 3e-3
+// Sets picked[i] for the `most` largest weights that are worth drawing; gives how many there are.
 size_t figure_pick_largest(size_t n, const double *weight, size_t most, bool *picked);
 
 #endif

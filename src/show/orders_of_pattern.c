@@ -6,7 +6,21 @@
 
 #define ORDERS_DRAWN 24
 
-// Elastic modes, named by the node that moves most in them.
+// The link with most strain energy in a mode, k (th_from / ratio - th_to)^2.
+static size_t strained_link(const tacet_train *t, const double *shape)
+{
+    size_t most = 0;
+    double largest = -1;
+    for (size_t l = 0; l < tacet_train_links(t); l++) {
+        tacet_link_info link = tacet_train_link_info(t, l);
+        double twist = shape[link.from] / link.gear_ratio - shape[link.to];
+        double energy = link.stiffness_Nm_per_rad * twist * twist;
+        if (energy > largest) largest = energy, most = l;
+    }
+    return most;
+}
+
+// Elastic modes, named by the link that is strained most.
 static tacet_status modes_of(const tacet_figure_source *s, tacet_figure_mode **out, size_t *n)
 {
     const tacet_train *t = tacet_model_train(s->model);
@@ -17,12 +31,9 @@ static tacet_status modes_of(const tacet_figure_source *s, tacet_figure_mode **o
     *n = 0;
     if (!hz || !shape || !*out) return TACET_NO_MEMORY;
     tacet_status status = tacet_train_modes(t, hz, shape);
-    for (size_t m = 1; status == TACET_OK && m < nodes; m++) {
-        size_t largest = 0;
-        for (size_t k = 1; k < nodes; k++)
-            if (fabs(shape[m * nodes + k]) > fabs(shape[m * nodes + largest])) largest = k;
-        (*out)[(*n)++] = (tacet_figure_mode){tacet_train_node_name(t, largest), hz[m]};
-    }
+    for (size_t m = 1; status == TACET_OK && m < nodes; m++)
+        (*out)[(*n)++] = (tacet_figure_mode){
+            tacet_train_link_name(t, strained_link(t, &shape[m * nodes])), hz[m]};
     return status;
 }
 

@@ -53,7 +53,7 @@ static tacet_status torques_of(const tacet_figure_source *s, const double *angle
         pistons[i] = tacet_spectrum_at(&sum, angle_rad[i]);
         shaft[i] = tacet_spectrum_at(x, angle_rad[i]);
     }
-    trace[0] = (tacet_figure_trace){"gas and inertia, all throws", pistons, false};
+    trace[0] = (tacet_figure_trace){"all pistons", pistons, false};
     trace[1] = (tacet_figure_trace){screen_quantity_name(s->model, s->of, s->arena), shaft, true};
     return trace[1].name ? TACET_OK : TACET_NO_MEMORY;
 }

@@ -60,25 +60,30 @@ typedef struct {
     bool has_of, has_shaft;
 } choice;
 
-// Rank of a cell as an example: a recommended skip pattern, then any solved skip pattern, then any.
+// How well a cell serves as an example: a skip pattern where it is recommended, then any solved
+// skip pattern, then any solved condition.
 static int example_rank(const job *b, size_t cell)
 {
-    const tacet_candidate *c = screen_candidate(b->s, cell);
     if (b->s->cells[cell].row.outcome != TACET_SOLVED) return 0;
-    if (screen_all_fire(c)) return 1;
-    return b->s->notes[b->s->cells[cell].candidate].recommended ? 3 : 2;
+    if (screen_all_fire(screen_candidate(b->s, cell))) return 1;
+    for (size_t i = 0; i < b->s->n_ranks; i++)
+        if (b->s->ranks[i].best == cell) return 3;
+    return 2;
 }
 
-// Of the best rank: where it is best, then with the least margin that is not over.
+// Of equal rank: the candidate that is recommended at most speeds, and of its cells the one with
+// the least margin that is not over.
 static bool better_example(const job *b, size_t cell, size_t than)
 {
-    const tacet_row *r = &b->s->cells[cell].row, *best = &b->s->cells[than].row;
+    const tacet_cell *a = &b->s->cells[cell], *best = &b->s->cells[than];
     int rank = example_rank(b, cell), best_rank = example_rank(b, than);
     if (rank != best_rank) return rank > best_rank;
-    bool over = r->worst == TACET_OVER, best_over = best->worst == TACET_OVER;
+    size_t n = b->s->notes[a->candidate].n_best, best_n = b->s->notes[best->candidate].n_best;
+    if (n != best_n) return n > best_n;
+    bool over = a->row.worst == TACET_OVER, best_over = best->row.worst == TACET_OVER;
     if (over != best_over) return !over;
-    return over ? r->worst_margin_db > best->worst_margin_db
-                : r->worst_margin_db < best->worst_margin_db;
+    return over ? a->row.worst_margin_db > best->row.worst_margin_db
+                : a->row.worst_margin_db < best->row.worst_margin_db;
 }
 
 static size_t pick_cell(const job *b)
@@ -91,27 +96,49 @@ static size_t pick_cell(const job *b)
     return best;
 }
 
-// The quantity of the band that limits there, and the torque of a shaft behind the flywheel.
-static choice choose(const job *b)
+// Of the bands whose quantity has a spectrum: one with a line inside before one without (there the
+// spread of cylinders and cycles alone counts), then the smallest margin. SIZE_MAX: no band.
+static size_t pick_band(const job *b, const tacet_row *r)
 {
-    choice c = {.cell = pick_cell(b)};
-    const tacet_train *t = tacet_model_train(b->m);
-    if (c.cell == SIZE_MAX) return c;
-    int band = b->s->cells[c.cell].row.limiting_band;
-    for (size_t i = 0; i < tacet_model_bands(b->m); i++) {
-        tacet_quantity_ref of = tacet_model_band(b->m, i)->of;
-        if (!of.what->spectrum) continue;
-        if (!c.has_of || band == (int)i) c.of = of, c.has_of = true;
-        if (!c.has_shaft && strcmp(of.what->name, "link-torque") == 0)
-            c.shaft = of, c.has_shaft = true;
+    size_t best = SIZE_MAX;
+    for (size_t i = 0; i < r->n_bands; i++) {
+        const tacet_band_result *x = &r->bands[i];
+        if (!tacet_model_band(b->m, i)->of.what->spectrum || !isfinite(x->margin_db)) continue;
+        if (best != SIZE_MAX) {
+            const tacet_band_result *y = &r->bands[best];
+            bool line = x->level.leading_order > 0, best_line = y->level.leading_order > 0;
+            if (line != best_line ? best_line : x->margin_db >= y->margin_db) continue;
+        }
+        best = i;
     }
-    for (size_t i = 0; i < tacet_train_links(t) && !c.has_shaft; i++) {
+    return best;
+}
+
+// Torque of a shaft: of the first band on one, otherwise of the first link behind the flywheel.
+static bool pick_shaft(const job *b, tacet_quantity_ref *shaft)
+{
+    const tacet_train *t = tacet_model_train(b->m);
+    for (size_t i = 0; i < tacet_model_bands(b->m); i++) {
+        *shaft = tacet_model_band(b->m, i)->of;
+        if (strcmp(shaft->what->name, "link-torque") == 0) return true;
+    }
+    for (size_t i = 0; i < tacet_train_links(t); i++) {
         char name[160];
         if (tacet_train_link_info(t, i).from != tacet_train_flywheel(t)) continue;
         snprintf(name, sizeof name, "link-torque:%s", tacet_train_link_name(t, i));
-        c.has_shaft = tacet_quantity_parse(name, t, &c.shaft, NULL) == TACET_OK;
+        if (tacet_quantity_parse(name, t, shaft, NULL) == TACET_OK) return true;
     }
-    if (!c.has_of) c.of = c.shaft, c.has_of = c.has_shaft;
+    return false;
+}
+
+static choice choose(const job *b)
+{
+    choice c = {.cell = pick_cell(b)};
+    if (c.cell == SIZE_MAX) return c;
+    c.has_shaft = pick_shaft(b, &c.shaft);
+    size_t band = pick_band(b, &b->s->cells[c.cell].row);
+    c.of = band == SIZE_MAX ? c.shaft : tacet_model_band(b->m, band)->of;
+    c.has_of = band != SIZE_MAX || c.has_shaft;
     return c;
 }
 

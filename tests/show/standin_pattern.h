@@ -18,7 +18,7 @@ struct tacet_workspace {
     tacet_spectrum spectrum, pistons[2];
     tacet_response response;
 };
-// Amplitude (peak) of line h of a roll's drawn quantity: 1 / h of a pattern; all-fire has 100 at
+// Amplitude (peak) of line h of a roll's drawn quantity: 1 / h of a pattern; all-fire has 2 at
 // order 3 and nothing else. Phase 0; mean 50.
 double standin_amplitude(const tacet_roll *r, size_t h);
 
