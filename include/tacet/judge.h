@@ -8,8 +8,8 @@
 #include "tacet/train.h"
 #pragma GCC visibility push(default)
 
-// ---- what is judged
-// -------------------------------------------------------------------------------------- One
+// ---- what is judged ----------------------------------------------------------------------------
+// One
 // periodic response on the line grid. All borrowed.
 typedef struct {
     const tacet_train *train;
@@ -50,8 +50,7 @@ typedef struct {
 TACET_USE tacet_status tacet_quantity_parse(const char *text, const tacet_train *t,
                                             tacet_quantity_ref *out, tacet_error *e);
 
-// ---- definition (lists bands and limits of a study)
-// ----------------------------------------------------------
+// ---- definition (lists bands and limits of a study) --------------------------------------------
 typedef enum {
     TACET_BAND_CAB,
     TACET_BAND_MOUNT,
@@ -85,8 +84,7 @@ const tacet_section *tacet_limit_keys(void);
 void tacet_band_def_check(const tacet_band_def *d, const char *path, const tacet_reporter *r);
 double tacet_band_guard(const tacet_band_def *d); // resolved fraction
 
-// ---- bands
-// ----------------------------------------------------------------------------------------------------
+// ---- bands -------------------------------------------------------------------------------------
 typedef enum { TACET_CLEAR, TACET_NEAR, TACET_OVER, TACET_NO_VERDICT } tacet_verdict;
 typedef enum {
     TACET_WHY_NONE,
@@ -163,8 +161,7 @@ void tacet_band_judge(const tacet_band *b, const tacet_band_level *level,
 // The result of a condition that has no response.
 void tacet_band_no_verdict(tacet_why why, tacet_band_result *out);
 
-// ---- limits
-// ------------------------------------------------------------------------------------------------------
+// ---- limits ------------------------------------------------------------------------------------
 typedef struct tacet_limit {
     const char *name;
     tacet_quantity_ref of;
@@ -185,8 +182,7 @@ TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_respo
                                          tacet_limit_result *out);
 void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
 
-// ---- order windows
-// ---------------------------------------------------------------------------------------------
+// ---- order windows -----------------------------------------------------------------------------
 // Exact speeds (rad/s) at which an order lies in the band, bare or counted.
 void tacet_order_window(const tacet_band *b, double order, bool counted, double *low_rad_per_s,
                         double *high_rad_per_s);

@@ -154,6 +154,7 @@ static tacet_status target_check(tacet_quantity_ref ref, const tacet_train *t, t
 tacet_status tacet_quantity_parse(const char *text, const tacet_train *t, tacet_quantity_ref *out,
                                   tacet_error *e)
 {
+    if (!text) text = "";
     const char *colon = strchr(text, ':');
     size_t length = colon ? (size_t)(colon - text) : strlen(text);
     char name[64];

@@ -12,6 +12,7 @@ static void check_keys(const tacet_section *s, const char *const *keys)
         assert_string_equal(s->fields[i].key, keys[i]);
         assert_non_null(s->fields[i].doc);
         assert_true(s->fields[i].offset < s->size);
+        assert_true(!s->fields[i].unit || tacet_unit_factor(s->fields[i].unit) > 0);
     }
     assert_null(s->fields[i].key);
 }
@@ -76,6 +77,7 @@ static void test_offsets_reach_their_members(void **state)
     assert_int_equal(field(tacet_band_keys(), "limit_rms")->offset,
                      offsetof(tacet_band_def, limit_rms));
     assert_int_equal(field(tacet_band_keys(), "low_hz")->offset, offsetof(tacet_band_def, low_hz));
+    assert_near(tacet_unit_factor(field(tacet_band_keys(), "guard_percent")->unit), 0.01, 0, 0);
     assert_int_equal(field(tacet_limit_keys(), "value")->offset, offsetof(tacet_limit_def, value));
 }
 

@@ -265,6 +265,7 @@ static void test_parse_refuses_and_says_what_is_allowed(void **state)
     bench_init(&b);
     refused(&b, "link-torqe:damper", "unknown quantity 'link-torqe'; did you mean 'link-torque'?");
     refused(&b, "", "allowed: roll-torque, link-torque, link-stress");
+    refused(&b, NULL, "allowed: roll-torque");
     refused(&b, "zzzzzz", "node-acceleration, irregularity");
     refused(&b, "link-torque", "'link-torque' needs the name of a link: link-torque:NAME");
     refused(&b, "node-speed:", "needs the name of a node");
