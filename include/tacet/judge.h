@@ -9,8 +9,7 @@
 #pragma GCC visibility push(default)
 
 // ---- what is judged ----------------------------------------------------------------------------
-// One
-// periodic response on the line grid. All borrowed.
+// One periodic response on the line grid. All borrowed.
 typedef struct {
     const tacet_train *train;
     const tacet_train_motion *motion;
