@@ -202,14 +202,13 @@ static void draw_pattern(const job *b, tacet_workspace *w, drawing *d)
         draw(b, d, "repeat", &(tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &repeat}});
 }
 
+// The shortest first: a full disk takes the answer last.
 static tacet_status save_data(const job *b, tacet_error *e)
 {
-    tacet_status status = TACET_OK;
+    tacet_status status = save_text(b, e);
     for (const tacet_screen_table *t = tacet_screen_tables(); status == TACET_OK && t->name; t++)
         status = save_table(b, t, e);
-    if (status == TACET_OK) status = save_text(b, e);
-    if (status == TACET_OK) status = save_json(b, e);
-    return status;
+    return status == TACET_OK ? save_json(b, e) : status;
 }
 
 tacet_status tacet_screen_save(const tacet_model *m, const tacet_screen *s, tacet_workspace *w,
