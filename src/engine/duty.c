@@ -15,7 +15,7 @@ static void fill_memo(const tacet_engine *en, double speed, tacet_engine_work *w
 {
     if (w->memo_valid && memcmp(&w->memo_speed, &speed, sizeof speed) == 0) return;
     const table *t = &en->table;
-    table_place at = table_at(t->speed_rad_per_s, t->n_speeds, speed);
+    table_place at = table_at_speed(t, speed);
     for (size_t kind = 0; kind < t->n_kinds; kind++)
         for (size_t c = 0; c < t->n_charges; c++)
             table_numbers(t, kind, &at, c, w->memo + (kind * t->n_charges + c) * HALF_NUMBERS);
@@ -58,7 +58,7 @@ static void totals(const problem *p, double charge, double total[HALF_NUMBERS])
     const table *t = &p->en->table;
     memset(total, 0, HALF_NUMBERS * sizeof *total);
     for (unsigned g = 0; g < p->w->n_groups; g++) {
-        table_place at = table_at(t->charge, t->n_charges, charge * p->w->group[g].share);
+        table_place at = table_at_charge(t, charge * p->w->group[g].share);
         const double *sum = sum_of(p->w, g) + at.first * HALF_NUMBERS;
         for (size_t k = 0; k < at.n; k++)
             for (size_t j = 0; j < HALF_NUMBERS; j++)
@@ -87,7 +87,7 @@ static double highest_peak(const problem *p, double charge, bool *in_skip)
     double highest = 0;
     for (unsigned g = 0; g < p->w->n_groups; g++) {
         const engine_group *group = &p->w->group[g];
-        table_place at = table_at(t->charge, t->n_charges, charge * group->share);
+        table_place at = table_at_charge(t, charge * group->share);
         for (unsigned k = 0; k < group->n_used; k++) {
             double peak = 0;
             const double *x = memo(p->w, group->used[k]) + at.first * HALF_NUMBERS + HALF_PEAK;

@@ -1,11 +1,9 @@
 // The engine: create, destroy, what it is, and the cycle table.
 #include "internal.h"
+#include "nodes.h"
 #include "traces.h"
 #include <stdlib.h>
 #include <string.h>
-
-// A range of speeds narrower than this share of its middle is widened to it, so that nodes differ.
-#define LEAST_RANGE 0.02
 
 static void hear(void *who, bool warning, const char *path, const char *text)
 {
@@ -166,55 +164,6 @@ const tacet_engine_def *tacet_engine_def_of(const tacet_engine *en)
     return &en->def;
 }
 
-// Lowest and highest charge that any cylinder may see at any speed of the range.
-static void charge_range(const tacet_engine *en, const double *speed, size_t n, double range[2])
-{
-    const tacet_cycle_def *c = &en->def.cycle;
-    double least = 1, most = 1;
-    for (unsigned i = 0; i < en->n_slots; i++) {
-        least = fmin(least, en->slot[i].charge_factor);
-        most = fmax(most, en->slot[i].charge_factor);
-    }
-    range[0] = INFINITY, range[1] = 0;
-    for (size_t i = 0; i < n; i++) {
-        double rpm = speed[i] * 60 / (2 * M_PI);
-        range[0] = fmin(range[0], least * engine_lowest(c, rpm));
-        range[1] = fmax(range[1], most * engine_highest(c, rpm));
-    }
-    if (c->load_by == TACET_LOAD_FUEL) range[0] = 0, range[1] = most;
-}
-
-// The limits of the charge bend at points of their curves, which lie between the nodes.
-static void widen_by_curve(const tacet_engine *en, const tacet_curve *curve, double low,
-                           double high, double range[2])
-{
-    for (size_t i = 0; i < curve->n; i++) {
-        double speed = curve->x[i] * 2 * M_PI / 60, own[2];
-        if (!(speed > low && speed < high)) continue;
-        charge_range(en, &speed, 1, own);
-        range[0] = fmin(range[0], own[0]);
-        range[1] = fmax(range[1], own[1]);
-    }
-}
-
-static tacet_status compute(tacet_engine *en, double low, double high, unsigned longest,
-                            tacet_error *e)
-{
-    halves h = halves_of(en->def.skip.trapped, longest, en->exhaust_first);
-    tacet_status status =
-        table_create(&en->table, &h, CYLINDER_SAMPLES, TABLE_SPEEDS, TABLE_CHARGES);
-    if (status == TACET_OK) status = cylinder_grid(&en->cyl, 1);
-    if (status != TACET_OK) return tacet_fail(e, status, "no memory for the cycle table");
-    double range[2], middle = (low + high) / 2, least = LEAST_RANGE / 2 * middle;
-    double from = fmin(low, middle - least), to = fmax(high, middle + least);
-    table_nodes(en->table.speed_rad_per_s, TABLE_SPEEDS, from, to);
-    charge_range(en, en->table.speed_rad_per_s, TABLE_SPEEDS, range);
-    widen_by_curve(en, &en->def.cycle.lowest_Pa, from, to, range);
-    widen_by_curve(en, &en->def.cycle.highest_Pa, from, to, range);
-    table_nodes(en->table.charge, TABLE_CHARGES, range[0], range[1]);
-    return table_compute(&en->table, &en->cyl, &en->def, e);
-}
-
 tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_per_s,
                                   double highest_rad_per_s, unsigned longest_run, tacet_error *e)
 {
@@ -228,9 +177,10 @@ tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_per_s,
                           longest_run, TACET_ENGINE_RUN_MOST);
     table_clear(&en->table);
     en->prepared = false;
-    tacet_status status = en->def.cycle.kind == TACET_CYCLE_TRACES
-                              ? traces_table(en, longest_run, e)
-                              : compute(en, lowest_rad_per_s, highest_rad_per_s, longest_run, e);
+    tacet_status status =
+        en->def.cycle.kind == TACET_CYCLE_TRACES
+            ? traces_table(en, longest_run, e)
+            : nodes_compute(en, lowest_rad_per_s, highest_rad_per_s, longest_run, e);
     if (status != TACET_OK) {
         table_clear(&en->table);
         return status;

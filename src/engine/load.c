@@ -19,7 +19,7 @@ static const engine_wave *wave_of(tacet_engine_work *w, unsigned kind, double ch
     engine_wave *new = &w->wave[w->n_waves++];
     new->kind = kind;
     new->charge = charge;
-    table_place at = table_at(t->charge, t->n_charges, charge);
+    table_place at = table_at_charge(t, charge);
     table_waveform(t, kind, speed, &at, new->pressure_Pa);
     double area = en->cyl.piston_m2, below = en->cyl.crankcase_Pa;
     // a 4-stroke half up starts at piston top too; a 2-stroke one at bottom
@@ -98,7 +98,7 @@ tacet_status tacet_engine_load(const tacet_engine *en, const tacet_roll *r, cons
     if (status != TACET_OK) return status;
     double charge = engine_charge(en, d);
     if (!isfinite(charge)) return TACET_BAD_INPUT;
-    table_place speed = table_at(en->table.speed_rad_per_s, en->table.n_speeds, speed_rad_per_s);
+    table_place speed = table_at_speed(&en->table, speed_rad_per_s);
     w->n_waves = w->n_pieces = 0;
     w->cycles = r->cycles;
     for (unsigned slot = 0; slot < r->cylinders; slot++)

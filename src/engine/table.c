@@ -64,6 +64,23 @@ table_place table_at(const double *node, size_t n, double x)
     return p;
 }
 
+table_place table_at_speed(const table *t, double speed)
+{
+    size_t k = 0;
+    while (k + 2 < t->n_bends && speed >= t->speed_rad_per_s[t->bend[k + 1]])
+        k++;
+    if (t->n_bends < 2) return table_at(t->speed_rad_per_s, t->n_speeds, speed);
+    size_t first = t->bend[k];
+    table_place p = table_at(t->speed_rad_per_s + first, t->bend[k + 1] - first + 1, speed);
+    p.first += first;
+    return p;
+}
+
+table_place table_at_charge(const table *t, double charge)
+{
+    return table_at(t->charge, t->n_charges, charge);
+}
+
 void table_waveform(const table *t, size_t kind, const table_place *speed,
                     const table_place *charge, double *pressure_Pa)
 {
@@ -95,6 +112,7 @@ void table_nodes(double *node, size_t n, double low, double high)
         double part = n > 1 ? (double)i / (double)(n - 1) : 0;
         node[i] = low > 0 ? low * pow(high / low, part) : low + (high - low) * part;
     }
+    node[n - 1] = high;
 }
 
 cylinder_run table_run(const tacet_engine_def *d, double speed_rad_per_s, double charge)
