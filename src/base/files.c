@@ -5,6 +5,7 @@
 #include <string.h>
 
 #define FIRST_BYTES 65536
+#define MIB         ((size_t)1 << 20)
 
 static tacet_status cannot(const char *path, int reason, tacet_error *e)
 {
@@ -61,8 +62,10 @@ tacet_status tacet_file_read(const char *path, size_t most, tacet_arena *a, char
     if (!standard) fclose(from);
     if (status) return status;
     if (used > most) {
+        bool whole = most >= MIB && most % MIB == 0;
         status = tacet_fail(e, TACET_OUTSIDE_WORLD,
-                            "cannot read %s: it holds more than the %zu bytes allowed", name, most);
+                            "cannot read %s: it holds more than the %zu %s allowed", name,
+                            whole ? most / MIB : most, whole ? "MiB" : "bytes");
     } else {
         char *kept = tacet_arena_alloc(a, used + 1);
         if (kept) {

@@ -19,7 +19,7 @@ void check_say(checker *c, bool warning, const char *path, const char *format, .
     TACET_PRINTF(4, 5);
 // The parts of check_study, in order.
 void check_rooms(checker *c);
-void check_nodes(checker *c);      // of cylinders, flywheel and load
+void check_nodes(checker *c);      // of cylinders; flywheel and load are the train's own
 void check_quantities(checker *c); // of bands and limits
 void check_screen(checker *c);
 void check_files(checker *c); // traces and books: that they can be read

@@ -98,17 +98,12 @@ static void check_cylinders(checker *c, const char *const *names, size_t n)
 void check_nodes(checker *c)
 {
     size_t n;
-    const tacet_train_def *t = &c->study->train;
-    if (fill_is_wrong(c->f, "train.nodes") || fill_is_wrong(c->f, "train.dampers")) return;
+    static const char *const needed[] = {"train.nodes", "train.dampers", "engine.firing_order",
+                                         "engine.cylinders"};
+    for (size_t i = 0; i < sizeof needed / sizeof *needed; i++)
+        if (fill_is_wrong(c->f, needed[i])) return;
     const char **names = train_node_names(c, &n);
-    if (!names) return;
-    bool cylinders =
-        !fill_is_wrong(c->f, "engine.firing_order") && !fill_is_wrong(c->f, "engine.cylinders");
-    if (cylinders) check_cylinders(c, names, n);
-    if (!fill_is_wrong(c->f, "train.flywheel") && t->flywheel && !holds(names, n, t->flywheel))
-        say_unknown(c, "train.flywheel", "node", t->flywheel, names, n);
-    if (!fill_is_wrong(c->f, "train.load") && t->load && !holds(names, n, t->load))
-        say_unknown(c, "train.load", "node", t->load, names, n);
+    if (names) check_cylinders(c, names, n);
 }
 
 // ---- quantities

@@ -35,6 +35,11 @@ static void test_file_whole(void **state)
     assert_int_equal(out[n], 0);
     assert_int_equal(tacet_file_read(path, sizeof bytes - 1, a, &out, &n, &e), TACET_OUTSIDE_WORLD);
     assert_non_null(strstr(e.text, "more than the 200000 bytes allowed"));
+    static char large[(1 << 20) + 1];
+    memset(large, 'a', sizeof large);
+    path = write_file(large, sizeof large);
+    assert_int_equal(tacet_file_read(path, 1 << 20, a, &out, &n, &e), TACET_OUTSIDE_WORLD);
+    assert_non_null(strstr(e.text, "more than the 1 MiB allowed"));
     tacet_arena_destroy(a);
 }
 

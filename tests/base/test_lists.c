@@ -59,6 +59,7 @@ static void test_list_bad(void **state)
     refuse("-1e308:1e308:1e-300", 1, "never ends");
     refuse("0:1e15:1", 1, "more than 1000 values");
     refuse("1:999:1, 1:2:1", 10, "more than 1000 values");
+    refuse("1,  2x", 5, "not a number");
     refuse("nan", 1, "not a number");
     refuse("1:1e999:1", 3, "not a number");
 }

@@ -5,6 +5,7 @@
 #include "study/walk.h"
 #include <math.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 
 typedef struct {
@@ -456,7 +457,45 @@ static void test_many_unknown_keys(void **state)
     end(&r);
 }
 
+// A text of n copies of `item` behind the rest of a car.
+static char *repeated(const char *key, const char *item, size_t n)
+{
+    char *text = malloc(64 + n * (strlen(item) + 2)), *at = text;
+    at += sprintf(at, "length_mm: 4000\n%s: [", key);
+    for (size_t i = 0; i < n; i++)
+        at += sprintf(at, "%s%s", i ? ", " : "", item);
+    strcpy(at, "]\n");
+    return text;
+}
+
+static void refuse_long(const char *key, const char *item, size_t n, const char *part)
+{
+    char *text = repeated(key, item, n);
+    reading r = read_car(text);
+    assert_int_equal(tacet_problems_errors(r.problems), 1);
+    if (!strstr(tacet_problems_at(r.problems, 0)->text, part))
+        fail_msg("%s", tacet_problems_at(r.problems, 0)->text);
+    end(&r);
+    free(text);
+}
+
+static void test_long_lists(void **state)
+{
+    (void)state;
+    refuse_long("speeds_rpm", "1:50001:1", 2, "speeds_rpm is a list of more than 100000 values");
+    refuse_long("pressure_kpa", "[1, 2]", FILL_MOST_THINGS + 1,
+                "pressure_kpa is a curve of 10001 points; 1 to 10000 are allowed");
+    refuse_long("wheels", "{}", FILL_MOST_THINGS + 1,
+                "wheels is a list of 10001 items; at most 10000 are allowed");
+    char *text = repeated("speeds_rpm", "1:50000:1", 2);
+    reading r = read_good(text);
+    assert_int_equal(r.car.n_speeds, FILL_MOST_VALUES);
+    end(&r);
+    free(text);
+}
+
 static const struct CMUnitTest tests[] = {
+    cmocka_unit_test(test_long_lists),
     cmocka_unit_test(test_defaults),
     cmocka_unit_test(test_every_kind),
     cmocka_unit_test(test_shorter_ways),

@@ -153,6 +153,9 @@ static void test_where_values_come_from(void **state)
     check_value(s, "peak_pressure_mpa", TACET_FROM_NOTHING, " MPa");
     check_value(s, "title", TACET_FROM_NOTHING, "");
     tacet_study_destroy(s);
+    s = read_in_folder("node-of-cylinder.yaml");
+    check_value(s, "node", TACET_FROM_COMPUTED, "throw1");
+    tacet_study_destroy(s);
 }
 
 // ---- files
