@@ -25,9 +25,6 @@ void check_screen(checker *c);
 void check_files(checker *c); // traces and books: that they can be read
 void check_sense(checker *c); // unusual magnitudes
 
-// Names of all nodes (or links) with those that dampers add, into the arena.
-const char **train_node_names(const checker *c, size_t *n);
-const char **train_link_names(const checker *c, size_t *n);
 // A path of the study's folder; into the arena. NULL: no memory.
 char *study_path(const tacet_study *s, const char *path, tacet_arena *a);
 #endif

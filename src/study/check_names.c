@@ -3,6 +3,7 @@
 #include <math.h>
 #include <string.h>
 
+// Names of all nodes (or links) with those that dampers add.
 static const char **names_with_dampers(const checker *c, bool nodes, size_t *n)
 {
     const tacet_train_def *t = &c->study->train;
@@ -25,16 +26,6 @@ static const char **names_with_dampers(const checker *c, bool nodes, size_t *n)
         if (name) names[(*n)++] = name;
     }
     return names;
-}
-
-const char **train_node_names(const checker *c, size_t *n)
-{
-    return names_with_dampers(c, true, n);
-}
-
-const char **train_link_names(const checker *c, size_t *n)
-{
-    return names_with_dampers(c, false, n);
 }
 
 static bool holds(const char *const *names, size_t n, const char *name)
@@ -102,7 +93,7 @@ void check_nodes(checker *c)
                                          "engine.cylinders"};
     for (size_t i = 0; i < sizeof needed / sizeof *needed; i++)
         if (fill_is_wrong(c->f, needed[i])) return;
-    const char **names = train_node_names(c, &n);
+    const char **names = names_with_dampers(c, true, &n);
     if (names) check_cylinders(c, names, n);
 }
 
@@ -156,7 +147,7 @@ static void check_target(checker *c, const char *path, const tacet_quantity *q, 
         return;
     }
     if (fill_is_wrong(c->f, list) || fill_is_wrong(c->f, "train.dampers")) return;
-    const char **names = node ? train_node_names(c, &n) : train_link_names(c, &n);
+    const char **names = names_with_dampers(c, node, &n);
     if (!names) return;
     if (!holds(names, n, target))
         say_unknown(c, path, kind, target, names, n);
