@@ -158,14 +158,12 @@ const tacet_column *tacet_row_columns(size_t *n)
 
 static double level_rms(const tacet_band_result *b)
 {
-    return b->verdict == TACET_NO_VERDICT && b->why != TACET_WHY_NO_REFERENCE ? NAN
-                                                                              : b->level.dispersed;
+    return b->level.dispersed;
 }
 
 static double nominal_rms(const tacet_band_result *b)
 {
-    return b->verdict == TACET_NO_VERDICT && b->why != TACET_WHY_NO_REFERENCE ? NAN
-                                                                              : b->level.nominal;
+    return b->level.nominal;
 }
 
 static double limit_rms(const tacet_band_result *b)

@@ -7,6 +7,7 @@
 #define TRANSFORM_FIRST  6
 #define TRANSFORM_KINDS  14
 #define PEAK_OVERSAMPLE  6
+#define EVEN_CYCLES      16 // repeats of up to this many cycles have a transform of their own
 #define CYCLIC_INTERVALS 24 // of a counted band, for the integral of cycle-to-cycle variation
 
 // Transfers of one band's quantity to unit torque on each throw, on a fixed frequency grid.
@@ -37,6 +38,9 @@ struct tacet_model {
     unsigned most_revolutions;
     size_t most_lines;
     tacet_transform *transform[TRANSFORM_KINDS];
+    // [cycles - 1] samples a multiple of the repeat's opportunities: what equal cylinders cancel
+    // then cancels to rounding, aliasing included
+    tacet_transform *even[EVEN_CYCLES];
     bool prepared;
     double *reference;   // [n_bands] all-fire at its worst screened speed; NAN: none
     cyclic_grid *cyclic; // [n_bands]
@@ -80,6 +84,8 @@ struct tacet_workspace {
 };
 
 const tacet_transform *model_transform(const tacet_model *m, size_t n_lines, unsigned oversample);
+// For sampling torque over a repeat of `revolutions`.
+const tacet_transform *model_torque_transform(const tacet_model *m, unsigned revolutions);
 
 // Readies the workspace's spectra for a repeat.
 void workspace_shape(tacet_workspace *w, unsigned revolutions, size_t n_lines);

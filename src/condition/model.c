@@ -122,6 +122,23 @@ static tacet_status assemble_judgement(tacet_model *m, tacet_error *e)
     return TACET_OK;
 }
 
+// Transforms of repeats of 1, 2, .. cycles, as many as the study's longest word may make.
+static tacet_status assemble_even_transforms(tacet_model *m, unsigned cylinders, unsigned strokes)
+{
+    unsigned most = m->study->screen.densities.longest;
+    if (most > EVEN_CYCLES) most = EVEN_CYCLES;
+    for (unsigned cycles = 1; cycles <= most; cycles++) {
+        size_t opportunities = (size_t)cycles * cylinders, times = 2;
+        size_t wanted = PEAK_OVERSAMPLE * tacet_model_lines(m, cycles * strokes / 2);
+        while (times * opportunities < wanted && times * 3 / 2 * opportunities < wanted)
+            times *= 2;
+        if (times * opportunities < wanted) times = times * 3 / 2;
+        tacet_status status = tacet_transform_create(times * opportunities, &m->even[cycles - 1]);
+        if (status != TACET_OK) return status;
+    }
+    return TACET_OK;
+}
+
 static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
 {
     unsigned n = tacet_engine_cylinders(m->engine), strokes = tacet_engine_strokes(m->engine);
@@ -136,6 +153,8 @@ static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
         status = tacet_transform_create((size_t)1 << (TRANSFORM_FIRST + i), &m->transform[i]);
         if (status != TACET_OK) return tacet_fail(e, status, "no memory for the transforms");
     }
+    status = assemble_even_transforms(m, n, strokes);
+    if (status != TACET_OK) return tacet_fail(e, status, "no memory for the transforms");
     return model_transform(m, m->most_lines, PEAK_OVERSAMPLE)
                ? TACET_OK
                : tacet_fail(e, TACET_BAD_INPUT, "highest order %g; at most %d lines in a repeat",
@@ -211,6 +230,8 @@ void tacet_model_destroy(tacet_model *m)
     if (!m) return;
     for (size_t i = 0; i < TRANSFORM_KINDS; i++)
         tacet_transform_destroy(m->transform[i]);
+    for (size_t i = 0; i < EVEN_CYCLES; i++)
+        tacet_transform_destroy(m->even[i]);
     tacet_roll_destroy(m->all_fire);
     tacet_train_destroy(m->train);
     tacet_engine_destroy(m->engine);
@@ -224,6 +245,13 @@ const tacet_transform *model_transform(const tacet_model *m, size_t n_lines, uns
     while (i < TRANSFORM_KINDS && (size_t)1 << (TRANSFORM_FIRST + i) < n)
         i++;
     return i < TRANSFORM_KINDS ? m->transform[i] : NULL;
+}
+
+const tacet_transform *model_torque_transform(const tacet_model *m, unsigned revolutions)
+{
+    unsigned cycles = revolutions * 2 / tacet_engine_strokes(m->engine);
+    if (cycles >= 1 && cycles <= EVEN_CYCLES && m->even[cycles - 1]) return m->even[cycles - 1];
+    return model_transform(m, tacet_model_lines(m, revolutions), PEAK_OVERSAMPLE);
 }
 
 const tacet_study *tacet_model_study(const tacet_model *m)

@@ -2,9 +2,7 @@
 #include <math.h>
 #include <string.h>
 
-// Sampling of the throw torque: this many samples per period of the highest line.
-#define TORQUE_OVERSAMPLE 6
-#define CHUNK             256
+#define CHUNK 256
 
 // Applied torque, reciprocating inertia and its slope of one throw at n angles: all cylinders on
 // it, less an equal share of the mean friction.
@@ -37,10 +35,9 @@ tacet_status workspace_drive(const void *who, size_t throw_index, size_t n, cons
 }
 
 // At constant speed W: F = T_gas - friction - J'/2 W^2 (- m x' x'' W^2, as J = m x'^2).
-static tacet_status constant_torque(tacet_workspace *w, double W, unsigned revolutions,
-                                    size_t n_lines)
+static tacet_status constant_torque(tacet_workspace *w, double W, unsigned revolutions)
 {
-    const tacet_transform *t = model_transform(w->m, n_lines, TORQUE_OVERSAMPLE);
+    const tacet_transform *t = model_torque_transform(w->m, revolutions);
     size_t n = tacet_transform_samples(t);
     for (size_t k = 0; k < n; k++)
         w->angle[k] = 2 * M_PI * revolutions * (double)k / (double)n;
@@ -59,7 +56,7 @@ tacet_status motion_constant(tacet_workspace *w, double speed_rad_per_s, unsigne
                              size_t n_lines)
 {
     workspace_shape(w, revolutions, n_lines);
-    tacet_status status = constant_torque(w, speed_rad_per_s, revolutions, n_lines);
+    tacet_status status = constant_torque(w, speed_rad_per_s, revolutions);
     if (status != TACET_OK) return status;
     return tacet_train_harmonic(w->m->train, speed_rad_per_s, w->m->n_throws, w->m->throw_node,
                                 w->torque, w->train, &w->motion);

@@ -103,14 +103,9 @@ static tacet_status all_fire_levels(tacet_workspace *w, const tacet_condition *c
 static void judge_none(const tacet_model *m, tacet_why why, tacet_row *out)
 {
     for (size_t b = 0; b < m->n_bands; b++)
-        out->bands[b] = (tacet_band_result){.limit = NAN,
-                                            .reference = NAN,
-                                            .margin_db = NAN,
-                                            .verdict = TACET_NO_VERDICT,
-                                            .why = why};
+        tacet_band_no_verdict(why, &out->bands[b]);
     for (size_t i = 0; i < m->n_limits; i++)
-        out->limits[i] = (tacet_limit_result){
-            .value = NAN, .margin_db = NAN, .verdict = TACET_NO_VERDICT, .why = why};
+        tacet_limit_no_verdict(why, &out->limits[i]);
     out->worst = TACET_NO_VERDICT;
 }
 
