@@ -297,15 +297,6 @@ static void mark_driven(tacet_train_work *w, size_t n_throws, const size_t *thro
         if (w->driven[t->leaf[k]]) w->driven[t->parent[t->leaf[k]]] = true;
 }
 
-static void shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_lines)
-{
-    for (size_t i = 0; i < n; i++) {
-        s[i].revolutions = revolutions;
-        s[i].n_lines = n_lines;
-        s[i].line[0] = 0;
-    }
-}
-
 static tacet_status check(const tacet_train_work *w, double speed, size_t n_throws,
                           const size_t *throw_node, const tacet_spectrum *torque)
 {
@@ -313,8 +304,10 @@ static tacet_status check(const tacet_train_work *w, double speed, size_t n_thro
     if (torque[0].n_lines > w->most_lines || torque[0].revolutions == 0) return TACET_BAD_INPUT;
     for (size_t i = 0; i < n_throws; i++)
         if (throw_node[i] >= w->t->n || torque[i].n_lines != torque[0].n_lines ||
-            torque[i].revolutions != torque[0].revolutions || !isfinite(torque[i].mean))
+            torque[i].revolutions != torque[0].revolutions)
             return TACET_BAD_INPUT;
+    for (size_t i = 0; i < n_throws; i++)
+        if (!isfinite(torque[i].mean)) return TACET_NOT_FINITE; // lines show in the result
     return TACET_OK;
 }
 
@@ -328,8 +321,8 @@ tacet_status tacet_train_harmonic(const tacet_train *t, double speed, size_t n_t
     size_t n_lines = torque[0].n_lines;
     harmonic_factors(w, speed, torque[0].revolutions, n_lines);
     mark_driven(w, n_throws, throw_node);
-    shape(out->angle_rad, t->n, torque[0].revolutions, n_lines);
-    shape(out->link_torque_Nm, t->n_links, torque[0].revolutions, n_lines);
+    spectra_shape(out->angle_rad, t->n, torque[0].revolutions, n_lines);
+    spectra_shape(out->link_torque_Nm, t->n_links, torque[0].revolutions, n_lines);
     carry_means(w, n_throws, throw_node, torque, out);
     bool finite = true;
     for (size_t first = 0; first < n_lines; first += CHUNK) {

@@ -21,6 +21,20 @@ typedef struct {
     split root;     // 1 / Z of the flywheel, [stride]
 } factor_memo;
 
+#define TRANSFORM_FIRST 4  // log2 of the shortest transform
+#define TRANSFORM_KINDS 20 // up to 2^23 samples
+#define KRYLOV_MOST     12
+
+// Of ripple: the throws' angles and torques, and a linear solver for the angle common to all.
+typedef struct {
+    tacet_spectrum *angle, *torque; // [n_throws]
+    tacet_spectrum fresh, signal;   // scratch
+    double *offset;                 // [n] static twist against the flywheel, rad, referred
+    double complex *transfer;       // angle common to the throws per torque shared by them
+    double complex *rest, *step;    // right-hand side and solution
+    double complex *basis[KRYLOV_MOST + 1];
+} ripple_work;
+
 struct tacet_train_work {
     const tacet_train *t;
     tacet_arena *arena;
@@ -29,8 +43,14 @@ struct tacet_train_work {
     split stiffness, dynamic; // K of one link; Z of each node: [n * stride], while factors are made
     double *arm_re, *arm_im;  // of one arm on the lines
     split force, angle;       // [n * CHUNK], referred
-    double *mean;             // [n]
+    double *mean;             // [n] mean torque that each node hands to the one above, referred
     bool *driven;             // [n] by node: a throw hangs from it or is it
+    tacet_transform
+        *transform[TRANSFORM_KINDS]; // 2^(TRANSFORM_FIRST + i) samples, up to the longest
+    size_t most_samples;
+    double *buffer[3];                                    // of the longest transform
+    double *at_angle, *at_torque, *at_inertia, *at_slope; // [most_samples] of a drive
+    ripple_work ripple;
 };
 
 #define CHUNK 128 // lines at a time
@@ -38,4 +58,15 @@ struct tacet_train_work {
 // Makes the factors of this grid unless they are at hand.
 void harmonic_factors(tacet_train_work *w, double speed_rad_per_s, unsigned revolutions,
                       size_t n_lines);
+// The transform of that length, or the longest that there is.
+const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples);
+void spectra_shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_lines);
+TACET_USE tacet_status periodic_check(const tacet_train *t, double speed_rad_per_s, size_t n_throws,
+                                      const size_t *throw_node, const tacet_periodic *how,
+                                      const tacet_train_work *w);
+
+// Newton's step for the angle common to all throws, on lines 1..n of w->ripple.rest (what the last
+// pass would change): into w->ripple.step. False: the crank all but stops within the repeat.
+bool common_step(tacet_train_work *w, double speed_rad_per_s, unsigned revolutions, size_t n_throws,
+                 size_t n);
 #endif

@@ -395,7 +395,7 @@ static void test_refusals(void **state)
     r.torque[1].line[3] = 0;
     r.torque[1].mean = INFINITY;
     assert_int_equal(tacet_train_harmonic(r.t, 100, 2, throws, r.torque, r.w, &r.m),
-                     TACET_BAD_INPUT);
+                     TACET_NOT_FINITE);
     r.torque[1].mean = 0;
     rig_solve(&r, 100);
     rig_drop(&r);

@@ -1,0 +1,276 @@
+// Harmonic solution with torque at the throws' own angles.
+//
+// A throw turns by a = W t + d, and its equation is
+//   (J0 + J(a)) a'' + J'(a)/2 a'^2 = T(a) + link and damping torques.
+// With the mean <J> of the reciprocating inertia on the left, what drives the train is
+//   F = T(W t + d) - J'/2 (W + d')^2 - (J - <J>) d'',
+// which the harmonic solution turns into a new d. At low speed and firing density the crank's speed
+// varies by a tenth and more, d reaches a tenth of a radian, and lines of torque move by up to a
+// quarter. Each pass samples F on a time grid, transforms it and solves; the part of d that all
+// throws share takes a Newton step (common.c), the rest contracts by itself, about tenfold a pass.
+//
+// d includes the static twist of the mean torques against the flywheel, whose own mean angle is W
+// t.
+//
+// The first passes are made on a quarter and a half of the samples, which is enough to find the low
+// lines; only passes on all samples decide whether the result stands.
+#include "train/work.h"
+#include <math.h>
+#include <string.h>
+
+#define OVERSAMPLING   6    // samples per period of the highest line
+#define SAMPLES_A_TURN 126  // at least: torque has lines beyond the highest asked for
+#define LOW_ORDER      6    // lines up to here take Newton's step
+#define QUARTER_PASSES 2    // fewer leave low lines to be found on more samples
+#define HALF_PASSES    4    // at most
+#define HALF_ENOUGH    2e-4 // aliasing on half the samples is a tenth of that
+#define DIVERGED       1e3  // change over size of the torque lines
+
+typedef struct {
+    tacet_train_work *w;
+    double speed;
+    size_t n_throws;
+    const size_t *node;
+    tacet_drive *drive;
+    const void *who;
+    const tacet_periodic *how;
+    tacet_train_motion *out;
+    tacet_solver_note *note;
+    const tacet_transform *grid; // of this pass
+    size_t n_lines;              // of this pass
+} ripple;
+
+// ---- torque -----------------------------------------------------------------------------------
+
+// factor^power times the lines of a throw's angle, as samples; power counts derivatives.
+static void angle_samples(ripple *r, size_t i, int power, double *out)
+{
+    ripple_work *m = &r->w->ripple;
+    double base = r->speed / r->how->revolutions;
+    const double complex *line = m->angle[i].line;
+    m->signal.n_lines = r->n_lines;
+    m->signal.mean = 0;
+    for (size_t h = 1; h <= r->n_lines; h++) {
+        double w = base * (double)h;
+        double complex factor = power == 0 ? 1 : power == 1 ? I * w : -w * w;
+        m->signal.line[h] = factor * line[h];
+    }
+    tacet_transform_samples_of(r->grid, &m->signal, out);
+}
+
+// Spectrum of F of throw i into w->ripple.fresh.
+static tacet_status sample_torque(ripple *r, size_t i)
+{
+    tacet_train_work *w = r->w;
+    size_t n = tacet_transform_samples(r->grid);
+    double *F = w->buffer[0], *rate = w->buffer[1], *bend = w->buffer[2];
+    double turn = 2 * M_PI * r->how->revolutions / (double)n;
+    double offset = w->ripple.offset[r->node[i]], mean = w->t->added[r->node[i]];
+    angle_samples(r, i, 0, F);
+    angle_samples(r, i, 1, rate);
+    angle_samples(r, i, 2, bend);
+    for (size_t k = 0; k < n; k++)
+        w->at_angle[k] = turn * (double)k + offset + F[k];
+    tacet_status status =
+        r->drive(r->who, i, n, w->at_angle, w->at_torque, w->at_inertia, w->at_slope);
+    if (status != TACET_OK) return status;
+    for (size_t k = 0; k < n; k++) {
+        double speed = r->speed + rate[k];
+        F[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * speed * speed -
+               (w->at_inertia[k] - mean) * bend[k];
+    }
+    w->ripple.fresh.n_lines = r->n_lines;
+    tacet_transform_lines(r->grid, F, &w->ripple.fresh);
+    r->note->evaluations += (unsigned)n;
+    return TACET_OK;
+}
+
+// New torque of all throws; the largest change of a line over the largest line.
+static tacet_status renew_torque(ripple *r, double *change)
+{
+    ripple_work *m = &r->w->ripple;
+    double largest = 0, moved = 0;
+    for (size_t i = 0; i < r->n_throws; i++) {
+        tacet_status status = sample_torque(r, i);
+        if (status != TACET_OK) return status;
+        tacet_spectrum *old = &m->torque[i];
+        old->n_lines = r->n_lines;
+        old->mean = m->fresh.mean;
+        for (size_t h = 1; h <= r->n_lines; h++) {
+            double complex d = m->fresh.line[h] - old->line[h];
+            old->line[h] = m->fresh.line[h];
+            moved = fmax(moved, creal(d) * creal(d) + cimag(d) * cimag(d));
+            largest = fmax(largest, creal(old->line[h]) * creal(old->line[h]) +
+                                        cimag(old->line[h]) * cimag(old->line[h]));
+        }
+    }
+    *change = largest > 0 ? sqrt(moved / largest) : 0;
+    return TACET_OK;
+}
+
+// ---- angle ------------------------------------------------------------------------------------
+
+// Static twist of every node against the flywheel from the mean torques that the harmonic solution
+// left in w->mean; order 0 uses the stated stiffness.
+static void twist_statically(tacet_train_work *w)
+{
+    const tacet_train *t = w->t;
+    w->ripple.offset[t->flywheel] = 0;
+    for (size_t k = t->n_links; k-- > 0;) {
+        size_t node = t->leaf[k];
+        const tacet_link_info *l = &t->link[t->up[node]];
+        double ratio = t->ratio[l->to], stiffness = l->stiffness_Nm_per_rad * ratio * ratio;
+        w->ripple.offset[node] = w->ripple.offset[t->parent[node]] + w->mean[node] / stiffness;
+    }
+}
+
+// Takes the throws' new angles from the solution, with Newton's step on the low lines; the largest
+// change of a speed line before that step over the largest speed line.
+static bool renew_angle(ripple *r, double *change)
+{
+    ripple_work *m = &r->w->ripple;
+    size_t low = (size_t)LOW_ORDER * r->how->revolutions;
+    double largest = 0, moved = 0;
+    if (low > r->n_lines) low = r->n_lines;
+    for (size_t h = 1; h <= low; h++) {
+        m->rest[h] = 0;
+        for (size_t i = 0; i < r->n_throws; i++)
+            m->rest[h] += r->out->angle_rad[r->node[i]].line[h] - m->angle[i].line[h];
+        m->rest[h] /= (double)r->n_throws;
+    }
+    if (!common_step(r->w, r->speed, r->how->revolutions, r->n_throws, low)) return false;
+    for (size_t i = 0; i < r->n_throws; i++) {
+        const double complex *found = r->out->angle_rad[r->node[i]].line;
+        double complex *line = m->angle[i].line;
+        m->angle[i].n_lines = r->n_lines;
+        for (size_t h = 1; h <= r->n_lines; h++) {
+            double complex d = found[h] - line[h];
+            double square = (double)h * (double)h;
+            moved = fmax(moved, square * (creal(d) * creal(d) + cimag(d) * cimag(d)));
+            largest = fmax(largest, square * (creal(found[h]) * creal(found[h]) +
+                                              cimag(found[h]) * cimag(found[h])));
+            line[h] = h <= low ? found[h] + (m->step[h] - m->rest[h]) : found[h];
+        }
+    }
+    *change = largest > 0 ? sqrt(moved / largest) : 0;
+    return true;
+}
+
+// ---- passes -----------------------------------------------------------------------------------
+
+// Response of the throws' mean angle to a torque shared by them equally.
+static tacet_status find_transfer(ripple *r, size_t n)
+{
+    ripple_work *m = &r->w->ripple;
+    double share = 1 / (double)r->n_throws;
+    for (size_t i = 0; i < r->n_throws; i++) {
+        m->torque[i].n_lines = n;
+        m->torque[i].mean = 0;
+        for (size_t h = 1; h <= n; h++)
+            m->torque[i].line[h] = share;
+    }
+    tacet_status status =
+        tacet_train_harmonic(r->w->t, r->speed, r->n_throws, r->node, m->torque, r->w, r->out);
+    for (size_t h = 1; h <= n; h++) {
+        m->transfer[h] = 0;
+        for (size_t i = 0; i < r->n_throws; i++)
+            m->transfer[h] += share * r->out->angle_rad[r->node[i]].line[h];
+    }
+    return status;
+}
+
+// From constant speed: no angle, no torque, no twist.
+static tacet_status start(ripple *r)
+{
+    ripple_work *m = &r->w->ripple;
+    unsigned revolutions = r->how->revolutions;
+    size_t n = r->how->n_lines, low = (size_t)LOW_ORDER * revolutions;
+    spectra_shape(m->torque, r->n_throws, revolutions, n);
+    spectra_shape(m->angle, r->n_throws, revolutions, n);
+    harmonic_factors(r->w, r->speed, revolutions, n); // all lines at once
+    tacet_status status = find_transfer(r, low < n ? low : n);
+    for (size_t i = 0; i < r->n_throws; i++) {
+        memset(m->torque[i].line, 0, (n + 1) * sizeof *m->torque[i].line);
+        memset(m->angle[i].line, 0, (n + 1) * sizeof *m->angle[i].line);
+    }
+    memset(m->offset, 0, r->w->t->n * sizeof *m->offset);
+    return status;
+}
+
+// One pass on the grid; `change` is what it changed, relative.
+static tacet_status pass(ripple *r, double *change)
+{
+    double torque = 0, angle = 0;
+    tacet_status status = renew_torque(r, &torque);
+    if (status != TACET_OK) return status;
+    status = tacet_train_harmonic(r->w->t, r->speed, r->n_throws, r->node, r->w->ripple.torque,
+                                  r->w, r->out);
+    if (status != TACET_OK) return status;
+    twist_statically(r->w);
+    if (!renew_angle(r, &angle)) return TACET_NOT_CONVERGED;
+    *change = r->note->difference = fmax(torque, angle);
+    r->note->repeats++;
+    return *change < DIVERGED ? TACET_OK : TACET_NOT_CONVERGED;
+}
+
+// Passes on one grid until `enough` or `most` of them.
+static tacet_status passes(ripple *r, size_t samples, size_t n_lines, unsigned most, double enough,
+                           double *change)
+{
+    tacet_status status = TACET_OK;
+    r->grid = work_transform(r->w, samples);
+    r->n_lines = n_lines;
+    for (unsigned i = 0; i < most && status == TACET_OK; i++) {
+        status = pass(r, change);
+        if (*change <= enough) break;
+    }
+    return status;
+}
+
+static tacet_status converge(ripple *r)
+{
+    size_t turns = r->how->revolutions, n_lines = r->how->n_lines;
+    size_t wanted = tacet_transform_length(n_lines, OVERSAMPLING);
+    while (wanted < SAMPLES_A_TURN * turns && wanted < r->w->most_samples)
+        wanted *= 2;
+    size_t low = wanted / 4 / OVERSAMPLING;
+    double change = INFINITY, tolerance = r->how->tolerance;
+    tacet_status status = start(r);
+    if (status == TACET_OK && low >= LOW_ORDER * turns)
+        status = passes(r, wanted / 4, low < n_lines ? low : n_lines, QUARTER_PASSES, 0, &change);
+    if (status == TACET_OK && wanted / 2 >= SAMPLES_A_TURN / 2 * turns && n_lines < wanted / 5)
+        status = passes(r, wanted / 2, n_lines, HALF_PASSES, fmax(tolerance, HALF_ENOUGH), &change);
+    if (status == TACET_OK) {
+        change = INFINITY;
+        status = passes(r, wanted, n_lines, r->how->most_passes, tolerance, &change);
+    }
+    if (status == TACET_OK && !(change <= tolerance)) status = TACET_NOT_CONVERGED;
+    return status;
+}
+
+tacet_status tacet_train_ripple(const tacet_train *t, double speed, size_t n_throws,
+                                const size_t *throw_node, tacet_drive *drive, const void *who,
+                                const tacet_periodic *how, tacet_train_work *w,
+                                tacet_train_motion *out, tacet_spectrum *torque,
+                                tacet_solver_note *note)
+{
+    *note = (tacet_solver_note){.method = "ripple"};
+    tacet_status status = periodic_check(t, speed, n_throws, throw_node, how, w);
+    if (status != TACET_OK) return status;
+    ripple r = {.w = w,
+                .speed = speed,
+                .n_throws = n_throws,
+                .node = throw_node,
+                .drive = drive,
+                .who = who,
+                .how = how,
+                .out = out,
+                .note = note};
+    status = converge(&r);
+    for (size_t i = 0; status == TACET_OK && torque && i < n_throws; i++) {
+        spectra_shape(&torque[i], 1, how->revolutions, how->n_lines);
+        torque[i].mean = w->ripple.torque[i].mean;
+        memcpy(torque[i].line, w->ripple.torque[i].line, (how->n_lines + 1) * sizeof *torque->line);
+    }
+    return status;
+}
