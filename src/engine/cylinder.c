@@ -335,7 +335,14 @@ static bool finish(const half_state *s, const double a[TERMS], const cylinder_pl
     out->wall_J = a[WALL];
     out->valve_J = a[VALVE_KG] * s->manifold_h - a[VALVE_J];
     out->ring_J = a[RING_J] - a[RING_KG] * s->manifold_h;
-    out->peak_Pa = peak_of(out->pressure_Pa, CYLINDER_SAMPLES);
+    unsigned bottom = CYLINDER_SAMPLES / 2;
+    if (s->inlet) {
+        out->peak_Pa = fmax(g->late_Pa, peak_of(out->pressure_Pa, CYLINDER_SAMPLES));
+        g->late_Pa = 0;
+    } else {
+        out->peak_Pa = peak_of(out->pressure_Pa, bottom + 1);
+        g->late_Pa = peak_of(out->pressure_Pa + bottom, bottom + 1);
+    }
     g->mass_kg = z.mass;
     g->energy_J = s->energy_J - a[WORK] - a[WALL] - a[RING_J] + a[VALVE_J];
     if (!s->inlet) g->fuel_J = 0;

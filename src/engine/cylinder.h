@@ -58,6 +58,7 @@ typedef struct { // what the cylinder holds at a top
     double mass_kg, energy_J;
     double fuel_J; // heat of the fuel of the cycle in hand, burnt or not
     double inlet_Pa, inlet_K, inlet_m3, exponent; // where the last inlet shut; motored compression
+    double late_Pa; // highest pressure since the last bottom, at a gas-exchange top
 } cylinder_gas;
 // Gas at a pressure and temperature at top.
 cylinder_gas cylinder_fill(const cylinder *c, double pressure_Pa, double temperature_K);
@@ -76,7 +77,7 @@ typedef struct {
     double valve_J;          // enthalpy out less enthalpy in through the valve, from the manifold's
     double ring_J;           // enthalpy out past the rings, from the manifold's
     double fuel_J, fresh_kg; // brought in
-    double peak_Pa;
+    double peak_Pa;          // up: from the bottom before it on; down: of its first stroke
     double pressure_Pa[CYLINDER_SAMPLES];
 } cylinder_half;
 // Takes the gas through a half. False: the state became impossible (not finite, no mass).

@@ -51,7 +51,7 @@ enum {
     HALF_RING,    // J, enthalpy out past the rings
     HALF_STORED,  // J, what the gas holds at the end over what it held at the start
     HALF_FUEL,    // J
-    HALF_PEAK,    // Pa, down: of the cycle from gas-exchange top to bottom after firing; up: own
+    HALF_PEAK, // Pa, up: from the bottom before it on; down: of the cycle, to bottom after firing
     HALF_NUMBERS
 };
 
