@@ -121,6 +121,7 @@ static tacet_status settle_idle(chain *k, cylinder_gas *gas)
         cylinder_gas next = *gas;
         next.mass_kg += s;
         next.energy_J = energy;
+        next.late_Pa = at.late_Pa;
         if (!isfinite(next.energy_J)) return TACET_NOT_FINITE;
         double moved = change(&next, gas);
         *gas = next;

@@ -315,8 +315,7 @@ static void burn_begins(half_state *s, const cylinder_place *at, const double a[
     start_burn(s, g);
 }
 
-// Largest of samples, by a parabola through the largest and its neighbours.
-static double peak_of(const double *p, size_t n)
+double cylinder_peak(const double *p, size_t n)
 {
     size_t k = 0;
     for (size_t i = 1; i < n; i++)
@@ -337,11 +336,11 @@ static bool finish(const half_state *s, const double a[TERMS], const cylinder_pl
     out->ring_J = a[RING_J] - a[RING_KG] * s->manifold_h;
     unsigned bottom = CYLINDER_SAMPLES / 2;
     if (s->inlet) {
-        out->peak_Pa = fmax(g->late_Pa, peak_of(out->pressure_Pa, CYLINDER_SAMPLES));
+        out->peak_Pa = fmax(g->late_Pa, cylinder_peak(out->pressure_Pa, CYLINDER_SAMPLES));
         g->late_Pa = 0;
     } else {
-        out->peak_Pa = peak_of(out->pressure_Pa, bottom + 1);
-        g->late_Pa = peak_of(out->pressure_Pa + bottom, bottom + 1);
+        out->peak_Pa = cylinder_peak(out->pressure_Pa, bottom + 1);
+        g->late_Pa = cylinder_peak(out->pressure_Pa + bottom, bottom + 1);
     }
     g->mass_kg = z.mass;
     g->energy_J = s->energy_J - a[WORK] - a[WALL] - a[RING_J] + a[VALVE_J];

@@ -80,6 +80,8 @@ typedef struct {
     double peak_Pa;          // up: from the bottom before it on; down: of its first stroke
     double pressure_Pa[CYLINDER_SAMPLES];
 } cylinder_half;
+// Largest of n samples, by a parabola through the largest and its neighbours.
+double cylinder_peak(const double *pressure_Pa, size_t n);
 // Takes the gas through a half. False: the state became impossible (not finite, no mass).
 bool cylinder_run_half(const cylinder *c, const cylinder_run *r, cylinder_rule rule,
                        cylinder_gas *gas, cylinder_half *out);

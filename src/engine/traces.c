@@ -28,7 +28,9 @@ typedef struct {
     tacet_arena *arena;
     const char *path; // of the file being read, as in the study
     trace *trace;
-    size_t n, most;
+    size_t n;
+    const double *rpm; // of the speed nodes
+    bool any_speed;    // no trace states its speed
     tacet_error *e;
 } reader;
 
@@ -244,14 +246,6 @@ static double work(const tacet_engine *en, const double *p, int from, int to)
     return sum * (M_PI / 180) / 3;
 }
 
-static double largest(const double *p, unsigned from, unsigned to)
-{
-    double most = p[from];
-    for (unsigned i = from; i <= to; i++)
-        most = fmax(most, p[i]);
-    return most;
-}
-
 // Heat of the fuel of a fired trace: as stated, or of a cylinder full of gas from the manifold.
 static double heat_of(const tacet_engine *en, const trace *t, double load, double speed)
 {
@@ -263,7 +257,10 @@ static double heat_of(const tacet_engine *en, const trace *t, double load, doubl
            (en->cyl.gas.R_J_per_kgK * c->intake_temperature_K);
 }
 
-static void put(tacet_engine *en, const trace *t, unsigned kind, size_t speed, size_t charge)
+// before: the trace of the cycle before, whose last stroke may hold the peak that this one opens
+// with.
+static void put(tacet_engine *en, const trace *t, const trace *before, unsigned kind, size_t speed,
+                size_t charge)
 {
     table *to = &en->table;
     int half = (int)en->half_degrees;
@@ -278,7 +275,8 @@ static void put(tacet_engine *en, const trace *t, unsigned kind, size_t speed, s
             up ? -work(en, t->pressure_Pa, -360, -180) : -work(en, t->pressure_Pa, 180, 360);
     x[HALF_WALL] = x[HALF_VALVE] = x[HALF_RING] = x[HALF_STORED] = NAN;
     x[HALF_FUEL] = up ? heat_of(en, t, to->charge[charge], to->speed_rad_per_s[speed]) : 0;
-    x[HALF_PEAK] = largest(t->pressure_Pa, 0, (unsigned)(up ? half : half + 180));
+    double late = cylinder_peak(before->pressure_Pa + half + 180, (size_t)half - 180 + 1);
+    x[HALF_PEAK] = fmax(late, cylinder_peak(t->pressure_Pa, (size_t)(up ? half : half + 180) + 1));
 }
 
 static tacet_status missing(const reader *r, bool fired, double load, double rpm, unsigned run,
@@ -294,27 +292,38 @@ static tacet_status missing(const reader *r, bool fired, double load, double rpm
                       next ? "fire" : "skip");
 }
 
-static tacet_status put_all(reader *r, tacet_engine *en, size_t s, size_t c, double rpm)
+// A cycle that fires or skips as the `run`-th, with the cycle before it: the table's chain.
+static tacet_status put_cycle(reader *r, tacet_engine *en, bool fires, unsigned run, size_t s,
+                              size_t c)
 {
     const halves *h = &en->table.halves;
-    double load = en->table.charge[c];
-    for (unsigned run = 0; run <= h->longest + 1; run++)
-        for (int next = 0; next < 2; next++) {
-            unsigned asked = run > h->longest ? FOREVER : run;
-            const trace *fire = find(r, true, load, rpm, asked, next);
-            const trace *skip = find(r, false, load, rpm, asked, next);
-            if (run <= h->longest && !fire) return missing(r, true, load, rpm, run, next);
-            if (run > 0 && !skip) return missing(r, false, load, rpm, run, next);
-            if (run <= h->longest) {
-                if (next) put(en, fire, halves_up_fire(h, run), s, c);
-                put(en, fire, halves_down_fire(h, run, next), s, c);
-            }
-            if (run > 0) {
-                if (!next) put(en, skip, halves_up_skip(h, run), s, c);
-                put(en, skip, halves_down_skip(h, run, next), s, c);
-            }
-        }
+    double load = en->table.charge[c], rpm = r->any_speed ? NAN : r->rpm[s];
+    bool forever = run > h->longest;
+    unsigned asked = forever ? FOREVER : run, previous = forever || fires ? asked : run - 1;
+    bool after_fire = fires ? run == 0 : run == 1 && !forever;
+    const trace *before = after_fire ? find(r, true, load, rpm, 0, fires)
+                                     : find(r, false, load, rpm, previous, fires);
+    for (int next = 0; next < 2; next++) {
+        const trace *t = find(r, fires, load, rpm, asked, next);
+        if (!t) return missing(r, fires, load, rpm, run, next);
+        if (!before) return missing(r, after_fire, load, rpm, after_fire ? 0 : previous, fires);
+        unsigned up = fires ? halves_up_fire(h, run) : halves_up_skip(h, run);
+        if (next == fires) put(en, t, before, up, s, c);
+        put(en, t, before, fires ? halves_down_fire(h, run, next) : halves_down_skip(h, run, next),
+            s, c);
+    }
     return TACET_OK;
+}
+
+static tacet_status put_all(reader *r, tacet_engine *en, size_t s, size_t c)
+{
+    unsigned longest = en->table.halves.longest;
+    tacet_status status = TACET_OK;
+    for (unsigned run = 0; run <= longest && status == TACET_OK; run++)
+        status = put_cycle(r, en, true, run, s, c);
+    for (unsigned run = 1; run <= longest + 1 && status == TACET_OK; run++)
+        status = put_cycle(r, en, false, run, s, c);
+    return status;
 }
 
 static tacet_status fill(reader *r, tacet_engine *en, unsigned longest)
@@ -332,12 +341,14 @@ static tacet_status fill(reader *r, tacet_engine *en, unsigned longest)
     tacet_status status =
         table_create(&en->table, &h, en->half_degrees + 1, speeds ? speeds : 1, loads);
     if (status != TACET_OK) return tacet_fail(r->e, status, "no memory for the cycle table");
+    r->rpm = rpm;
+    r->any_speed = speeds == 0;
     memcpy(en->table.charge, load, loads * sizeof *load);
     for (size_t s = 0; s < speeds; s++)
         en->table.speed_rad_per_s[s] = rpm[s] * 2 * M_PI / 60;
     for (size_t s = 0; s < en->table.n_speeds; s++)
         for (size_t c = 0; c < loads; c++) {
-            status = put_all(r, en, s, c, speeds ? rpm[s] : NAN);
+            status = put_all(r, en, s, c);
             if (status != TACET_OK) return status;
         }
     return TACET_OK;
