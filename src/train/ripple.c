@@ -24,6 +24,7 @@
 #define QUARTER_PASSES 2    // fewer leave low lines to be found on more samples
 #define HALF_PASSES    4    // at most
 #define HALF_ENOUGH    2e-4 // aliasing on half the samples is a tenth of that
+#define TOLERANCE      1e-6 // where none is asked for
 #define DIVERGED       1e3  // change over size of the torque lines
 
 typedef struct {
@@ -234,7 +235,8 @@ static tacet_status converge(ripple *r)
     while (wanted < SAMPLES_A_TURN * turns && wanted < r->w->most_samples)
         wanted *= 2;
     size_t low = wanted / 4 / OVERSAMPLING;
-    double change = INFINITY, tolerance = r->how->tolerance;
+    double change = INFINITY;
+    double tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
     tacet_status status = start(r);
     if (status == TACET_OK && low >= LOW_ORDER * turns)
         status = passes(r, wanted / 4, low < n_lines ? low : n_lines, QUARTER_PASSES, 0, &change);
@@ -248,15 +250,12 @@ static tacet_status converge(ripple *r)
     return status;
 }
 
-tacet_status tacet_train_ripple(const tacet_train *t, double speed, size_t n_throws,
-                                const size_t *throw_node, tacet_drive *drive, const void *who,
-                                const tacet_periodic *how, tacet_train_work *w,
-                                tacet_train_motion *out, tacet_spectrum *torque,
-                                tacet_solver_note *note)
+tacet_status ripple_solve(tacet_train_work *w, double speed, size_t n_throws,
+                          const size_t *throw_node, tacet_drive *drive, const void *who,
+                          const tacet_periodic *how, tacet_train_motion *out,
+                          tacet_solver_note *note)
 {
     *note = (tacet_solver_note){.method = "ripple"};
-    tacet_status status = periodic_check(t, speed, n_throws, throw_node, how, w);
-    if (status != TACET_OK) return status;
     ripple r = {.w = w,
                 .speed = speed,
                 .n_throws = n_throws,
@@ -266,7 +265,18 @@ tacet_status tacet_train_ripple(const tacet_train *t, double speed, size_t n_thr
                 .how = how,
                 .out = out,
                 .note = note};
-    status = converge(&r);
+    return converge(&r);
+}
+
+tacet_status tacet_train_ripple(const tacet_train *t, double speed, size_t n_throws,
+                                const size_t *throw_node, tacet_drive *drive, const void *who,
+                                const tacet_periodic *how, tacet_train_work *w,
+                                tacet_train_motion *out, tacet_spectrum *torque,
+                                tacet_solver_note *note)
+{
+    tacet_status status = periodic_check(t, speed, n_throws, throw_node, how, w);
+    if (status != TACET_OK) return status;
+    status = ripple_solve(w, speed, n_throws, throw_node, drive, who, how, out, note);
     for (size_t i = 0; status == TACET_OK && torque && i < n_throws; i++) {
         spectra_shape(&torque[i], 1, how->revolutions, how->n_lines);
         torque[i].mean = w->ripple.torque[i].mean;

@@ -107,7 +107,7 @@ tacet_status periodic_check(const tacet_train *t, double speed, size_t n_throws,
     if (n_throws == 0 || n_throws > w->n_throws) return TACET_BAD_INPUT;
     if (how->revolutions == 0 || how->n_lines == 0 || how->n_lines > w->most_lines)
         return TACET_BAD_INPUT;
-    if (!(how->tolerance > 0) || how->most_passes == 0) return TACET_BAD_INPUT;
+    if (!(how->tolerance >= 0) || how->most_passes == 0) return TACET_BAD_INPUT;
     for (size_t i = 0; i < n_throws; i++)
         if (throw_node[i] >= t->n || fabs(t->ratio[throw_node[i]] - 1) > 1e-12)
             return TACET_BAD_INPUT;
@@ -116,7 +116,7 @@ tacet_status periodic_check(const tacet_train *t, double speed, size_t n_throws,
 
 tacet_periodic tacet_periodic_default(void)
 {
-    return (tacet_periodic){.revolutions = 2, .n_lines = 48, .tolerance = 1e-6, .most_passes = 8};
+    return (tacet_periodic){.revolutions = 2, .n_lines = 48, .most_passes = 8};
 }
 
 tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines, size_t n_throws,
@@ -130,7 +130,8 @@ tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines, si
     w->n_throws = n_throws;
     w->stride = (most_lines + 7) / 8 * 8;
     w->arena = tacet_arena_create();
-    if (!w->arena || !reserve(w) || !reserve_ripple(w) || !reserve_transforms(w)) {
+    if (!w->arena || !reserve(w) || !reserve_ripple(w) || !reserve_transforms(w) ||
+        !steady_reserve(w)) {
         tacet_train_work_destroy(w);
         return TACET_NO_MEMORY;
     }
@@ -141,6 +142,7 @@ tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines, si
 void tacet_train_work_destroy(tacet_train_work *w)
 {
     if (!w) return;
+    steady_release(w);
     for (size_t i = 0; i < TRANSFORM_KINDS; i++)
         tacet_transform_destroy(w->transform[i]);
     for (size_t i = 0; i < sizeof w->buffer / sizeof *w->buffer; i++)

@@ -2,6 +2,9 @@
 #ifndef TRAIN_WORK_H
 #define TRAIN_WORK_H
 #include "train/internal.h"
+#include "train/march.h"
+#include <gsl/gsl_linalg.h>
+#include <gsl/gsl_odeiv2.h>
 
 typedef struct { // split complex: real and imaginary parts apart, so that loops over lines
                  // vectorise
@@ -35,6 +38,23 @@ typedef struct {
     double complex *basis[KRYLOV_MOST + 1];
 } ripple_work;
 
+// Of steady. Matrices and samples are memory that stays untouched, and so costs nothing, until the
+// first march.
+typedef struct {
+    march_model model;
+    gsl_odeiv2_step *step;
+    gsl_odeiv2_evolve *evolve;
+    double *state, *start, *defect, *scale, *mean; // [size]; mean: [n_throws]
+    // One-slot memo of exp(A T), size + 1 square.
+    bool valid;
+    double period_s;
+    double *monodromy, *matrix, *scratch;
+    gsl_matrix *newton;
+    gsl_permutation *pivots;
+    gsl_vector *right, *solution;
+    double *sample; // [(n + links + 1) * most_samples]: speeds, link torques, flywheel's angle
+} steady_work;
+
 struct tacet_train_work {
     const tacet_train *t;
     tacet_arena *arena;
@@ -51,6 +71,7 @@ struct tacet_train_work {
     double *buffer[3];                                    // of the longest transform
     double *at_angle, *at_torque, *at_inertia, *at_slope; // [most_samples] of a drive
     ripple_work ripple;
+    steady_work steady;
 };
 
 #define CHUNK 128 // lines at a time
@@ -64,6 +85,14 @@ void spectra_shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_l
 TACET_USE tacet_status periodic_check(const tacet_train *t, double speed_rad_per_s, size_t n_throws,
                                       const size_t *throw_node, const tacet_periodic *how,
                                       const tacet_train_work *w);
+
+// Ripple from constant speed; w->ripple.torque and offset are left as the last pass had them.
+TACET_USE tacet_status ripple_solve(tacet_train_work *w, double speed_rad_per_s, size_t n_throws,
+                                    const size_t *throw_node, tacet_drive *drive, const void *who,
+                                    const tacet_periodic *how, tacet_train_motion *out,
+                                    tacet_solver_note *note);
+bool steady_reserve(tacet_train_work *w);
+void steady_release(tacet_train_work *w);
 
 // Newton's step for the angle common to all throws, on lines 1..n of w->ripple.rest (what the last
 // pass would change): into w->ripple.step. False: the crank all but stops within the repeat.

@@ -1,0 +1,432 @@
+// Periodic steady state of the full equations by march and shooting.
+//
+// Marching until a train has settled takes as long as its slowest mode. Instead one repeat of
+// length T is marched from a start x, and the start is corrected by Newton's method until the end
+// meets it:
+//   (exp(A T) - 1) dx + b dL = -(x(T) - x(0)),
+// A the linear model (march.h: mean inertia, no torque), exp(A T) its monodromy, b what a constant
+// load torque adds in a repeat. The angle of the flywheel at the start is pinned: its place among
+// the unknowns is taken by the load torque L, which no law gives; angles are deviations from W t,
+// so that meeting the start means turning by 2 pi N ratio. The start comes from the harmonic
+// solution.
+//
+// Full equations at the throws' own angles (deviation, static twist) with the inertia J0 + J(a); or
+// `frozen`: torque at W t less J'/2 W^2 on the mean inertia, which is the harmonic solution's model
+// at constant speed, so that the two must agree.
+//
+// In the full equations time may begin anywhere; the result is turned so that the flywheel's mean
+// angle is W t, as in ripple.
+#include "train/expm.h"
+#include "train/work.h"
+#include <gsl/gsl_errno.h>
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+#define TOLERANCE        1e-9 // closure where none is asked for
+#define STEP_TOLERANCE   1e-9 // local error over the scale of a state
+#define SAMPLES_A_TURN   512
+#define SAMPLES_A_PERIOD 8    // of the highest line
+#define STEPS_A_SAMPLE   1000 // more: the march is stuck
+#define START_TOLERANCE  1e-5 // of ripple
+#define FLOOR            1e-9 // least scale of a state over the largest of its kind
+
+typedef struct {
+    tacet_train_work *w;
+    steady_work *s;
+    const tacet_periodic *how;
+    march_drive drive;
+    double period_s;
+    const tacet_transform *grid;
+    size_t samples;
+    tacet_train_motion *out;
+    tacet_solver_note *note;
+} steady;
+
+// ---- memory -----------------------------------------------------------------------------------
+
+// Matrices and samples by malloc: the arena would touch them.
+bool steady_reserve(tacet_train_work *w)
+{
+    steady_work *s = &w->steady;
+    if (!march_model_create(&s->model, w->t, w->arena)) return false;
+    size_t n = s->model.size, square = (n + 1) * (n + 1) * sizeof(double);
+    size_t channels = s->model.n + s->model.links + 1;
+    s->step = gsl_odeiv2_step_alloc(gsl_odeiv2_step_rk8pd, n);
+    s->evolve = gsl_odeiv2_evolve_alloc(n);
+    s->state = tacet_arena_alloc(w->arena, n * sizeof(double));
+    s->start = tacet_arena_alloc(w->arena, n * sizeof(double));
+    s->defect = tacet_arena_alloc(w->arena, n * sizeof(double));
+    s->scale = tacet_arena_alloc(w->arena, n * sizeof(double));
+    s->mean = tacet_arena_alloc(w->arena, w->n_throws * sizeof(double));
+    s->monodromy = malloc(square);
+    s->matrix = malloc(square);
+    s->scratch = malloc(EXPM_MATRICES * square);
+    s->newton = gsl_matrix_alloc(n, n);
+    s->pivots = gsl_permutation_alloc(n);
+    s->right = gsl_vector_alloc(n);
+    s->solution = gsl_vector_alloc(n);
+    s->sample = malloc(channels * w->most_samples * sizeof(double));
+    return s->step && s->evolve && s->state && s->start && s->defect && s->scale && s->mean &&
+           s->monodromy && s->matrix && s->scratch && s->newton && s->pivots && s->right &&
+           s->solution && s->sample;
+}
+
+void steady_release(tacet_train_work *w)
+{
+    steady_work *s = &w->steady;
+    if (s->step) gsl_odeiv2_step_free(s->step);
+    if (s->evolve) gsl_odeiv2_evolve_free(s->evolve);
+    if (s->newton) gsl_matrix_free(s->newton);
+    if (s->pivots) gsl_permutation_free(s->pivots);
+    if (s->right) gsl_vector_free(s->right);
+    if (s->solution) gsl_vector_free(s->solution);
+    free(s->monodromy);
+    free(s->matrix);
+    free(s->scratch);
+    free(s->sample);
+}
+
+// ---- start ------------------------------------------------------------------------------------
+
+// Torque at W t on the mean inertia, as spectra in w->ripple.torque, and its harmonic solution.
+static tacet_status constant_speed(steady *s)
+{
+    tacet_train_work *w = s->w;
+    double W = s->drive.speed_rad_per_s, turn = 2 * M_PI * s->how->revolutions / (double)s->samples;
+    double *torque = w->buffer[0];
+    for (size_t k = 0; k < s->samples; k++)
+        w->at_angle[k] = turn * (double)k;
+    spectra_shape(w->ripple.torque, s->drive.n_throws, s->how->revolutions, s->how->n_lines);
+    for (size_t i = 0; i < s->drive.n_throws; i++) {
+        tacet_status status = s->drive.drive(s->drive.who, i, s->samples, w->at_angle, w->at_torque,
+                                             w->at_inertia, w->at_slope);
+        if (status != TACET_OK) return status;
+        for (size_t k = 0; k < s->samples; k++)
+            torque[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * W * W;
+        tacet_transform_lines(s->grid, torque, &w->ripple.torque[i]);
+    }
+    memset(w->ripple.offset, 0, w->t->n * sizeof *w->ripple.offset);
+    return tacet_train_harmonic(w->t, W, s->drive.n_throws, s->drive.node, w->ripple.torque, w,
+                                s->out);
+}
+
+static tacet_status solve_start(steady *s)
+{
+    tacet_status status = TACET_NOT_CONVERGED;
+    if (!s->drive.frozen) {
+        tacet_periodic how = *s->how;
+        tacet_solver_note note;
+        how.tolerance = START_TOLERANCE;
+        status = ripple_solve(s->w, s->drive.speed_rad_per_s, s->drive.n_throws, s->drive.node,
+                              s->drive.drive, s->drive.who, &how, s->out, &note);
+    }
+    if (status == TACET_NOT_CONVERGED) status = constant_speed(s);
+    for (size_t i = 0; i < s->drive.n_throws && status == TACET_OK; i++)
+        s->s->mean[i] = s->w->ripple.torque[i].mean;
+    return status;
+}
+
+// Value at t = 0 and sum of amplitudes of `factor` times a spectrum's lines.
+typedef struct {
+    double value, scale;
+} first;
+
+static void add_line(first *f, double complex line)
+{
+    f->value += creal(line);
+    f->scale += sqrt(creal(line) * creal(line) + cimag(line) * cimag(line));
+}
+
+// Twist of link k and of its arms at t = 0, from its torque, which is exact where angles are not.
+static void start_link(steady *s, size_t k)
+{
+    const march_model *m = &s->s->model;
+    const tacet_train *t = m->t;
+    size_t node = m->child[k], link = t->up[node];
+    const tacet_spectrum *torque = &s->out->link_torque_Nm[link];
+    double base = s->drive.speed_rad_per_s / s->how->revolutions;
+    double referred = t->sign[node] / t->ratio[t->link[link].to];
+    first twist = {0, 0};
+    double *arm = s->s->start + m->arms;
+    for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
+        arm[a * m->lossy + k] = 0;
+    for (size_t h = 1; h <= torque->n_lines; h++) {
+        double w = base * (double)h;
+        double complex u = referred * torque->line[h] / tacet_train_link_impedance(t, link, w);
+        add_line(&twist, u);
+        for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
+            arm[a * m->lossy + k] += creal(u * (I * w / (t->rate[a] + I * w)));
+    }
+    s->s->start[m->n + k] = twist.value;
+    s->s->scale[m->n + k] = twist.scale;
+    for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
+        s->s->scale[m->arms + a * m->lossy + k] = twist.scale;
+}
+
+// Scales of states first..first + n not below a share of their largest.
+static void lift(double *scale, size_t n)
+{
+    double largest = 0;
+    for (size_t i = 0; i < n; i++)
+        largest = fmax(largest, scale[i]);
+    for (size_t i = 0; i < n; i++)
+        scale[i] = fmax(scale[i], largest > 0 ? FLOOR * largest : 1);
+}
+
+static void start_state(steady *s)
+{
+    const march_model *m = &s->s->model;
+    double base = s->drive.speed_rad_per_s / s->how->revolutions;
+    double *start = s->s->start, *scale = s->s->scale;
+    first angle = {0, 0};
+    for (size_t j = 0; j < m->n; j++) {
+        first speed = {0, 0};
+        const tacet_spectrum *x = &s->out->angle_rad[j];
+        for (size_t h = 1; h <= x->n_lines; h++) {
+            double complex y = x->line[h] / m->t->ratio[j];
+            add_line(&speed, I * (base * (double)h) * y);
+            if (j == m->t->flywheel) add_line(&angle, y);
+        }
+        start[j] = speed.value;
+        scale[j] = speed.scale;
+    }
+    start[m->root_angle] = angle.value;
+    scale[m->root_angle] = angle.scale;
+    for (size_t k = 0; k < m->links; k++)
+        start_link(s, k);
+    lift(scale, m->n);
+    lift(scale + m->n, m->links);
+    lift(scale + m->root_angle, 1);
+    lift(scale + m->arms, m->size - m->arms);
+}
+
+// ---- march ------------------------------------------------------------------------------------
+
+// Step size by the largest error over STEP_TOLERANCE of the scale of its state (GSL's standard rule
+// with a scale for each state, which its own control would allocate anew for every solution).
+static int adjust(void *scales, size_t n, unsigned order, const double y[], const double error[],
+                  const double rate[], double *h)
+{
+    (void)y, (void)rate;
+    const double *scale = scales;
+    double worst = 0;
+    for (size_t i = 0; i < n; i++)
+        worst = fmax(worst, fabs(error[i]) / scale[i]);
+    worst /= STEP_TOLERANCE;
+    if (worst > 1.1) {
+        *h *= fmax(0.9 / pow(worst, 1.0 / order), 0.2);
+        return GSL_ODEIV_HADJ_DEC;
+    }
+    if (worst < 0.5) {
+        *h *= fmin(fmax(0.9 / pow(fmax(worst, 1e-30), 1.0 / (order + 1)), 1), 5);
+        return GSL_ODEIV_HADJ_INC;
+    }
+    return GSL_ODEIV_HADJ_NIL;
+}
+
+static const gsl_odeiv2_control_type by_scale = {.name = "scale", .hadjust = adjust};
+
+// What is kept of a state: speeds, link torques, the flywheel's angle; channel by channel.
+static void keep(steady *s, size_t k)
+{
+    march_model *m = &s->s->model;
+    const double *x = s->s->state;
+    double *to = s->s->sample + k;
+    size_t n = s->samples;
+    march_link_torque(m, x, m->torque);
+    for (size_t j = 0; j < m->n; j++, to += n)
+        *to = x[j];
+    for (size_t e = 0; e < m->links; e++, to += n)
+        *to = m->torque[e];
+    *to = x[m->root_angle];
+}
+
+// From s->start over one repeat; s->defect is end less start.
+static tacet_status march_repeat(steady *s)
+{
+    steady_work *q = s->s;
+    gsl_odeiv2_system system = {march_rate, NULL, q->model.size, &s->drive};
+    gsl_odeiv2_control control = {&by_scale, q->scale};
+    double t = 0, h = s->period_s / (double)s->samples;
+    memcpy(q->state, q->start, q->model.size * sizeof *q->state);
+    if (gsl_odeiv2_step_reset(q->step) || gsl_odeiv2_evolve_reset(q->evolve))
+        return TACET_NOT_CONVERGED;
+    for (size_t k = 0; k < s->samples; k++) {
+        keep(s, k);
+        double next = s->period_s * (double)(k + 1) / (double)s->samples;
+        for (int steps = 0; t < next; steps++) {
+            int failed = gsl_odeiv2_evolve_apply(q->evolve, &control, q->step, &system, &t, next,
+                                                 &h, q->state);
+            if (s->drive.status != TACET_OK) return s->drive.status;
+            if (failed || steps == STEPS_A_SAMPLE) return TACET_NOT_CONVERGED;
+        }
+    }
+    for (size_t i = 0; i < q->model.size; i++)
+        q->defect[i] = q->state[i] - q->start[i];
+    s->note->repeats++;
+    return TACET_OK;
+}
+
+// ---- shooting ---------------------------------------------------------------------------------
+
+static double closure(const steady *s)
+{
+    double worst = 0;
+    for (size_t i = 0; i < s->s->model.size; i++)
+        worst = fmax(worst, fabs(s->s->defect[i]) / s->s->scale[i]);
+    return worst;
+}
+
+static tacet_status make_newton(steady *s)
+{
+    steady_work *q = s->s;
+    size_t n = q->model.size, root = q->model.root_angle;
+    if (!q->valid || q->period_s != s->period_s) {
+        march_matrix(&q->model, q->matrix);
+        matrix_exponential(n + 1, q->matrix, s->period_s, q->monodromy, q->scratch);
+        q->valid = true;
+        q->period_s = s->period_s;
+    }
+    for (size_t i = 0; i < n; i++)
+        for (size_t k = 0; k < n; k++) {
+            size_t from = k == root ? n : k;
+            double x = q->monodromy[i * (n + 1) + from] - (k == i && k != root);
+            // in units of the scales; the load's is one that would turn the crank by its own
+            gsl_matrix_set(q->newton, i, k, x * (k == root ? 1 : q->scale[k]) / q->scale[i]);
+        }
+    int sign;
+    if (gsl_linalg_LU_decomp(q->newton, q->pivots, &sign)) return TACET_NOT_CONVERGED;
+    for (size_t i = 0; i < n; i++) {
+        double pivot = gsl_matrix_get(q->newton, i, i);
+        if (!isfinite(pivot)) return TACET_NOT_FINITE;
+        if (pivot == 0) return TACET_NOT_CONVERGED;
+    }
+    return TACET_OK;
+}
+
+// Corrects start and load torque; the largest correction over the scales.
+static tacet_status correct(steady *s)
+{
+    steady_work *q = s->s;
+    size_t n = q->model.size, root = q->model.root_angle;
+    double largest = 0;
+    for (size_t i = 0; i < n; i++)
+        gsl_vector_set(q->right, i, -q->defect[i] / q->scale[i]);
+    if (gsl_linalg_LU_solve(q->newton, q->pivots, q->right, q->solution))
+        return TACET_NOT_CONVERGED;
+    for (size_t i = 0; i < n; i++) {
+        double x = gsl_vector_get(q->solution, i);
+        if (!isfinite(x)) return TACET_NOT_FINITE;
+        if (i == root) {
+            s->drive.load_Nm += x;
+            continue;
+        }
+        q->start[i] += x * q->scale[i];
+        largest = fmax(largest, fabs(x));
+    }
+    s->note->difference = largest;
+    return TACET_OK;
+}
+
+static tacet_status shoot(steady *s)
+{
+    double tolerance = s->how->tolerance > 0 ? s->how->tolerance : TOLERANCE;
+    tacet_status status = make_newton(s);
+    while (status == TACET_OK) {
+        status = march_repeat(s);
+        if (status != TACET_OK) break;
+        s->note->closure = closure(s);
+        if (s->note->closure <= tolerance) return TACET_OK;
+        if (!isfinite(s->note->closure)) return TACET_NOT_FINITE;
+        if (s->note->repeats >= s->how->most_passes) return TACET_NOT_CONVERGED;
+        status = correct(s);
+    }
+    return status;
+}
+
+// ---- lines ------------------------------------------------------------------------------------
+
+// Transforms channel c and turns its lines by the flywheel's mean angle.
+static void channel_lines(steady *s, size_t c, double complex turn, tacet_spectrum *out)
+{
+    double *buffer = s->w->buffer[0];
+    double complex by = 1;
+    memcpy(buffer, s->s->sample + c * s->samples, s->samples * sizeof *buffer);
+    tacet_transform_lines(s->grid, buffer, out);
+    for (size_t h = 1; h <= out->n_lines; h++) {
+        by *= turn;
+        out->line[h] *= by;
+    }
+}
+
+static void take_lines(steady *s)
+{
+    const march_model *m = &s->s->model;
+    const tacet_train *t = m->t;
+    double base = s->drive.speed_rad_per_s / s->how->revolutions, mean = 0;
+    const double *angle = s->s->sample + (m->n + m->links) * s->samples;
+    for (size_t k = 0; k < s->samples; k++)
+        mean += angle[k] / (double)s->samples;
+    double complex turn = s->drive.frozen ? 1 : cexp(-I * mean / s->how->revolutions);
+    for (size_t j = 0; j < m->n; j++) {
+        tacet_spectrum *x = &s->out->angle_rad[j];
+        channel_lines(s, j, turn, x);
+        for (size_t h = 1; h <= x->n_lines; h++)
+            x->line[h] *= t->ratio[j] / (I * (base * (double)h));
+        x->mean = 0;
+    }
+    for (size_t k = 0; k < m->links; k++) {
+        size_t node = m->child[k], link = t->up[node];
+        double own = t->sign[node] / t->ratio[t->link[link].to];
+        tacet_spectrum *x = &s->out->link_torque_Nm[link];
+        double estimate = x->mean;
+        channel_lines(s, m->n + k, turn, x);
+        for (size_t h = 1; h <= x->n_lines; h++)
+            x->line[h] *= own;
+        x->mean = estimate + own * x->mean;
+    }
+}
+
+// ---- the whole --------------------------------------------------------------------------------
+
+static tacet_status choose_samples(steady *s)
+{
+    size_t wanted = tacet_transform_length(s->how->n_lines, SAMPLES_A_PERIOD);
+    while (wanted < SAMPLES_A_TURN * (size_t)s->how->revolutions)
+        wanted *= 2;
+    s->grid = work_transform(s->w, wanted);
+    s->samples = tacet_transform_samples(s->grid);
+    return s->samples == wanted ? TACET_OK : TACET_BAD_INPUT;
+}
+
+tacet_status tacet_train_steady(const tacet_train *t, double speed, size_t n_throws,
+                                const size_t *throw_node, tacet_drive *drive, const void *who,
+                                const tacet_periodic *how, tacet_train_work *w,
+                                tacet_train_motion *out, tacet_solver_note *note)
+{
+    *note = (tacet_solver_note){.method = "steady"};
+    tacet_status status = periodic_check(t, speed, n_throws, throw_node, how, w);
+    if (status != TACET_OK) return status;
+    for (size_t e = 0; e < t->n_links; e++)
+        if (t->constant_loss[e]) return TACET_BAD_INPUT;
+    steady s = {.w = w, .s = &w->steady, .how = how, .out = out, .note = note};
+    s.period_s = 2 * M_PI * how->revolutions / speed;
+    s.drive = (march_drive){.m = &w->steady.model,
+                            .n_throws = n_throws,
+                            .node = throw_node,
+                            .drive = drive,
+                            .who = who,
+                            .frozen = how->frozen,
+                            .speed_rad_per_s = speed,
+                            .offset = w->ripple.offset,
+                            .mean = w->steady.mean};
+    status = choose_samples(&s);
+    if (status == TACET_OK) status = solve_start(&s);
+    if (status != TACET_OK) return status;
+    start_state(&s);
+    status = shoot(&s);
+    note->evaluations = s.drive.evaluations;
+    if (status == TACET_OK) take_lines(&s);
+    return status;
+}
