@@ -23,7 +23,7 @@
 #include <stdlib.h>
 #include <string.h>
 
-#define TOLERANCE        1e-9 // closure where none is asked for
+#define TOLERANCE        1e-7 // closure where none is asked for
 #define STEP_TOLERANCE   1e-9 // local error over the scale of a state
 #define SAMPLES_A_TURN   512
 #define SAMPLES_A_PERIOD 8    // of the highest line
