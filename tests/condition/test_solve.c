@@ -31,20 +31,47 @@ static tacet_row solve(demo *d, const tacet_roll *roll, double rpm, tacet_level 
     return row;
 }
 
-// The load carries the demand: mean torque in the last shaft = demand x ratio (statics).
-static void test_mean_torque_at_the_load(void **state)
+// Mean torque in the shaft to the load, on the crank's side, N m.
+static double torque_to_the_load(demo *d, const char *shaft, double ratio)
+{
+    size_t link = tacet_train_link_find(tacet_model_train(d->model), shaft);
+    return tacet_workspace_response(d->work)->motion->link_torque_Nm[link].mean / ratio;
+}
+
+// What all links turn into heat, W.
+static double heat_W(demo *d)
+{
+    const tacet_quantity *heat = tacet_quantities();
+    while (strcmp(heat->name, "damper-heat") != 0)
+        heat++;
+    double sum = 0;
+    for (size_t i = 0; i < tacet_train_links(tacet_model_train(d->model)); i++) {
+        double one = NAN;
+        assert_int_equal(heat->value(tacet_workspace_response(d->work), i, &one), TACET_OK);
+        sum += one;
+    }
+    return sum;
+}
+
+// At constant speed the load carries the demand (statics). With ripple the engine's work over a
+// repeat is the same, the demand times the angle, and the dampers take their heat out of it (energy
+// balance).
+static void test_demand_less_damper_heat_reaches_the_load(void **state)
 {
     (void)state;
     tacet_roll *r6 = demo_roll(&six, "..x.x.x"), *r8 = demo_roll(&eight, "x.");
-    tacet_row row = solve(&six, r6, 1200, TACET_LEVEL_RIPPLE);
-    assert_int_equal(row.outcome, TACET_SOLVED);
-    size_t link = tacet_train_link_find(tacet_model_train(six.model), "pump-shaft");
-    const tacet_response *r = tacet_workspace_response(six.work);
-    assert_near(r->motion->link_torque_Nm[link].mean, row.demand_Nm, 0, 2e-6);
+    tacet_row row = solve(&six, r6, 1200, TACET_LEVEL_CONSTANT);
+    assert_near(torque_to_the_load(&six, "pump-shaft", 1), row.demand_Nm, 0, 5e-6);
+    row = solve(&eight, r8, 2000, TACET_LEVEL_CONSTANT);
+    assert_near(torque_to_the_load(&eight, "tyres", 3.73), row.demand_Nm, 0, 5e-6);
+    row = solve(&six, r6, 1200, TACET_LEVEL_RIPPLE);
+    double lost = heat_W(&six) / row.speed_rad_per_s;
+    assert_true(lost >
+                1); // the coupling's loss factor of 0.15 near its resonance: hundreds of watts
+    assert_near(torque_to_the_load(&six, "pump-shaft", 1) + lost, row.demand_Nm, 0, 2e-5);
     row = solve(&eight, r8, 2000, TACET_LEVEL_RIPPLE);
-    link = tacet_train_link_find(tacet_model_train(eight.model), "tyres");
-    r = tacet_workspace_response(eight.work);
-    assert_near(r->motion->link_torque_Nm[link].mean, row.demand_Nm * 3.73, 0, 2e-6);
+    lost = heat_W(&eight) / row.speed_rad_per_s;
+    assert_near(torque_to_the_load(&eight, "tyres", 3.73) + lost, row.demand_Nm, 0, 2e-5);
     tacet_roll_destroy(r6);
     tacet_roll_destroy(r8);
 }
@@ -237,7 +264,7 @@ static void test_dispersion_fills_false_zeros(void **state)
     tacet_row row = solve(&six, tacet_model_all_fire(six.model), 900, TACET_LEVEL_RIPPLE);
     assert_string_equal(cab->name, "cab suspension");
     assert_true(row.bands[2].level.dispersed > 0);
-    assert_true(row.bands[2].level.nominal < 2e-3 * row.bands[2].level.dispersed);
+    assert_true(row.bands[2].level.nominal < 1e-2 * row.bands[2].level.dispersed);
 }
 
 static void test_bad_condition_is_refused(void **state)
@@ -256,7 +283,7 @@ static void test_bad_condition_is_refused(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(test_mean_torque_at_the_load),
+        cmocka_unit_test(test_demand_less_damper_heat_reaches_the_load),
         cmocka_unit_test(test_word_and_its_double_are_one),
         cmocka_unit_test(test_placements_share_roll_torque_and_load_the_crank_differently),
         cmocka_unit_test(test_double_torque_double_amplitude),
