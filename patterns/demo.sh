@@ -8,7 +8,7 @@ ninja -C build --quiet
 for study in forwarder brush-truck; do
     echo
     echo "== patterns/$study.yaml"
-    build/src/cli/tacet screen patterns/$study.yaml -o "$study-screen"
+    build/tacet screen patterns/$study.yaml -o "$study-screen"
 done
 cat <<'TEXT'
 
