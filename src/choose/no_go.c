@@ -1,4 +1,5 @@
-// No-go ranges of one band: where the level is over its limit, edges by bisection.
+// No-go ranges of one band: where the level is over its limit, edges by bisection that a straight
+// line helps.
 //
 // Between the speeds at which a line enters or leaves the band (the breaks) a level is smooth. The
 // samples at hand are the grid, both sides of every break and the crossings of modes; more are
@@ -103,16 +104,30 @@ static tacet_status follow_turns(const no_go_search *q, samples *known)
     return TACET_OK;
 }
 
+// Where to look next inside a bracket: two steps in three at the straight line's zero, a little to
+// one side and then to the other so that both ends close in; one in three, and where an end has no
+// finite margin, the middle, which halves a bracket that holds a jump.
+static double next_look(const no_go_search *q, const sample *a, const sample *b, double narrow,
+                        unsigned step)
+{
+    double ga = margin(q, a), gb = margin(q, b);
+    if (step % 3 == 2 || !isfinite(ga) || !isfinite(gb)) return (a->speed + b->speed) / 2;
+    double zero = a->speed + (b->speed - a->speed) * ga / (ga - gb);
+    double aside = (step % 3 == 0 ? 0.4 : -0.4) * narrow;
+    if (b->speed - zero < zero - a->speed) aside = -aside;
+    return fmin(fmax(zero + aside, a->speed + narrow / 4), b->speed - narrow / 4);
+}
+
 // The speed between two samples, one over and the other not, at which that changes: a break itself
 // where it is one. `open`: on the other side nothing is known.
 static tacet_status find_edge(const no_go_search *q, sample a, sample b, double *speed, bool *open)
 {
-    // a hair wider than the step aside on both sides, so that a break is not bisected
+    // a hair wider than the step aside on both sides, so that a break is not searched for
     const double narrow = fmax(EDGE_RPM, 2 * STEP_ASIDE_RPM) * 1.001 * RAD_PER_S_OF_RPM;
     bool over = is_over(q, &a);
-    while (b.speed - a.speed > narrow) {
+    for (unsigned step = 0; b.speed - a.speed > narrow; step++) {
         sample x;
-        tacet_status status = q->probe(q->who, (a.speed + b.speed) / 2, &x);
+        tacet_status status = q->probe(q->who, next_look(q, &a, &b, narrow, step), &x);
         if (status != TACET_OK) return status;
         *(is_over(q, &x) == over ? &a : &b) = x;
     }
