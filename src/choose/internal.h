@@ -36,7 +36,7 @@ TACET_USE tacet_status no_go_add(no_go_list *l, const tacet_no_go *x, tacet_aren
 
 // ---- significant lines (lines.c) --------------------------------------------------------------
 typedef struct {
-    unsigned revolutions;
+    unsigned revolutions, cycles;
     size_t n_lines;
     bool *of_band;  // [n_bands * (n_lines + 1)]
     bool *of_limit; // [n_limits * (n_lines + 1)]
@@ -46,6 +46,9 @@ TACET_USE tacet_status line_marks_init(line_marks *k, const tacet_model *m, cons
 // Marks what the last solved condition of the workspace shows.
 TACET_USE tacet_status line_marks_take(line_marks *k, const tacet_model *m, const tacet_row *row,
                                        tacet_workspace *w);
+// Marks the lines that pass a band wholly between two grid speeds, if cylinders are unequal: what
+// those add there has not been seen.
+void line_marks_unseen(line_marks *k, const tacet_model *m, const double *grid, size_t n_grid);
 void mark_lines(const tacet_spectrum *s, double least_peak, bool *mark);
 // Speeds between two at which a marked line enters or leaves the counted band.
 TACET_USE tacet_status lines_enter_and_leave(const tacet_band *b, unsigned revolutions,

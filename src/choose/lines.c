@@ -4,13 +4,15 @@
 #include "rules.h"
 #include <math.h>
 
-// Multiples of a working cycle's order move a band's margin without being in a pattern's spectrum:
-// unequal cylinders have them whatever the pattern, and all-fire at the same speed, where that is
-// the reference, has no others.
-static bool shows_the_comb(const tacet_model *m, size_t band)
+static bool *marks_of(const line_marks *k, size_t band)
 {
-    return tacet_model_study(m)->engine.cylinder_dispersion > 0 ||
-           tacet_model_band(m, band)->reference == TACET_REFERENCE_SAME_SPEED;
+    return k->of_band + band * (k->n_lines + 1);
+}
+
+static void mark_comb(line_marks *k, size_t band)
+{
+    for (size_t h = k->cycles; h <= k->n_lines; h += k->cycles)
+        marks_of(k, band)[h] = true;
 }
 
 tacet_status line_marks_init(line_marks *k, const tacet_model *m, const tacet_roll *r,
@@ -18,15 +20,12 @@ tacet_status line_marks_init(line_marks *k, const tacet_model *m, const tacet_ro
 {
     size_t n_lines = tacet_model_lines(m, r->revolutions);
     size_t n_bands = tacet_model_bands(m), n_limits = tacet_model_limits(m);
-    *k = (line_marks){.revolutions = r->revolutions, .n_lines = n_lines};
+    *k = (line_marks){.revolutions = r->revolutions, .cycles = r->cycles, .n_lines = n_lines};
     k->of_band = tacet_arena_alloc(a, n_bands * (n_lines + 1) * sizeof *k->of_band);
     k->of_limit = tacet_arena_alloc(a, n_limits * (n_lines + 1) * sizeof *k->of_limit);
     if (!k->of_band || !k->of_limit) return TACET_NO_MEMORY;
-    for (size_t b = 0; b < n_bands; b++) {
-        if (!shows_the_comb(m, b)) continue;
-        for (size_t h = r->cycles; h <= n_lines; h += r->cycles)
-            k->of_band[b * (n_lines + 1) + h] = true;
-    }
+    for (size_t b = 0; b < n_bands; b++) // all-fire has those lines alone
+        if (tacet_model_band(m, b)->reference == TACET_REFERENCE_SAME_SPEED) mark_comb(k, b);
     return TACET_OK;
 }
 
@@ -44,15 +43,39 @@ static double largest_line(const tacet_spectrum *s)
     return largest;
 }
 
-static tacet_status take_band(line_marks *k, const tacet_model *m, size_t b,
-                              const tacet_band_result *result, tacet_workspace *w)
+static void mark_inside(line_marks *k, size_t b, const tacet_band *band, double speed)
+{
+    double line1_hz = tacet_order_hz(1.0 / k->revolutions, speed);
+    for (size_t h = 1; h <= k->n_lines; h++) {
+        double hz = line1_hz * (double)h;
+        if (hz >= band->counted_low_hz && hz <= band->counted_high_hz) marks_of(k, b)[h] = true;
+    }
+}
+
+// What unequal cylinders and cycles add.
+static void take_uneven(line_marks *k, const tacet_model *m, size_t b,
+                        const tacet_band_result *result, double speed)
+{
+    const tacet_band_level *level = &result->level;
+    double added = level->dispersed * level->dispersed - level->nominal * level->nominal;
+    double share = sqrt(fmax(added, 0)) / result->limit; // a NAN is below every share
+    if (share >= COMB_SHARE_OF_LIMIT) mark_comb(k, b);
+    if (share >= UNEVEN_SHARE_OF_LIMIT) mark_inside(k, b, tacet_model_band(m, b), speed);
+    if (level->leading_peak >= LINE_SHARE_OF_LIMIT * sqrt(2) * result->limit)
+        marks_of(k, b)[level->leading_line] = true;
+}
+
+static tacet_status take_band(line_marks *k, const tacet_model *m, size_t b, const tacet_row *row,
+                              tacet_workspace *w)
 {
     const tacet_spectrum *s;
+    const tacet_band_result *result = &row->bands[b];
     tacet_status status = tacet_workspace_quantity(w, tacet_model_band(m, b)->of, &s, NULL);
     if (status != TACET_OK || s->n_lines > k->n_lines) return status;
     double least = LINE_SHARE_OF_LIMIT * sqrt(2) * result->limit;
     if (isnan(least)) least = LINE_SHARE_OF_LARGEST * largest_line(s);
-    if (least > 0) mark_lines(s, least, k->of_band + b * (k->n_lines + 1));
+    if (least > 0) mark_lines(s, least, marks_of(k, b));
+    take_uneven(k, m, b, result, row->speed_rad_per_s);
     return TACET_OK;
 }
 
@@ -73,10 +96,31 @@ tacet_status line_marks_take(line_marks *k, const tacet_model *m, const tacet_ro
     tacet_status status = TACET_OK;
     if (row->outcome != TACET_SOLVED) return status;
     for (size_t b = 0; status == TACET_OK && b < row->n_bands; b++)
-        status = take_band(k, m, b, &row->bands[b], w);
+        status = take_band(k, m, b, row, w);
     for (size_t i = 0; status == TACET_OK && i < row->n_limits; i++)
         status = take_limit(k, m, i, w);
     return status;
+}
+
+static bool has_grid_speed(double low, double high, const double *grid, size_t n_grid)
+{
+    for (size_t i = 0; i < n_grid; i++)
+        if (grid[i] >= low && grid[i] <= high) return true;
+    return false;
+}
+
+void line_marks_unseen(line_marks *k, const tacet_model *m, const double *grid, size_t n_grid)
+{
+    if (!(tacet_model_study(m)->engine.cylinder_dispersion > 0)) return;
+    for (size_t b = 0; b < tacet_model_bands(m); b++)
+        for (size_t h = 1; h <= k->n_lines; h++) {
+            double low, high;
+            tacet_order_window(tacet_model_band(m, b), (double)h / k->revolutions, true, &low,
+                               &high);
+            if (low > grid[0] && high < grid[n_grid - 1] &&
+                !has_grid_speed(low, high, grid, n_grid))
+                marks_of(k, b)[h] = true;
+        }
 }
 
 static tacet_status add_inside(speeds *out, double speed, const double range[2], tacet_arena *a)
@@ -148,7 +192,7 @@ tacet_status extra_speeds(const line_marks *k, const tacet_model *m, const doubl
     tacet_status status = TACET_OK;
     for (size_t b = 0; status == TACET_OK && b < tacet_model_bands(m); b++) {
         const tacet_band *band = tacet_model_band(m, b);
-        const bool *mark = k->of_band + b * stride;
+        const bool *mark = marks_of(k, b);
         speeds breaks = {0};
         status = lines_enter_and_leave(band, k->revolutions, k->n_lines, mark, range, &breaks, a);
         if (status == TACET_OK) status = step_aside(&breaks, range, out, a);

@@ -14,6 +14,13 @@
 // The same for a scalar limit: share of its value.
 #define LINE_SHARE_OF_SCALAR 0.1
 
+// Unequal cylinders and cycles add to a level without being in its spectrum. Where they add this
+// share of the limit at some grid speed, multiples of a working cycle's order, their strongest
+// lines, are significant; where they add the larger share, every line then inside the counted band
+// is.
+#define COMB_SHARE_OF_LIMIT   0.03
+#define UNEVEN_SHARE_OF_LIMIT 0.3
+
 // Speeds just before and just after a line enters or leaves a counted band, rpm: far above
 // rounding, far below what an engine can hold.
 #define STEP_ASIDE_RPM 0.05

@@ -193,6 +193,7 @@ static tacet_status solve_extra(screening *g, const tacet_cell *grid_cells)
     if (!extra) return no_memory(g);
     for (size_t k = 0; k < g->n_order; k++) {
         size_t c = g->order[k];
+        line_marks_unseen(&g->marks[c], g->m, s->speeds_rad_per_s, s->n_speeds);
         if (extra_speeds(&g->marks[c], g->m, s->speeds_rad_per_s, s->n_speeds, &extra[c],
                          g->scratch) != TACET_OK)
             return no_memory(g);
