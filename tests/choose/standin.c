@@ -188,8 +188,13 @@ static void judge(const tacet_model *m, double speed, const tacet_spectrum *s, t
             if (a <= largest) continue;
             largest = a;
             result->level.leading_order = (double)h / s->revolutions;
+            result->level.leading_line = h;
         }
         result->limit = 1;
+        result->level.nominal = sqrt(ms);
+        result->level.leading_peak = largest;
+        ms += m->uneven * m->uneven;
+        result->level.dispersed = sqrt(ms);
         result->margin_db = ms > 1e-18 ? -10 * log10(ms) : NAN;
         result->verdict = result->margin_db < 0   ? TACET_OVER
                           : result->margin_db < 3 ? TACET_NEAR

@@ -9,6 +9,7 @@ struct tacet_model {
     tacet_band band[2];
     double mode_hz[3];
     double scale;         // level over limit of a line of amplitude 1 off resonance
+    double uneven;        // rms that unequal cylinders add to both levels
     double least_density; // below: unreachable
     double fails_at_rpm;  // conditions within 1 rpm fail; 0: none
     bool may_skip[6];

@@ -177,16 +177,45 @@ static void test_extra_speeds(void **state)
 }
 
 // Order 1 is in no spectrum of 3/7, but unequal cylinders have it: it leaves the coupling band at
-// 60 * 27.81 = 1668.6 rpm. The same where all-fire at the same speed is the reference.
-static void test_extra_speeds_of_the_comb(void **state)
+// 60 * 27.81 = 1668.6 rpm and counts where they add more than 3 % of the limit, or where all-fire
+// at the same speed is the reference. Where they add more than 30 %, order 15/14 counts as well; it
+// leaves at 60 * 27.81 * 14/15 = 1557.36 rpm.
+static void test_extra_speeds_of_unequal_cylinders(void **state)
 {
     (void)state;
-    for (int why = 0; why < 3; why++) {
+    static const struct {
+        double uneven;
+        int reference;
+        bool comb, all;
+    } cases[] = {{0, TACET_REFERENCE_WORST, false, false},
+                 {0.029, TACET_REFERENCE_WORST, false, false},
+                 {0.031, TACET_REFERENCE_WORST, true, false},
+                 {0.31, TACET_REFERENCE_WORST, true, true},
+                 {0, TACET_REFERENCE_SAME_SPEED, true, false}};
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
         struct tacet_model m = standin(100, arena);
-        if (why == 1) m.study.engine.cylinder_dispersion = 0.03;
-        if (why == 2) m.band[0].reference = TACET_REFERENCE_SAME_SPEED;
+        m.uneven = cases[i].uneven;
+        m.band[0].reference = cases[i].reference;
         tacet_screen *s = run(&m, NULL);
-        assert_int_equal(has_cell(s, find(s, "3/7"), 1668.6 + 0.05, true), why > 0);
+        size_t c = find(s, "3/7");
+        assert_int_equal(has_cell(s, c, 1668.6 + 0.05, true), cases[i].comb);
+        assert_int_equal(has_cell(s, c, 1557.36 + 0.05, true), cases[i].all);
+        tacet_screen_destroy(s);
+    }
+}
+
+// A band so narrow that order 15/14 passes it between two grid speeds (1511.8 to 1513.6 rpm): what
+// unequal cylinders add there is looked at.
+static void test_extra_speeds_of_a_narrow_band(void **state)
+{
+    (void)state;
+    for (int uneven = 0; uneven < 2; uneven++) {
+        struct tacet_model m = standin(100, arena);
+        m.band[1].counted_low_hz = 1511.8 * 15 / 14 / 60;
+        m.band[1].counted_high_hz = 1513.6 * 15 / 14 / 60;
+        m.study.engine.cylinder_dispersion = uneven ? 0.03 : 0;
+        tacet_screen *s = run(&m, NULL);
+        assert_int_equal(has_cell(s, find(s, "3/7"), 1511.8 + 0.05, true), uneven);
         tacet_screen_destroy(s);
     }
 }
@@ -428,7 +457,8 @@ int main(void)
         TEST(test_no_go_from_two_grids),
         TEST(test_same_again),
         TEST(test_extra_speeds),
-        TEST(test_extra_speeds_of_the_comb),
+        TEST(test_extra_speeds_of_unequal_cylinders),
+        TEST(test_extra_speeds_of_a_narrow_band),
         TEST(test_unreachable),
         TEST(test_failed_conditions),
         TEST(test_refused_are_kept),
