@@ -72,28 +72,56 @@ bool march_model_create(march_model *m, const tacet_train *t, tacet_arena *a)
 
 // ---- torques ----------------------------------------------------------------------------------
 
-void march_link_torque(march_model *m, const double *state, double *torque)
+typedef double pair __attribute__((vector_size(16)));
+
+static pair load(const double *x)
 {
-    const double *v = state, *u = state + m->n;
-    for (size_t k = 0; k < m->links; k++) {
-        m->rate_of_twist[k] = v[m->child[k]] - v[m->above[k]];
-        torque[k] = m->rest[k] * u[k] + m->viscous[k] * m->rate_of_twist[k];
+    pair p;
+    memcpy(&p, x, sizeof p);
+    return p;
+}
+
+static void store(double *x, pair p)
+{
+    memcpy(x, &p, sizeof p);
+}
+
+// Arms of links k and k + 1: adds their torques, and gives the rates of their elongations.
+static void pair_of_arms(const march_model *m, size_t k, const double *state, double *rate)
+{
+    size_t arms = m->t->n_arms, step = m->lossy;
+    const double *s = state + m->arms + k, *g = m->weight + k;
+    double *ds = rate + m->arms + k;
+    pair turning = load(m->rate_of_twist + k), torque = load(m->torque + k);
+    for (size_t a = 0; a < arms; a++, s += step, g += step, ds += step) {
+        pair x = load(s);
+        torque += load(g) * x;
+        store(ds, turning - m->rate[a] * x);
     }
-    for (size_t a = 0; m->lossy && a < m->t->n_arms; a++) {
-        const double *s = state + m->arms + a * m->lossy, *g = m->weight + a * m->lossy;
-        for (size_t k = 0; k < m->lossy; k++)
-            torque[k] += g[k] * s[k];
+    store(m->torque + k, torque);
+}
+
+static void last_arms(const march_model *m, size_t k, const double *state, double *rate)
+{
+    for (size_t a = 0; a < m->t->n_arms; a++) {
+        size_t at = a * m->lossy + k;
+        m->torque[k] += m->weight[at] * state[m->arms + at];
+        rate[m->arms + at] = m->rate_of_twist[k] - m->rate[a] * state[m->arms + at];
     }
 }
 
-static void relax_arms(const march_model *m, const double *state, double *rate)
+void march_links(march_model *m, const double *state, double *rate)
 {
-    for (size_t a = 0; m->lossy && a < m->t->n_arms; a++) {
-        const double *s = state + m->arms + a * m->lossy;
-        double *ds = rate + m->arms + a * m->lossy, r = m->rate[a];
-        for (size_t k = 0; k < m->lossy; k++)
-            ds[k] = m->rate_of_twist[k] - r * s[k];
+    const double *v = state, *u = state + m->n;
+    size_t k = 0;
+    for (size_t e = 0; e < m->links; e++) {
+        m->rate_of_twist[e] = v[m->child[e]] - v[m->above[e]];
+        m->torque[e] = m->rest[e] * u[e] + m->viscous[e] * m->rate_of_twist[e];
     }
+    for (; k + 2 <= m->lossy; k += 2)
+        pair_of_arms(m, k, state, rate);
+    if (k < m->lossy) last_arms(m, k, state, rate);
+    memcpy(rate + m->n, m->rate_of_twist, m->links * sizeof *rate);
 }
 
 // Angle of every node, deviation from W t.
@@ -130,10 +158,8 @@ int march_rate(double t, const double state[], double rate[], void *params)
     const double *v = state;
     double *acceleration = rate, doubt = 0;
     d->evaluations++;
-    march_link_torque(m, state, m->torque);
-    memcpy(rate + m->n, m->rate_of_twist, m->links * sizeof *rate);
+    march_links(m, state, rate);
     rate[m->root_angle] = v[m->t->flywheel];
-    relax_arms(m, state, rate);
     if (!d->frozen) turn(m, state);
     for (size_t j = 0; j < m->n; j++) {
         m->push[j] = -m->damping[j] * v[j];

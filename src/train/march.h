@@ -43,8 +43,8 @@ typedef struct {
 TACET_USE bool march_model_create(march_model *m, const tacet_train *t, tacet_arena *a);
 // Derivative of the state at time t; GSL's signature, params is a march_drive.
 int march_rate(double t, const double state[], double rate[], void *params);
-// Torques of the links (order of the model) in a state, referred.
-void march_link_torque(march_model *m, const double *state, double *torque);
+// Torques of the links in a state, referred, into m->torque; their part of the state's rate.
+void march_links(march_model *m, const double *state, double *rate);
 // Matrix of the linear model, size + 1 square: the last state is a constant load torque.
 void march_matrix(const march_model *m, double *a);
 

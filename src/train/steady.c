@@ -23,8 +23,8 @@
 #include <stdlib.h>
 #include <string.h>
 
-#define TOLERANCE        1e-7 // closure where none is asked for
-#define STEP_TOLERANCE   1e-9 // local error over the scale of a state
+#define TOLERANCE        1e-6 // closure where none is asked for
+#define STEP_TOLERANCE   1e-7
 #define SAMPLES_A_TURN   512
 #define SAMPLES_A_PERIOD 8    // of the highest line
 #define STEPS_A_SAMPLE   1000 // more: the march is stuck
@@ -234,7 +234,7 @@ static void keep(steady *s, size_t k)
     const double *x = s->s->state;
     double *to = s->s->sample + k;
     size_t n = s->samples;
-    march_link_torque(m, x, m->torque);
+    march_links(m, x, s->s->defect); // as scratch
     for (size_t j = 0; j < m->n; j++, to += n)
         *to = x[j];
     for (size_t e = 0; e < m->links; e++, to += n)
@@ -288,10 +288,14 @@ static tacet_status make_newton(steady *s)
         q->valid = true;
         q->period_s = s->period_s;
     }
+    memcpy(q->matrix, q->monodromy, (n + 1) * (n + 1) * sizeof *q->matrix);
+    if (!s->drive.frozen)
+        slow_correct(s->w, s->drive.speed_rad_per_s, s->how->revolutions, s->drive.n_throws,
+                     s->drive.node, s->out, q->matrix);
     for (size_t i = 0; i < n; i++)
         for (size_t k = 0; k < n; k++) {
             size_t from = k == root ? n : k;
-            double x = q->monodromy[i * (n + 1) + from] - (k == i && k != root);
+            double x = q->matrix[i * (n + 1) + from] - (k == i && k != root);
             // in units of the scales; the load's is one that would turn the crank by its own
             gsl_matrix_set(q->newton, i, k, x * (k == root ? 1 : q->scale[k]) / q->scale[i]);
         }
@@ -305,7 +309,7 @@ static tacet_status make_newton(steady *s)
     return TACET_OK;
 }
 
-// Corrects start and load torque; the largest correction over the scales.
+// Corrects start and load torque; the largest step over the scales.
 static tacet_status correct(steady *s)
 {
     steady_work *q = s->s;

@@ -94,6 +94,12 @@ TACET_USE tacet_status ripple_solve(tacet_train_work *w, double speed_rad_per_s,
 bool steady_reserve(tacet_train_work *w);
 void steady_release(tacet_train_work *w);
 
+// Adds to the linear model's monodromy (size + 1 square, the last column a load torque's) what
+// torque that follows angle does to the slow modes; torques are in w->ripple.torque.
+void slow_correct(tacet_train_work *w, double speed_rad_per_s, unsigned revolutions,
+                  size_t n_throws, const size_t *node, const tacet_train_motion *motion,
+                  double *matrix);
+
 // Newton's step for the angle common to all throws, on lines 1..n of w->ripple.rest (what the last
 // pass would change): into w->ripple.step. False: the crank all but stops within the repeat.
 bool common_step(tacet_train_work *w, double speed_rad_per_s, unsigned revolutions, size_t n_throws,
