@@ -41,9 +41,13 @@ static bool run_and_store(chain *k, cylinder_rule rule, cylinder_gas *gas, unsig
     return true;
 }
 
+// Relative change; of energy in terms of that of gas at about room temperature over absolute zero,
+// as the zero of energy is an arbitrary one.
+#define ENERGY_SCALE 2e5 // J/kg
 static double change(const cylinder_gas *a, const cylinder_gas *b)
 {
-    return fmax(fabs(a->mass_kg / b->mass_kg - 1), fabs(a->energy_J / b->energy_J - 1));
+    return fmax(fabs(a->mass_kg / b->mass_kg - 1),
+                fabs(a->energy_J - b->energy_J) / (b->mass_kg * ENERGY_SCALE));
 }
 
 // Cycles of an engine that fires on, until its gas at gas-exchange top repeats.
@@ -97,31 +101,54 @@ static bool idle(chain *k, cylinder_gas *gas)
     return !k->h->open || run(k, halves_rule_down_skip(k->h, false), gas);
 }
 
-// Newton's method on the gas (mass, energy) that a revolution leaves as it was, with differences
-// for derivatives. Without flow past the rings the mass is the one it came with.
+// Change of mass and energy of the gas over a revolution, and over one with more mass at the same
+// temperature (per kg) and one with more energy (per J), by differences.
+typedef struct {
+    double mass, energy, mass_by_mass, energy_by_mass, mass_by_energy, energy_by_energy;
+    double late_Pa;
+} idle_change;
+
+static bool idle_changes(chain *k, const cylinder_gas *gas, idle_change *out)
+{
+    cylinder_gas at = *gas, dm = *gas, de = *gas;
+    double hm = 1e-6 * gas->mass_kg, he = 1e-6 * gas->mass_kg * ENERGY_SCALE;
+    dm.mass_kg += hm;
+    dm.energy_J *= 1 + 1e-6;
+    de.energy_J += he;
+    if (!idle(k, &at) || !idle(k, &dm) || !idle(k, &de)) return false;
+    *out = (idle_change){.mass = at.mass_kg - gas->mass_kg,
+                         .energy = at.energy_J - gas->energy_J,
+                         .mass_by_mass = (dm.mass_kg - at.mass_kg) / hm - 1,
+                         .energy_by_mass =
+                             (dm.energy_J - at.energy_J) / hm - gas->energy_J / gas->mass_kg,
+                         .mass_by_energy = (de.mass_kg - at.mass_kg) / he,
+                         .energy_by_energy = (de.energy_J - at.energy_J) / he - 1,
+                         .late_Pa = at.late_Pa};
+    return true;
+}
+
+// Newton's method on the gas that a revolution leaves as it was; a step changes mass by a half and
+// energy by a quarter at most. Without flow past the rings the mass is the one it came with.
 static tacet_status settle_idle(chain *k, cylinder_gas *gas)
 {
     bool closed = k->c->blow_by_m2 == 0 && !k->h->open;
-    for (int i = 0; i < 40; i++) {
-        cylinder_gas at = *gas, dm = *gas, de = *gas;
-        double hm = 1e-6 * gas->mass_kg, he = 1e-6 * fabs(gas->energy_J) + 1e-9;
-        dm.mass_kg += hm;
-        dm.energy_J *= 1 + 1e-6;
-        de.energy_J += he;
-        if (!idle(k, &at) || !idle(k, &dm) || !idle(k, &de)) return TACET_NOT_FINITE;
-        double fm = at.mass_kg - gas->mass_kg, fe = at.energy_J - gas->energy_J;
-        // columns: along (mass, energy) together, and along energy
-        double a11 = (dm.mass_kg - at.mass_kg) / hm - 1;
-        double a21 = (dm.energy_J - at.energy_J) / hm - gas->energy_J / gas->mass_kg;
-        double a12 = (de.mass_kg - at.mass_kg) / he, a22 = (de.energy_J - at.energy_J) / he - 1;
-        double det = a11 * a22 - a12 * a21, s = 0, t = -fe / a22;
-        if (!closed) s = (a12 * fe - a22 * fm) / det, t = (a21 * fm - a11 * fe) / det;
-        s = fmax(s, -0.5 * gas->mass_kg);
-        double energy = gas->energy_J + s * gas->energy_J / gas->mass_kg + t;
+    for (int i = 0; i < 60; i++) {
+        idle_change f;
+        if (!idle_changes(k, gas, &f)) return TACET_NOT_FINITE;
+        double det = f.mass_by_mass * f.energy_by_energy - f.mass_by_energy * f.energy_by_mass;
+        double dm = (f.mass_by_energy * f.energy - f.energy_by_energy * f.mass) / det;
+        double de = (f.energy_by_mass * f.mass - f.mass_by_mass * f.energy) / det;
+        if (closed) dm = 0, de = -f.energy / f.energy_by_energy;
+        // gas that never gets up to crankcase pressure only gains mass, at a rate of its own
+        if (!closed && !(-10 * f.mass_by_mass * gas->mass_kg > fabs(f.mass)))
+            dm = copysign(0.5 * gas->mass_kg, f.mass), de = 0;
+        double most =
+            fmax(fabs(dm) / (0.5 * gas->mass_kg), fabs(de) / (0.25 * ENERGY_SCALE * gas->mass_kg));
+        double part = most > 1 ? 1 / most : 1;
         cylinder_gas next = *gas;
-        next.mass_kg += s;
-        next.energy_J = energy;
-        next.late_Pa = at.late_Pa;
+        next.energy_J += part * (dm * gas->energy_J / gas->mass_kg + de);
+        next.mass_kg += part * dm;
+        next.late_Pa = f.late_Pa;
         if (!isfinite(next.energy_J)) return TACET_NOT_FINITE;
         double moved = change(&next, gas);
         *gas = next;
