@@ -18,7 +18,7 @@
 #include <math.h>
 #include <string.h>
 
-#define OVERSAMPLING   6    // samples per period of the highest line
+#define OVERSAMPLING   4    // samples per period of the highest line; 6 change no level by 1e-6
 #define SAMPLES_A_TURN 126  // at least: torque has lines beyond the highest asked for
 #define LOW_ORDER      6    // lines up to here take Newton's step
 #define QUARTER_PASSES 2    // fewer leave low lines to be found on more samples
