@@ -36,5 +36,6 @@ int point_write_json(const point *p, FILE *to);
 const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows); // most 0: all
 int point_save(point *p, const char *path); // drawings, lines.csv, point.json into a folder
 const char *point_headline(const point *p);
+double point_reachable_Nm(const point *p); // nearest to an unreachable demand; NAN: not that case
 
 #endif

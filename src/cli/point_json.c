@@ -55,6 +55,7 @@ int point_write_json(const point *p, FILE *to)
     tacet_json_head(&j, "point", p->s->study, p->row.outcome == TACET_FAILED ? "failed" : "ok");
     put_pattern(&j, p);
     tacet_row_json(&j, p->s->model, &p->condition, &p->row, a, why);
+    tacet_json_put_number(&j, "nearest_reachable_nm", point_reachable_Nm(p)); // null: see reach
     put_quantities(&j, p);
     return cli_end_json(&j);
 }

@@ -221,12 +221,37 @@ static void write_solver(const point *p)
                p->agreement.closure);
 }
 
+double point_reachable_Nm(const point *p)
+{
+    const tacet_duty *d = &p->row.duty;
+    bool known = d->reach == TACET_REACH_TOO_HIGH || d->reach == TACET_REACH_TOO_LOW ||
+                 d->reach == TACET_REACH_PEAK_PRESSURE;
+    return p->row.outcome == TACET_UNREACHABLE && known ? d->brake_torque_Nm : NAN;
+}
+
+// What the pattern can carry there, and what the study screens.
+static void write_reachable(const point *p)
+{
+    double nearest = point_reachable_Nm(p), rpm[2];
+    char a[TACET_NUMBER_TEXT];
+    cli_screened_rpm(p->s, rpm);
+    if (isfinite(nearest))
+        printf("The %s it can carry there is %s N m\n",
+               p->row.duty.reach == TACET_REACH_TOO_LOW ? "least" : "most",
+               tacet_number_format_short(nearest, 4, a));
+    else if (p->row.duty.reach == TACET_REACH_SPEED)
+        printf("The study is for %g to %g rpm\n", rpm[0], rpm[1]);
+}
+
 int point_write_text(const point *p)
 {
     cli_rows rows;
     tacet_write_clean(stdout, point_headline(p));
     fputc('\n', stdout);
-    if (p->row.outcome != TACET_SOLVED) return CLI_DONE;
+    if (p->row.outcome != TACET_SOLVED) {
+        write_reachable(p);
+        return CLI_DONE;
+    }
     write_duty(p);
     int code = write_bands(p);
     if (code == CLI_DONE) code = write_limits(p);
