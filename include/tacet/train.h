@@ -177,9 +177,15 @@ TACET_USE tacet_status tacet_train_steady(const tacet_train *t, double speed_rad
                                           const tacet_periodic *how, tacet_train_work *w,
                                           tacet_train_motion *out, tacet_solver_note *note);
 // Mean powers of a solution, W: what the throws put in, what dampers take, what leaves at the load.
+// `torque` is what drives the throws on the train's own inertia: that of harmonic, or what ripple
+// gives. in = dissipated + out.
 typedef struct {
     double in_W, dissipated_W, out_W;
 } tacet_train_power;
+tacet_train_power tacet_train_power_of(const tacet_train *t, double speed_rad_per_s,
+                                       size_t n_throws, const size_t *throw_node,
+                                       const tacet_spectrum *torque,
+                                       const tacet_train_motion *motion);
 
 #pragma GCC visibility pop
 #endif
