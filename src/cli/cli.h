@@ -168,6 +168,8 @@ void cli_screened_rpm(const cli_session *s, double range[2]);
 // tacet modes --response NODE.
 int cli_response(const cli_call *call, const cli_session *s, const char *node);
 
+// Where results go: --output, or ./STUDY-<what>, or "" (nowhere) with --json or --csv.
+void cli_folder_name(const cli_call *call, const char *what, size_t size, char *out);
 // Opens a result folder, unless it holds the file `foreign` of another command's results.
 int cli_folder(const char *path, const char *foreign, tacet_folder **out);
 

@@ -55,20 +55,18 @@ static void tell(void *who, const cli_key *k)
     cli_put_text(&l->rows, k->doc);
 }
 
-static const tacet_table *quantities(tacet_arena *a)
+static const tacet_table *quantities(tacet_arena *a, cli_rows *rows)
 {
     static const char *const target[] = {"", ":NODE", ":LINK"};
     const tacet_quantity *q = tacet_quantities();
-    cli_rows rows = cli_rows_start(a, "quantities", "What a band or a limit may judge",
-                                   quantity_columns, N(quantity_columns), 32);
+    *rows = cli_rows_start(a, "quantities", "What a band or a limit may judge", quantity_columns,
+                           N(quantity_columns), 32);
     for (; q->name; q++) {
-        cli_put_text(&rows, cli_text(a, "%s%s", q->name, target[q->target]));
-        cli_put_text(&rows, q->unit ? q->unit : "");
-        cli_put_text(&rows, q->doc);
+        cli_put_text(rows, cli_text(a, "%s%s", q->name, target[q->target]));
+        cli_put_text(rows, q->unit ? q->unit : "");
+        cli_put_text(rows, q->doc);
     }
-    cli_rows *copy = tacet_arena_alloc(a, sizeof *copy);
-    if (copy) *copy = rows;
-    return copy ? cli_rows_end(copy) : NULL;
+    return cli_rows_end(rows);
 }
 
 static void write_json(const tacet_table *keys, const tacet_table *judged)
@@ -109,7 +107,8 @@ static int list(const cli_call *call, tacet_arena *a)
     listing l = {.section = call->n_operands ? call->operand[0] : "", .arena = a};
     l.rows = cli_rows_start(a, "keys", NULL, columns, N(columns), KEYS_MOST);
     cli_keys_walk(tacet_study_keys(), tell, &l);
-    const tacet_table *keys = cli_rows_end(&l.rows), *judged = quantities(a);
+    cli_rows rows;
+    const tacet_table *keys = cli_rows_end(&l.rows), *judged = quantities(a, &rows);
     if (!keys || !judged) return cli_failed(TACET_NO_MEMORY, NULL);
     if (keys->n_rows == 0) return no_section(&l);
     if (cli_given(call, "json")) {

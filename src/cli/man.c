@@ -1,6 +1,6 @@
-// Builds the man page and the README's tables from the tables of commands, keys and quantities; run
-// at build.
-// usage: tacet-man page|commands|keys
+// Builds the man page and the README's table of commands from the tables of commands, keys and
+// quantities; run at build.
+// usage: tacet-man page|commands
 #include "cli/cli.h"
 #include "cli/keys.h"
 #include <string.h>
@@ -124,7 +124,7 @@ static void page(void)
     printf("\n");
 }
 
-// ---- tables in Markdown -----------------------------------------------------------------------
+// ---- README -----------------------------------------------------------------------------------
 
 static void cell(const char *text)
 {
@@ -146,19 +146,6 @@ static void markdown_commands(void)
     }
 }
 
-static void markdown_key(void *who, const cli_key *k)
-{
-    (void)who;
-    if (strncmp(k->kind, "section", 7) == 0) return;
-    printf("| `%s` | %s | ", k->path, k->unit ? k->unit : "");
-    cell(k->fallback);
-    printf(" | ");
-    cell(k->range);
-    printf(" | ");
-    cell(k->doc);
-    printf(" |\n");
-}
-
 int main(int argc, char **argv)
 {
     const char *what = argc == 2 ? argv[1] : "";
@@ -166,11 +153,8 @@ int main(int argc, char **argv)
         page();
     } else if (strcmp(what, "commands") == 0) {
         markdown_commands();
-    } else if (strcmp(what, "keys") == 0) {
-        printf("| key | unit | default | range | meaning |\n|---|---|---|---|---|\n");
-        cli_keys_walk(tacet_study_keys(), markdown_key, NULL);
     } else {
-        return cli_wrong("usage: tacet-man page|commands|keys");
+        return cli_wrong("usage: tacet-man page|commands");
     }
     tacet_error e = {.text = ""};
     tacet_status status = tacet_stream_check(stdout, "standard output", &e);

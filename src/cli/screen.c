@@ -1,24 +1,8 @@
 // tacet screen: the main job.
 #include "cli/cli.h"
-#include <string.h>
 #include <unistd.h>
 
 static const char *const formats[] = {"svg", "png", "none", NULL};
-
-// Where results go; "": nowhere.
-static void folder_path(const cli_call *call, size_t size, char *out)
-{
-    const char *study = call->operand[0], *slash = strrchr(study, '/');
-    *out = '\0';
-    if (cli_given(call, "output")) {
-        snprintf(out, size, "%s", cli_value(call, "output"));
-    } else if (!cli_given(call, "json") && !cli_given(call, "csv")) {
-        const char *name = strcmp(study, "-") == 0 ? "study" : slash ? slash + 1 : study;
-        const char *dot = strrchr(name, '.');
-        int n = dot && dot > name ? (int)(dot - name) : (int)strlen(name);
-        snprintf(out, size, "%.*s-screen", n, name);
-    }
-}
 
 static int write_out(const cli_call *call, const cli_session *s, const tacet_screen *screen)
 {
@@ -110,7 +94,7 @@ static int run(const cli_call *call)
     int code = cli_choice(call, "drawings", formats, &format);
     if (code != CLI_DONE) return code;
     cli_catch_signals();
-    folder_path(call, sizeof path, path);
+    cli_folder_name(call, "screen", sizeof path, path);
     code = cli_open(call->operand[0], CLI_READ, &s);
     if (code == CLI_DONE && *path) code = cli_folder(path, "point.json", &folder);
     if (code == CLI_DONE) {

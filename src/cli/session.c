@@ -66,3 +66,17 @@ int cli_folder(const char *path, const char *foreign, tacet_folder **out)
     tacet_status status = tacet_folder_open(path, out, &e);
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
+
+void cli_folder_name(const cli_call *call, const char *what, size_t size, char *out)
+{
+    const char *study = call->operand[0], *slash = strrchr(study, '/');
+    *out = '\0';
+    if (cli_given(call, "output")) {
+        snprintf(out, size, "%s", cli_value(call, "output"));
+    } else if (!cli_given(call, "json") && !cli_given(call, "csv")) {
+        const char *name = strcmp(study, "-") == 0 ? "study" : slash ? slash + 1 : study;
+        const char *dot = strrchr(name, '.');
+        int n = dot && dot > name ? (int)(dot - name) : (int)strlen(name);
+        snprintf(out, size, "%.*s-%s", n, name, what);
+    }
+}
