@@ -164,6 +164,11 @@ void tacet_engine_pressure(const tacet_engine *en, const tacet_engine_work *w, u
 // angles.
 void tacet_engine_inertia(const tacet_engine *en, unsigned slot, size_t n, const double *angle_rad,
                           double *inertia_kgm2, double *slope_kgm2_per_rad);
+// Adds all three at once: gas torque, inertia and slope of the cylinder in `slot` to what the
+// arrays hold (faster than one after another).
+void tacet_engine_drive(const tacet_engine *en, const tacet_engine_work *w, unsigned slot, size_t n,
+                        const double *angle_rad, double *torque_Nm, double *inertia_kgm2,
+                        double *slope_kgm2_per_rad);
 // Complex content of one fired window's gas torque of the last load at n orders, about its own
 // firing angle: integral over the window of T(a) exp(-i order a) da, N m rad. For cycle-to-cycle
 // dispersion.

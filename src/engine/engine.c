@@ -41,48 +41,6 @@ static void fill_slots(tacet_engine *en)
     }
 }
 
-// x', x'' and x''' at an angle, with g = sqrt(l^2 - b^2) and its derivatives (slider.c for b).
-static void lever_at(const tacet_slider *s, double angle_rad, double out[3])
-{
-    double r = s->crank_m, l = s->rod_m, e = s->offset_m, phi = angle_rad + asin(e / (l + r));
-    double b = r * sin(phi) - e, b1 = r * cos(phi), b2 = -r * sin(phi), b3 = -b1;
-    double g = sqrt(l * l - b * b), g1 = -b * b1 / g, g2 = -(b1 * b1 + b * b2 + g1 * g1) / g;
-    double g3 = -(3 * b1 * b2 + b * b3 + 3 * g1 * g2) / g;
-    out[0] = -b2 - g1;
-    out[1] = b1 - g2;
-    out[2] = b2 - g3;
-}
-
-// Polynomial of fifth degree over 0..1 with value, slope and bend (per unit) at both ends.
-static void between(const double a[3], const double b[3], double c[6])
-{
-    double d0 = b[0] - a[0] - a[1] - a[2] / 2, d1 = b[1] - a[1] - a[2], d2 = b[2] - a[2];
-    c[0] = a[0], c[1] = a[1], c[2] = a[2] / 2;
-    c[3] = 10 * d0 - 4 * d1 + d2 / 2;
-    c[4] = -15 * d0 + 7 * d1 - d2;
-    c[5] = 6 * d0 - 3 * d1 + d2 / 2;
-}
-
-static void fill_geometry(tacet_engine *en)
-{
-    const tacet_slider *s = &en->cyl.slider;
-    double sum = 0, h = M_PI / 180, at[3], next[3];
-    en->half_degrees = en->def.strokes == 4 ? 360 : 180;
-    en->displacement_m3 = en->n_slots * en->cyl.swept_m3;
-    for (unsigned i = 0; i <= 360; i++) {
-        lever_at(s, i * h, next);
-        en->lever_m[i] = next[0];
-        en->lever_slope_m[i] = next[1];
-        next[1] *= h, next[2] *= h * h;
-        if (i > 0) {
-            between(at, next, en->lever_in[i - 1]);
-            sum += at[0] * at[0]; // trapezoid over a period: exact to rounding
-        }
-        memcpy(at, next, sizeof at);
-    }
-    en->mean_inertia_kgm2 = s->mass_kg * sum / 360;
-}
-
 tacet_status tacet_engine_create(const tacet_engine_def *d, tacet_engine **out, tacet_error *e)
 {
     tacet_error first = {0};
@@ -97,7 +55,7 @@ tacet_status tacet_engine_create(const tacet_engine_def *d, tacet_engine **out, 
     en->def = *d;
     en->cyl = cylinder_of(d);
     fill_slots(en);
-    fill_geometry(en);
+    engine_geometry(en);
     if (!isfinite(en->mean_inertia_kgm2) || !isfinite(en->displacement_m3)) {
         free(en);
         return tacet_fail(e, TACET_BAD_INPUT, "the engine's dimensions are not finite");

@@ -33,13 +33,16 @@ struct tacet_engine {
     unsigned n_slots, n_factors; // n_factors: different charge factors
     double displacement_m3, mean_inertia_kgm2;
     double lever_m[361], lever_slope_m[361]; // x' and x'' (m/rad, m/rad2) at whole degrees from top
-    double lever_in[360][6];                 // x' within a degree, powers of the part of it
+    double inertia[361][6]; // J within a degree after top, powers of the part of it
     bool exhaust_first;    // of a cylinder that comes back, whatever `trapped` says; for comparison
     unsigned half_degrees; // of a half: 360 (4-stroke), 180
     bool prepared;
     table table;
     double lowest_rad_per_s, highest_rad_per_s; // of the speeds prepared
 };
+
+// Fills lever, inertia, displacement from slider and slots.
+void engine_geometry(tacet_engine *en);
 
 // ---- work
 typedef struct { // halves of the same charge relative to the common one
@@ -61,7 +64,7 @@ typedef struct { // torque at a whole degree and its slope, per degree
 
 typedef struct { // a half beside its neighbour over the gas-exchange top
     const engine_wave *wave, *neighbour;
-    engine_node node[CYLINDER_SAMPLES];
+    engine_node node[CYLINDER_SAMPLES + 1]; // the last only ever counts times 0
 } engine_piece;
 
 struct tacet_engine_work {

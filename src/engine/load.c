@@ -53,6 +53,7 @@ static void fill_nodes(const tacet_engine *en, engine_piece *p)
     }
     p->node[0] = end_node(en, p, false);
     p->node[n] = end_node(en, p, true);
+    p->node[n + 1] = p->node[n];
 }
 
 static const engine_piece *piece_of(tacet_engine_work *w, const engine_wave *wave,

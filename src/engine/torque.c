@@ -8,6 +8,7 @@ typedef struct { // the half in which the last angle lay; angles in degrees afte
                  // cycle 0
     const engine_piece *piece;
     double first, end;
+    unsigned from_top; // degrees from the piston top before it to where the half starts
 } cursor;
 
 // False: the angle is not finite.
@@ -22,17 +23,28 @@ static bool find_half(const tacet_engine *en, const tacet_engine_work *w, unsign
     at->piece = w->sequence[2 * (size_t)slot * w->cycles + k];
     at->first = deg - (within - k * half);
     at->end = at->first + half;
+    at->from_top = k * en->half_degrees % 360;
     return true;
 }
 
-// The degree below and the place in it of an angle of the cursor's half.
-static inline unsigned cell(const tacet_engine *en, const cursor *at, double deg, double *place)
+// The degree below and the place in it of an angle of the cursor's half. Rounding may give the last
+// degree with place 0; the tables hold one entry more for it.
+static inline int cell(const cursor *at, double deg, double *place)
 {
     double within = deg - at->first;
-    unsigned i = within > 0 ? (unsigned)within : 0;
-    if (i >= en->half_degrees) i = en->half_degrees - 1;
+    int i = (int)within;
     *place = within - i;
     return i;
+}
+
+// Cubic through value and slope at both ends of a degree.
+static inline double torque_in(const engine_node *a, double y)
+{
+    const engine_node *b = a + 1;
+    double rise = b->torque_Nm - a->torque_Nm;
+    double c2 = 3 * rise - 2 * a->slope_Nm_per_deg - b->slope_Nm_per_deg;
+    double c3 = a->slope_Nm_per_deg + b->slope_Nm_per_deg - 2 * rise;
+    return a->torque_Nm + y * (a->slope_Nm_per_deg + y * (c2 + y * c3));
 }
 
 void tacet_engine_gas_torque(const tacet_engine *en, const tacet_engine_work *w, unsigned slot,
@@ -49,19 +61,16 @@ void tacet_engine_gas_torque(const tacet_engine *en, const tacet_engine_work *w,
             }
         }
         double y;
-        const engine_node *a = at.piece->node + cell(en, &at, deg, &y), *b = a + 1;
-        double rise = b->torque_Nm - a->torque_Nm;
-        double c2 = 3 * rise - 2 * a->slope_Nm_per_deg - b->slope_Nm_per_deg;
-        double c3 = a->slope_Nm_per_deg + b->slope_Nm_per_deg - 2 * rise;
-        torque_Nm[k] = a->torque_Nm + y * (a->slope_Nm_per_deg + y * (c2 + y * c3));
+        int i = cell(&at, deg, &y);
+        torque_Nm[k] = torque_in(at.piece->node + i, y);
     }
 }
 
 // Cubic through the four nearest degrees of the half.
-static double pressure_in(const tacet_engine *en, const engine_wave *wave, unsigned i, double y)
+static double pressure_in(const tacet_engine *en, const engine_wave *wave, int i, double y)
 {
-    unsigned first = i == 0 ? 0 : i - 1;
-    if (first + 3 > en->half_degrees) first = en->half_degrees - 3;
+    int first = i == 0 ? 0 : i - 1, last = (int)en->half_degrees - 3;
+    if (first > last) first = last;
     const double *p = wave->pressure_Pa + first;
     double x = y + i - first;
     return -p[0] * (x - 1) * (x - 2) * (x - 3) / 6 + p[1] * x * (x - 2) * (x - 3) / 2 -
@@ -79,20 +88,32 @@ void tacet_engine_pressure(const tacet_engine *en, const tacet_engine_work *w, u
             pressure_Pa[k] = NAN;
             continue;
         }
-        unsigned i = cell(en, &at, deg, &y);
+        int i = cell(&at, deg, &y);
         pressure_Pa[k] = pressure_in(en, at.piece->wave, i, y);
     }
 }
 
-// J = m x'^2 and dJ/da = 2 m x' x''. Within a degree x' is the polynomial of fifth degree that has
-// x', x'' and x''' of the exact slider-crank at both ends (engine.c): exact to rounding, as the
-// next term is h^6 / 46080 of its sixth derivative, 6e-16, and without a sine or a root.
+// J = m x'^2 and its slope dJ/da = 2 m x' x''. Within a degree J is the polynomial of fifth degree
+// that has J, J' and J'' of the exact slider-crank at both ends (geometry.c): exact to rounding, as
+// the next term is h^6 / 46080 of its sixth derivative, and without a sine or a root. Horner's
+// scheme gives value and slope (per degree) together.
+static inline double inertia_in(const double c[6], double y, double *slope)
+{
+    double value = c[5], rise = 0;
+    for (int k = 4; k >= 0; k--) {
+        rise = rise * y + value;
+        value = value * y + c[k];
+    }
+    *slope = rise;
+    return value;
+}
+
 void tacet_engine_inertia(const tacet_engine *en, unsigned slot, size_t n, const double *angle_rad,
                           double *inertia_kgm2, double *slope_kgm2_per_rad)
 {
-    double mass = en->cyl.slider.mass_kg, top = en->slot[slot].firing_rad * PER_RAD, first = 0;
+    double top = en->slot[slot].firing_rad * PER_RAD, first = 0;
     for (size_t k = 0; k < n; k++) {
-        double deg = angle_rad[k] * PER_RAD - top, within = deg - first;
+        double deg = angle_rad[k] * PER_RAD - top, within = deg - first, slope;
         if (!(within >= 0 && within < 360)) {
             if (!isfinite(deg)) {
                 inertia_kgm2[k] = slope_kgm2_per_rad[k] = NAN;
@@ -101,14 +122,32 @@ void tacet_engine_inertia(const tacet_engine *en, unsigned slot, size_t n, const
             first = 360 * floor(deg / 360);
             within = deg - first;
         }
-        unsigned i = (unsigned)within;
-        if (i > 359) i = 359;
-        double y = within - i;
-        const double *c = en->lever_in[i];
-        double dx = c[0] + y * (c[1] + y * (c[2] + y * (c[3] + y * (c[4] + y * c[5]))));
-        double ddx = c[1] + y * (2 * c[2] + y * (3 * c[3] + y * (4 * c[4] + y * 5 * c[5])));
-        inertia_kgm2[k] = mass * dx * dx;
-        slope_kgm2_per_rad[k] = 2 * mass * dx * ddx * PER_RAD;
+        int i = (int)within;
+        inertia_kgm2[k] = inertia_in(en->inertia[i], within - i, &slope);
+        slope_kgm2_per_rad[k] = slope * PER_RAD;
+    }
+}
+
+void tacet_engine_drive(const tacet_engine *en, const tacet_engine_work *w, unsigned slot, size_t n,
+                        const double *angle_rad, double *torque_Nm, double *inertia_kgm2,
+                        double *slope_kgm2_per_rad)
+{
+    cursor at = {.first = 0, .end = 0};
+    double top = en->slot[slot].firing_rad * PER_RAD;
+    const double(*inertia)[6] = en->inertia;
+    for (size_t k = 0; k < n; k++) {
+        double deg = angle_rad[k] * PER_RAD - top, y, slope;
+        if (!(deg >= at.first && deg < at.end)) {
+            if (!w->loaded || !find_half(en, w, slot, deg, &at)) {
+                torque_Nm[k] = inertia_kgm2[k] = slope_kgm2_per_rad[k] = NAN;
+                continue;
+            }
+            inertia = en->inertia + at.from_top;
+        }
+        int i = cell(&at, deg, &y);
+        torque_Nm[k] += torque_in(at.piece->node + i, y);
+        inertia_kgm2[k] += inertia_in(inertia[i], y, &slope);
+        slope_kgm2_per_rad[k] += slope * PER_RAD;
     }
 }
 

@@ -165,6 +165,36 @@ static void test_torque_inertia(void **state)
     }
 }
 
+// All three at once are what they are one after another, added to what was there; 2-stroke halves
+// start at bottom (test_traces.c has such an engine).
+static void test_torque_drive(void **state)
+{
+    (void)state;
+    tacet_engine_def d = demo_v8();
+    tacet_roll *r;
+    engine_pair p = loaded(&d, "..x.x.x", &r);
+    double angle[400], t[400], J[400], s[400], t1[400], J1[400], s1[400];
+    for (int i = 0; i < 400; i++) {
+        angle[i] = -7 + 0.41 * i + (i % 11 == 4 ? 1e4 : 0);
+        t[i] = J[i] = s[i] = i;
+    }
+    angle[399] = NAN;
+    for (unsigned slot = 0; slot < 8; slot++) {
+        tacet_engine_gas_torque(p.engine, p.work, slot, 400, angle, t1);
+        tacet_engine_inertia(p.engine, slot, 400, angle, J1, s1);
+        tacet_engine_drive(p.engine, p.work, slot, 400, angle, t, J, s);
+        for (int i = 0; i < 399; i++) {
+            assert_near(t[i] - i, t1[i], 1e-9, 1e-9);
+            assert_near(J[i] - i, J1[i], 1e-12, 1e-9);
+            assert_near(s[i] - i, s1[i], 1e-12, 1e-9);
+            t[i] = J[i] = s[i] = i;
+        }
+        assert_true(isnan(t[399]) && isnan(J[399]) && isnan(s[399]));
+    }
+    tacet_roll_destroy(r);
+    engine_cleared(&p);
+}
+
 // Content of a fired cycle: against the trapezoid over 0.1 degrees of the torque from one
 // gas-exchange top to the next, about its firing top; order 0 is its work. In a word with tenths:
 // weighted by tenths, the pulses of all fires add up.
@@ -207,6 +237,7 @@ int main(void)
         cmocka_unit_test(test_torque_is_smooth),
         cmocka_unit_test(test_torque_between_degrees),
         cmocka_unit_test(test_torque_inertia),
+        cmocka_unit_test(test_torque_drive),
         cmocka_unit_test(test_torque_pulse),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);

@@ -224,6 +224,11 @@ static void test_traces_two_stroke(void **state)
             tacet_slider_at(tacet_engine_slider(p.engine), deg * DEG, &x, &dx, &ddx);
             tacet_engine_gas_torque(p.engine, p.work, 4, 1, &angle, &t);
             assert_near(t, (kpa * 1e3 - 100e3) * area * dx, 1, 2e-3);
+            double both = 0, inertia = 0, slope = 0;
+            tacet_engine_drive(p.engine, p.work, 4, 1, &angle, &both, &inertia, &slope);
+            assert_near(both, t, 1e-9, 0);
+            assert_near(inertia, 2.7 * dx * dx, 1e-15, 1e-9);
+            assert_near(slope, 2 * 2.7 * dx * ddx, 1e-12, 1e-9);
             fires += deg == 31 && now.tenths > 0;
         }
     assert_int_equal(fires, tacet_roll_fires_of(r, 4));
