@@ -83,6 +83,7 @@ int main(int argc, char **argv)
 {
     fill_closed_streams();
     signal(SIGPIPE, SIG_IGN); // writing tells, and results under -o are written all the same
+    signal(SIGXFSZ, SIG_IGN); // a file that may not grow is an error of the write
     gsl_set_error_handler_off();
     int code = close_output(run(argc, argv));
     cli_reraise();
