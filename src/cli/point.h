@@ -33,7 +33,8 @@ int point_solve(point *p);
 int point_write_text(const point *p);
 int point_write_csv(const point *p); // a line of a quantity a row
 int point_write_json(const point *p, FILE *to);
-const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows); // most 0: all
+// All lines as data (most 0), or the `most` largest of each quantity for reading.
+const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows);
 int point_save(point *p, const char *path); // drawings, lines.csv, point.json into a folder
 const char *point_headline(const point *p);
 double point_reachable_Nm(const point *p); // nearest to an unreachable demand; NAN: not that case

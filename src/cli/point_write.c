@@ -12,7 +12,7 @@ static const tacet_table_column band_columns[] = {
     {.name = "level", .unit = "rms", .decimals = -1},
     {.name = "limit", .unit = "rms", .decimals = -1},
     {.name = "unit", .text = true},
-    {.name = "order", .decimals = 3},
+    {.name = "order", .text = true},
     {.name = "at", .unit = "Hz", .decimals = 1},
     {.name = "of", .text = true},
     {.name = "why", .text = true},
@@ -27,10 +27,18 @@ static const tacet_table_column limit_columns[] = {
     {.name = "of", .text = true},
 };
 static const tacet_table_column line_columns[] = {
+    // data
     {.name = "quantity", .text = true},    {.name = "unit", .text = true},
     {.name = "order", .decimals = 3},      {.name = "frequency_hz", .decimals = 1},
     {.name = "amplitude", .decimals = -1}, {.name = "phase_deg", .decimals = 0},
     {.name = "all_fire", .decimals = -1},
+};
+static const tacet_table_column largest_columns[] = {
+    // text, of the same width
+    {.name = "quantity", .text = true},    {.name = "unit", .text = true},
+    {.name = "order", .text = true},       {.name = "at", .unit = "Hz", .decimals = 1},
+    {.name = "amplitude", .decimals = -1}, {.name = "phase", .unit = "deg", .decimals = 0},
+    {.name = "all fire", .decimals = -1},
 };
 #define N(c) (sizeof(c) / sizeof *(c))
 
@@ -43,19 +51,28 @@ static const char *name_of(const point *p, tacet_quantity_ref q)
     return q.what->name;
 }
 
+// "9/7": a line of the repeat as an order; NULL: none.
+static const char *order_text(const point *p, size_t line)
+{
+    char text[24];
+    if (line == 0) return NULL;
+    return cli_text(p->s->arena, "%s",
+                    cli_fraction((unsigned)line, p->condition.roll->revolutions, text));
+}
+
 static const char *limiting(const point *p)
 {
     const tacet_model *m = p->s->model;
     const tacet_row *r = &p->row;
-    char order[TACET_NUMBER_TEXT], hz[TACET_NUMBER_TEXT];
+    char hz[TACET_NUMBER_TEXT];
     if (r->limiting_limit >= 0) return tacet_model_limit(m, (size_t)r->limiting_limit)->name;
     if (r->limiting_band < 0) return "no line in any band";
-    const tacet_band_result *b = &r->bands[r->limiting_band];
-    return cli_text(p->s->arena, "%s, order %s at %s Hz",
-                    tacet_model_band(m, (size_t)r->limiting_band)->name,
-                    tacet_number_format_short(b->level.leading_order, 4, order),
-                    tacet_number_format_short(
-                        tacet_order_hz(b->level.leading_order, r->speed_rad_per_s), 3, hz));
+    const tacet_band_level *level = &r->bands[r->limiting_band].level;
+    const char *name = tacet_model_band(m, (size_t)r->limiting_band)->name;
+    if (!(level->leading_order > 0)) return name;
+    return cli_text(
+        p->s->arena, "%s, order %s at %s Hz", name, order_text(p, level->leading_line),
+        tacet_number_format_short(tacet_order_hz(level->leading_order, r->speed_rad_per_s), 3, hz));
 }
 
 const char *point_headline(const point *p)
@@ -102,7 +119,7 @@ static int write_bands(const point *p)
         cli_put(&rows, b->level.dispersed);
         cli_put(&rows, b->limit);
         cli_put_text(&rows, band->of.what->unit);
-        cli_put(&rows, order);
+        cli_put_text(&rows, isfinite(order) ? order_text(p, b->level.leading_line) : NULL);
         cli_put(&rows, isfinite(order) ? tacet_order_hz(order, p->row.speed_rad_per_s) : NAN);
         cli_put_text(&rows, name_of(p, band->of));
         cli_put_text(&rows, why ? why(b) : "");
@@ -156,14 +173,17 @@ const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows)
     *rows =
         cli_rows_start(p->s->arena, "lines",
                        most ? "Largest lines (peak), and all cylinders firing beside them" : NULL,
-                       line_columns, N(line_columns), n);
+                       most ? largest_columns : line_columns, N(line_columns), n);
     for (size_t k = 0; k < p->n_quantities; k++) {
         const point_quantity *q = &p->quantity[k];
         for (size_t i = 0; i < q->n; i++) {
             if (!is_shown(q, i, most)) continue;
             cli_put_text(rows, q->name);
             cli_put_text(rows, q->of.what->unit);
-            cli_put(rows, q->order[i]);
+            if (most)
+                cli_put_text(rows, order_text(p, i + 1));
+            else
+                cli_put(rows, q->order[i]);
             cli_put(rows, tacet_order_hz(q->order[i], p->row.speed_rad_per_s));
             cli_put(rows, q->amplitude[i]);
             cli_put(rows, q->phase_deg[i]);
