@@ -73,6 +73,10 @@ typedef struct {
     tacet_limit_result limits[TACET_LIMITS_MOST];
 } tacet_row;
 
+// Of two rows of one candidate, the one that decides: out of reach, then failed, then without
+// verdict, then the smaller margin (no line anywhere: better than any).
+bool tacet_row_worse(const tacet_row *a, const tacet_row *b);
+
 // A pure function of (model, condition, level); the workspace only lends memory. A condition that
 // cannot be reached or solved is a row with that outcome and TACET_OK.
 TACET_USE tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c,

@@ -27,20 +27,6 @@ static tacet_status no_memory(screening *g)
 
 // ---- one candidate at one speed ---------------------------------------------------------------
 
-static int badness(const tacet_row *row)
-{
-    if (row->outcome == TACET_UNREACHABLE) return 3;
-    if (row->outcome == TACET_FAILED) return 2;
-    return row->worst == TACET_NO_VERDICT ? 1 : 0;
-}
-
-static bool is_worse(const tacet_row *a, const tacet_row *b)
-{
-    if (badness(a) != badness(b)) return badness(a) > badness(b);
-    if (isnan(b->worst_margin_db)) return !isnan(a->worst_margin_db);
-    return a->worst_margin_db < b->worst_margin_db;
-}
-
 static void say(screening *g)
 {
     if (g->watch && g->watch->progress)
@@ -76,7 +62,7 @@ static tacet_status solve_all(screening *g, size_t candidate, double speed, samp
         tacet_status status = solve_placement(g, c, p, speed, &row);
         if (status != TACET_OK) return status;
         sample_take(seen, &row);
-        if (cell && (p == 0 || is_worse(&row, &cell->row))) {
+        if (cell && (p == 0 || tacet_row_worse(&row, &cell->row))) {
             cell->candidate = candidate;
             cell->row = row;
             cell->placement = p;

@@ -41,21 +41,6 @@ static int solve_one(point *p, const tacet_roll *roll, tacet_row *row)
     return status == TACET_OK ? CLI_DONE : cli_failed(status, NULL);
 }
 
-// As a screen takes the worst: out of reach, then failed, then without verdict, then by margin.
-static int badness(const tacet_row *row)
-{
-    if (row->outcome == TACET_UNREACHABLE) return 3;
-    if (row->outcome == TACET_FAILED) return 2;
-    return row->worst == TACET_NO_VERDICT ? 1 : 0;
-}
-
-static bool is_worse(const tacet_row *a, const tacet_row *b)
-{
-    if (badness(a) != badness(b)) return badness(a) > badness(b);
-    if (isnan(b->worst_margin_db)) return !isnan(a->worst_margin_db);
-    return a->worst_margin_db < b->worst_margin_db;
-}
-
 // The last one solved is the worst, so that the workspace holds its response.
 static int solve_worst(point *p)
 {
@@ -66,7 +51,7 @@ static int solve_worst(point *p)
         int code = solve_one(p, c->roll[i], &row);
         if (code != CLI_DONE) return code;
         solved = i;
-        if (i > 0 && !is_worse(&row, &p->row)) continue;
+        if (i > 0 && !tacet_row_worse(&row, &p->row)) continue;
         p->row = row;
         p->placement = i;
     }

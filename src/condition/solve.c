@@ -193,9 +193,3 @@ tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c, tacet_l
     status = judge_all(w, levels, out);
     return status == TACET_OK ? TACET_OK : row_failed(m, status, out);
 }
-
-const char *tacet_outcome_text(tacet_outcome o)
-{
-    static const char *const text[] = {"solved", "unreachable", "failed"};
-    return (unsigned)o < sizeof text / sizeof *text ? text[o] : "unknown";
-}
