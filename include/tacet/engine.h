@@ -95,6 +95,8 @@ void tacet_slider_at(const tacet_slider *s, double angle_rad, double *x, double 
 // ----------------------------------------------------------------------------------------------
 typedef struct tacet_engine tacet_engine;
 typedef struct tacet_engine_work tacet_engine_work; // one a thread
+// Copies d; what d points to is borrowed and must outlive the engine. TACET_BAD_INPUT with the
+// first error that the check finds.
 TACET_USE tacet_status tacet_engine_create(const tacet_engine_def *d, tacet_engine **out,
                                            tacet_error *e);
 void tacet_engine_destroy(tacet_engine *en);
@@ -110,12 +112,14 @@ const tacet_slider *tacet_engine_slider(const tacet_engine *en);
 double tacet_engine_mean_inertia(const tacet_engine *en); // <m x'^2> of one cylinder, kg m2
 const tacet_engine_def *tacet_engine_def_of(const tacet_engine *en);
 
-// Fills the cycle table for skip runs up to `longest_run` between two speeds, once; the engine is
-// frozen afterwards and may be shared by threads. Nodes depend on the study alone, never on
-// conditions asked.
+// Fills the cycle table for skip runs up to `longest_run` (at most TACET_ENGINE_RUN_MOST) between
+// two speeds, once; the engine is frozen afterwards and may be shared by threads. Nodes depend on
+// the study alone, never on conditions asked. TACET_NOT_CONVERGED, TACET_NOT_FINITE: a cycle at a
+// node has no possible state; traces: TACET_BAD_INPUT or TACET_OUTSIDE_WORLD with file and column.
 TACET_USE tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_per_s,
                                             double highest_rad_per_s, unsigned longest_run,
                                             tacet_error *e);
+// After prepare; TACET_BAD_INPUT before it.
 TACET_USE tacet_status tacet_engine_work_create(const tacet_engine *en, tacet_engine_work **out);
 void tacet_engine_work_destroy(tacet_engine_work *w);
 
@@ -123,11 +127,11 @@ void tacet_engine_work_destroy(tacet_engine_work *w);
 // --------------------------------------------------------------
 typedef enum {
     TACET_REACH_OK,
-    TACET_REACH_TOO_HIGH,
-    TACET_REACH_TOO_LOW,
-    TACET_REACH_PEAK_PRESSURE,
-    TACET_REACH_SPEED,
-    TACET_REACH_RUN
+    TACET_REACH_TOO_HIGH,      // more than the highest charge (or the peak limit) gives
+    TACET_REACH_TOO_LOW,       // less than the lowest charge gives; with tenths: of the least fire
+    TACET_REACH_PEAK_PRESSURE, // the charge would do, but a cycle would pass the peak limit
+    TACET_REACH_SPEED,         // outside the speeds prepared
+    TACET_REACH_RUN            // a cylinder skips longer in a row than prepared
 } tacet_reach;
 typedef struct {
     bool reachable;
@@ -137,12 +141,19 @@ typedef struct {
     double brake_torque_Nm; // mean over the repeat; the demand, or the nearest reachable when not
     double friction_Nm;     // mean friction torque, positive
     double fuel_kg_per_s, fuel_W; // fuel mass flow and its heat
-    double gross_W, pumping_W, friction_W, wall_heat_W, exhaust_W, blow_by_W, brake_W;
-    double peak_pressure_Pa; // highest of any cycle in the repeat
-    bool peak_in_skip;       // .. and it is of a skipped cycle
+    // gross - pumping - friction = brake; fuel = brake + friction + walls + exhaust + blow-by.
+    double gross_W, pumping_W; // of compression and expansion; minus that of exhaust and intake
+    double friction_W, brake_W;
+    double wall_heat_W;          // the last three: NAN with traces, which do not tell
+    double exhaust_W, blow_by_W; // enthalpy over that of gas from the manifold
+    double peak_pressure_Pa;     // highest of any cycle in the repeat
+    bool peak_in_skip;           // .. and it is of a skipped cycle
 } tacet_duty;
 // Finds the charge at which the mean over the repeat of all gas torques less friction is the
-// demand. Unreachable is a result (TACET_OK with reachable false), never clamped in silence.
+// demand. Unreachable is a result (TACET_OK with reachable false), never clamped in silence: the
+// members then tell of the nearest reachable torque; speed and run: NAN. TACET_BAD_INPUT: the roll
+// is of another engine, or speed or demand are not finite. A pure function of (en, r, speed,
+// demand).
 TACET_USE tacet_status tacet_engine_duty(const tacet_engine *en, const tacet_roll *r,
                                          double speed_rad_per_s, double demand_Nm,
                                          tacet_engine_work *w, tacet_duty *out);
@@ -150,11 +161,13 @@ TACET_USE tacet_status tacet_engine_duty(const tacet_engine *en, const tacet_rol
 // ---- torque
 // ----------------------------------------------------------------------------------------------
 // After a duty: collapses the table to this speed and charge for the windows the roll uses.
+// TACET_BAD_INPUT: no charge was found, or the roll is of another engine.
 TACET_USE tacet_status tacet_engine_load(const tacet_engine *en, const tacet_roll *r,
                                          const tacet_duty *d, double speed_rad_per_s,
                                          tacet_engine_work *w);
 // Gas torque of the cylinder in `slot` at n crank angles (rad from the start of the repeat, any
-// value, taken modulo the repeat), of the last load. Smooth (C1) in angle. N m.
+// value, taken modulo the repeat), of the last load: (p - crankcase pressure) area x'. Smooth (C1)
+// in angle. N m. NAN: no load, or the angle is not finite.
 void tacet_engine_gas_torque(const tacet_engine *en, const tacet_engine_work *w, unsigned slot,
                              size_t n, const double *angle_rad, double *torque_Nm);
 // Cylinder pressure at n crank angles, Pa absolute.
@@ -169,9 +182,10 @@ void tacet_engine_inertia(const tacet_engine *en, unsigned slot, size_t n, const
 void tacet_engine_drive(const tacet_engine *en, const tacet_engine_work *w, unsigned slot, size_t n,
                         const double *angle_rad, double *torque_Nm, double *inertia_kgm2,
                         double *slope_kgm2_per_rad);
-// Complex content of one fired window's gas torque of the last load at n orders, about its own
-// firing angle: integral over the window of T(a) exp(-i order a) da, N m rad. For cycle-to-cycle
-// dispersion.
+// Complex content of a fired cycle's gas torque of the last load at n orders: integral of T(a)
+// exp(-i order a) da, N m rad, from one gas-exchange top to the next, a = 0 at its firing top. Of
+// the fires of the repeat together, each weighted by its tenths of the full charge: summed over
+// fires x tenths / 10 it is their whole torque. For dispersion.
 void tacet_engine_fired_pulse(const tacet_engine *en, const tacet_engine_work *w, size_t n,
                               const double *order, double complex *pulse);
 

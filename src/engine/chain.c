@@ -15,6 +15,7 @@ typedef struct {
     cylinder_half half; // of the last run
     double number[HALF_NUMBERS];
     double peak_up_Pa; // of the half up before a half down
+    unsigned bank;     // first kind of the bank in hand
 } chain;
 
 static bool run(chain *k, cylinder_rule rule, cylinder_gas *gas)
@@ -37,7 +38,7 @@ static bool run(chain *k, cylinder_rule rule, cylinder_gas *gas)
 static bool run_and_store(chain *k, cylinder_rule rule, cylinder_gas *gas, unsigned kind)
 {
     if (!run(k, rule, gas)) return false;
-    k->store(k->who, kind, k->number, k->half.pressure_Pa);
+    k->store(k->who, k->bank + kind, k->number, k->half.pressure_Pa);
     return true;
 }
 
@@ -171,6 +172,43 @@ static tacet_status never_fires(chain *k, const cylinder_gas *after_run, cylinde
     return skip(k, k->h->longest + 1, &gas) ? TACET_OK : TACET_NOT_FINITE;
 }
 
+// Cycles of a cylinder that fires and skips by turns, until its gas repeats: `gas` is that after a
+// skip, at gas-exchange top.
+static tacet_status settle_turns(chain *k, cylinder_gas *gas)
+{
+    for (int i = 0; i < CYCLES_MOST; i++) {
+        cylinder_gas before = *gas;
+        if (!run(k, halves_rule_up_fire(), gas) ||
+            !run(k, halves_rule_down_fire(k->h, false), gas) ||
+            !run(k, halves_rule_up_skip(k->h, 1), gas) ||
+            !run(k, halves_rule_down_skip(k->h, true), gas))
+            return TACET_NOT_FINITE;
+        if (change(gas, &before) < SAME_GAS) return TACET_OK;
+    }
+    return TACET_NOT_CONVERGED;
+}
+
+static tacet_status runs_of_skips(chain *k, cylinder_gas *gas)
+{
+    for (unsigned j = 1; j <= k->h->longest; j++)
+        if (!skip(k, j, gas)) return TACET_NOT_FINITE;
+    return TACET_OK;
+}
+
+// The second bank: runs after a fire that itself followed a skip.
+static tacet_status runs_again(chain *k)
+{
+    cylinder_gas gas = cylinder_fill(k->c, k->c->exhaust_Pa, 1000);
+    tacet_status status = settle_turns(k, &gas);
+    if (status != TACET_OK) return status;
+    if (!run(k, halves_rule_up_fire(), &gas) || !run(k, halves_rule_down_fire(k->h, false), &gas))
+        return TACET_NOT_FINITE;
+    k->bank = halves_bank(k->h);
+    status = runs_of_skips(k, &gas);
+    k->bank = 0;
+    return status;
+}
+
 tacet_status halves_chain(const cylinder *c, const cylinder_run *r, const halves *h,
                           cylinder_gas *start, cylinder_gas *never, halves_store *store, void *who)
 {
@@ -179,7 +217,7 @@ tacet_status halves_chain(const cylinder *c, const cylinder_run *r, const halves
     if (status != TACET_OK) return status;
     cylinder_gas gas = *start;
     if (!fire(&k, 0, &gas)) return TACET_NOT_FINITE;
-    for (unsigned j = 1; j <= h->longest; j++)
-        if (!skip(&k, j, &gas)) return TACET_NOT_FINITE;
-    return never_fires(&k, &gas, never);
+    status = runs_of_skips(&k, &gas);
+    if (status == TACET_OK && h->again && h->longest > 0) status = runs_again(&k);
+    return status == TACET_OK ? never_fires(&k, &gas, never) : status;
 }

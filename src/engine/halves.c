@@ -11,6 +11,7 @@ halves halves_of(int trapped, unsigned longest, bool exhaust_first)
     h.exhaust_first = !h.open && (trapped != TACET_TRAPPED_RESIDUAL || exhaust_first);
     h.fire_next = h.keep;
     h.skip_next = h.exhaust_first;
+    h.again = h.keep;
     return h;
 }
 
@@ -20,9 +21,14 @@ static unsigned of_kind(const halves *h)
     return h->longest + 1;
 }
 
-unsigned halves_count(const halves *h)
+unsigned halves_bank(const halves *h)
 {
     return of_kind(h) * (4u + h->fire_next + h->skip_next);
+}
+
+unsigned halves_count(const halves *h)
+{
+    return halves_bank(h) * (1u + h->again);
 }
 
 unsigned halves_up_fire(const halves *h, unsigned skips)
@@ -49,29 +55,41 @@ unsigned halves_down_skip(const halves *h, unsigned run, bool next_fires)
 
 bool halves_is_up(const halves *h, unsigned kind)
 {
-    return kind < 2 * of_kind(h);
+    return kind % halves_bank(h) < 2 * of_kind(h);
 }
 
 bool halves_is_skip(const halves *h, unsigned kind)
 {
-    return kind >= (3u + h->fire_next) * of_kind(h) ||
-           (kind >= of_kind(h) && kind < 2 * of_kind(h));
+    unsigned of_bank = kind % halves_bank(h) / of_kind(h);
+    return of_bank == 1 || of_bank >= 3u + h->fire_next;
 }
 
-bool halves_of_cycle(const halves *h, tacet_cycle cycle, bool next_fires, unsigned *up,
+// Does the run of skips of cycle c, or before it, begin after a fire that itself followed a skip?
+static bool began_again(const tacet_roll *r, unsigned slot, unsigned c)
+{
+    tacet_cycle here = tacet_roll_cycle(r, slot, c);
+    unsigned back = here.skips + (here.tenths > 0); // to the fire before the run
+    return tacet_roll_cycle(r, slot, c + 2 * r->cycles - back).skips > 0;
+}
+
+bool halves_of_cycle(const halves *h, const tacet_roll *r, unsigned slot, unsigned c, unsigned *up,
                      unsigned *down)
 {
-    unsigned run = cycle.skips;
-    if (cycle.tenths == 0 && run == TACET_SKIPS_FOREVER)
-        run = h->longest + 1;
-    else if (run > h->longest)
-        return false;
+    tacet_cycle cycle = tacet_roll_cycle(r, slot, c);
+    bool next_fires = tacet_roll_cycle(r, slot, c + 1).tenths > 0;
+    bool forever = cycle.tenths == 0 && cycle.skips == TACET_SKIPS_FOREVER;
+    unsigned run = forever ? h->longest + 1 : cycle.skips;
+    if (!forever && run > h->longest) return false;
     if (cycle.tenths > 0) {
         *up = halves_up_fire(h, run);
         *down = halves_down_fire(h, run, next_fires);
     } else {
         *up = halves_up_skip(h, run);
         *down = halves_down_skip(h, run, next_fires);
+    }
+    if (h->again && !forever && run > 0 && began_again(r, slot, c)) {
+        *up += halves_bank(h);
+        *down += halves_bank(h);
     }
     return true;
 }

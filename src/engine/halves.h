@@ -6,8 +6,10 @@
 //   up_skip(j)          the same angles of the j-th skipped cycle in a row
 //   down_fire(k, next)  expansion and exhaust of a fire after k skips; the next fires or skips
 //   down_skip(j, next)
-// j = longest + 1 stands for a cylinder that never fires. The window from firing top to firing top
-// is a half down and the half up after it.
+// j = longest + 1 stands for a cylinder that never fires. With `burnt`, where a skipped cylinder
+// keeps all of the gas of the fire before, there is a second bank of all kinds, for runs that begin
+// after a fire which itself followed a skip (`again`). The window from firing top to firing top is
+// a half down and the half up after it.
 #ifndef ENGINE_HALVES_H
 #define ENGINE_HALVES_H
 #include "cylinder.h"
@@ -22,6 +24,7 @@ typedef struct {
     bool intake;          // the first skipped cycle takes one intake without fuel
     bool keep;            // the exhaust stays shut between a fire and a skip
     bool exhaust_first;   // it opens between a skip and a fire
+    bool again;           // there is a second bank
     bool charge_of_fires; // a skipped cylinder's gas comes from the fire before, not the manifold
 } halves;
 // exhaust_first: overrides what `trapped` says of a cylinder that comes back, for comparison.
@@ -33,8 +36,10 @@ unsigned halves_down_fire(const halves *h, unsigned skips, bool next_fires);
 unsigned halves_down_skip(const halves *h, unsigned run, bool next_fires);
 bool halves_is_up(const halves *h, unsigned kind);
 bool halves_is_skip(const halves *h, unsigned kind);
-// The halves of a cycle of a roll. False: a run longer than the table's.
-bool halves_of_cycle(const halves *h, tacet_cycle cycle, bool next_fires, unsigned *up,
+// First kind of the second bank, to be added to the kinds above.
+unsigned halves_bank(const halves *h);
+// The halves of cycle c of a slot. False: a run longer than the table's.
+bool halves_of_cycle(const halves *h, const tacet_roll *r, unsigned slot, unsigned c, unsigned *up,
                      unsigned *down);
 
 cylinder_rule halves_rule_up_fire(void);

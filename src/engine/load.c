@@ -104,13 +104,10 @@ tacet_status tacet_engine_load(const tacet_engine *en, const tacet_roll *r, cons
     w->cycles = r->cycles;
     for (unsigned slot = 0; slot < r->cylinders; slot++)
         for (unsigned c = 0; c < r->cycles; c++) { // the window after the firing top of cycle c
-            tacet_cycle here = tacet_roll_cycle(r, slot, c),
-                        next = tacet_roll_cycle(r, slot, c + 1),
-                        after = tacet_roll_cycle(r, slot, c + 2);
             unsigned up, down, other;
             const halves *h = &en->table.halves;
-            if (!halves_of_cycle(h, here, next.tenths > 0, &other, &down) ||
-                !halves_of_cycle(h, next, after.tenths > 0, &up, &other))
+            if (!halves_of_cycle(h, r, slot, c, &other, &down) ||
+                !halves_of_cycle(h, r, slot, c + 1, &up, &other))
                 return TACET_BAD_INPUT;
             const engine_wave *a = wave_of(w, down, charge * engine_share(en, r, slot, c), &speed);
             const engine_wave *b =

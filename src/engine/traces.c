@@ -338,6 +338,7 @@ static tacet_status fill(reader *r, tacet_engine *en, unsigned longest)
                           en->def.cycle.fired_trace, loads);
     halves h = halves_of(en->def.skip.trapped, longest, false);
     h.fire_next = h.skip_next = true;
+    h.again = false;
     tacet_status status =
         table_create(&en->table, &h, en->half_degrees + 1, speeds ? speeds : 1, loads);
     if (status != TACET_OK) return tacet_fail(r->e, status, "no memory for the cycle table");

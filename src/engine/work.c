@@ -87,10 +87,7 @@ tacet_reach engine_gather(const tacet_engine *en, const tacet_roll *r, tacet_eng
     for (unsigned slot = 0; slot < r->cylinders; slot++)
         for (unsigned c = 0; c < r->cycles; c++) {
             unsigned up, down;
-            tacet_cycle cycle = tacet_roll_cycle(r, slot, c);
-            bool next = tacet_roll_cycle(r, slot, c + 1).tenths > 0;
-            if (!halves_of_cycle(&en->table.halves, cycle, next, &up, &down))
-                return TACET_REACH_RUN;
+            if (!halves_of_cycle(&en->table.halves, r, slot, c, &up, &down)) return TACET_REACH_RUN;
             engine_group *g = group_of(w, engine_share(en, r, slot, c));
             count(g, up);
             count(g, down);
