@@ -9,8 +9,7 @@
 #include "tacet/pattern.h"
 #pragma GCC visibility push(default)
 
-// ---- definition (sections engine, cycle, skip of a study)
-// ---------------------------------------------
+// ---- definition (sections engine, cycle, skip of a study) -------------------------------------
 #define TACET_ENGINE_CYLINDERS_MOST 32
 #define TACET_ENGINE_RUN_MOST       63 // skipped cycles in a row of one cylinder
 
@@ -82,17 +81,16 @@ tacet_engine_def tacet_engine_default(void);
 // disagree, rod shorter than the throw, ..) as errors and what is unusual as warnings.
 void tacet_engine_def_check(const tacet_engine_def *d, const tacet_reporter *r);
 
-// ---- geometry
-// ----------------------------------------------------------------------------------------- Exact
-// slider-crank with pin offset. x: piston travel from its top, m, of crank angle from piston top.
+// ---- geometry ----------------------------------------------------------------------------------
+// Exact slider-crank with pin offset. x: piston travel from its top, m, of crank angle from piston
+// top.
 typedef struct {
     double crank_m, rod_m, offset_m, bore_m, mass_kg;
 } tacet_slider;
 // x (m), dx (m/rad), ddx (m/rad2) of angle.
 void tacet_slider_at(const tacet_slider *s, double angle_rad, double *x, double *dx, double *ddx);
 
-// ---- thing
-// ----------------------------------------------------------------------------------------------
+// ---- thing ------------------------------------------------------------------------------------
 typedef struct tacet_engine tacet_engine;
 typedef struct tacet_engine_work tacet_engine_work; // one a thread
 // Copies d; what d points to is borrowed and must outlive the engine. TACET_BAD_INPUT with the
@@ -123,8 +121,7 @@ TACET_USE tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_
 TACET_USE tacet_status tacet_engine_work_create(const tacet_engine *en, tacet_engine_work **out);
 void tacet_engine_work_destroy(tacet_engine_work *w);
 
-// ---- duty: what it takes to meet a demand
-// --------------------------------------------------------------
+// ---- duty: what it takes to meet a demand -----------------------------------------------------
 typedef enum {
     TACET_REACH_OK,
     TACET_REACH_TOO_HIGH,      // more than the highest charge (or the peak limit) gives
@@ -158,8 +155,7 @@ TACET_USE tacet_status tacet_engine_duty(const tacet_engine *en, const tacet_rol
                                          double speed_rad_per_s, double demand_Nm,
                                          tacet_engine_work *w, tacet_duty *out);
 
-// ---- torque
-// ----------------------------------------------------------------------------------------------
+// ---- torque -----------------------------------------------------------------------------------
 // After a duty: collapses the table to this speed and charge for the windows the roll uses.
 // TACET_BAD_INPUT: no charge was found, or the roll is of another engine.
 TACET_USE tacet_status tacet_engine_load(const tacet_engine *en, const tacet_roll *r,

@@ -229,6 +229,83 @@ static void test_cycle_wall_heat(void **state)
     cylinder_clear(&fine);
 }
 
+// Wall heat with the exhaust open and the enthalpy that leaves, a second way: from the pressures at
+// whole degrees, m cp dT = V dp - dQ (what leaves does not change the temperature of what stays),
+// m = pV/(RT), by Heun's method; C1 = 6.18 from the opening on.
+static void test_cycle_exhaust(void **state)
+{
+    (void)state;
+    cylinder c = made(12.5, 1.38, 0.08e-3, false, 1);
+    c.blow_by_m2 = 0;
+    cylinder_run run = running(1400, 60e3, 8, 25);
+    cylinder_gas gas = cylinder_fill(&c, 20e5, 1500); // no fuel: hot gas at top, as after a burn
+    cylinder_half down;
+    double mass = gas.mass_kg, sp = 2 * 0.130 * 1400 / 60, T = 0, heat = 0, enthalpy = 0, V[361];
+    assert_true(cylinder_run_half(&c, &run, (cylinder_rule){.open = true}, &gas, &down));
+    for (int i = 0; i <= 360; i++) {
+        double x, dx, ddx;
+        tacet_slider_at(&c.slider, i * DEG, &x, &dx, &ddx);
+        V[i] = c.clearance_m3 + c.piston_m2 * x;
+    }
+    for (int i = 0; i < 360; i++) {
+        const double *p = down.pressure_Pa;
+        double slope[2], rate[2], before = T;
+        for (int k = 0; k < 2; k++) {
+            double at = i + k < 140 || (i + k == 140 && k == 1) ? p[i + k] * V[i + k] / (mass * 287)
+                        : k                                     ? T + slope[0]
+                                                                : T;
+            if (i == 140 && k == 0) at = T = p[i] * V[i] / (mass * 287), before = T;
+            double w = (i < 140 ? 2.28 : 6.18) * sp, area = 2 * c.piston_m2;
+            area += M_PI * 0.108 * V[i + k] / c.piston_m2;
+            rate[k] = gas_woschni(0.108, p[i + k], at, w) * area * (at - 430) / (1400 * RPM) * DEG;
+            double cp = 287 * gas_gamma(&c.gas, at) / (gas_gamma(&c.gas, at) - 1);
+            double m = p[i + k] * V[i + k] / (287 * at), middle = (V[i] + V[i + 1]) / 2;
+            slope[k] = (middle * (p[i + 1] - p[i]) - rate[k]) / (m * cp);
+        }
+        heat += (rate[0] + rate[1]) / 2;
+        if (i < 140) continue;
+        T += (slope[0] + slope[1]) / 2;
+        double out = p[i] * V[i] / (287 * before) - p[i + 1] * V[i + 1] / (287 * T);
+        enthalpy += out * (gas_h(&c.gas, (before + T) / 2) - gas_h(&c.gas, 320));
+    }
+    assert_near(T, gas_T(&c.gas, gas.energy_J / gas.mass_kg), 0, 1e-3);
+    assert_near(down.wall_J, heat, 0, 2e-3);
+    assert_near(down.valve_J, enthalpy, 0, 2e-3);
+    cylinder_clear(&c);
+}
+
+// Flow past the rings a second way: the orifice law on the pressures at whole degrees of a shut
+// cylinder, out while above crankcase pressure and in, at wall temperature, while below.
+static void test_cycle_rings(void **state)
+{
+    (void)state;
+    cylinder c = made(12.5, 1.38, 0.08e-3, false, 1);
+    cylinder_run run = running(1400, 60e3, 8, 25);
+    for (double p0 = 150e3; p0 < 4e6; p0 *= 5) {
+        cylinder_gas gas = cylinder_fill(&c, p0, 600), start = gas;
+        cylinder_half half;
+        assert_true(cylinder_run_half(&c, &run, shut_up, &gas, &half));
+        double mass = start.mass_kg, joule = 0, out = 0, in = 0, h_in = gas_h(&c.gas, 320);
+        for (int i = 0; i < 360; i++) { // midpoints
+            double x, dx, ddx, p = (half.pressure_Pa[i] + half.pressure_Pa[i + 1]) / 2;
+            tacet_slider_at(&c.slider, (i + 0.5) * DEG, &x, &dx, &ddx);
+            double T = p * (c.clearance_m3 + c.piston_m2 * x) / (mass * 287),
+                   time = DEG / (1400 * RPM);
+            bool above = p > 100e3;
+            double kg =
+                0.8e-6 * time *
+                (above ? gas_orifice(&c.gas, p, T, 100e3) : -gas_orifice(&c.gas, 100e3, 430, p));
+            mass -= kg;
+            joule += kg * (gas_h(&c.gas, above ? T : 430) - h_in);
+            *(above ? &out : &in) += fabs(kg);
+        }
+        assert_near(gas.mass_kg - start.mass_kg, in - out, 5e-3 * (in + out), 0);
+        assert_near(half.ring_J, joule, 0.01 * fabs(joule) + 2e-3, 0);
+        assert_true(out > 0 && (in > 0 || p0 > 2e6));
+    }
+    cylinder_clear(&c);
+}
+
 // What is in the cylinder at the end is what flowed: mass by the gas law, energy by temperature.
 static void test_cycle_state(void **state)
 {
@@ -380,6 +457,7 @@ int main(void)
         cmocka_unit_test(test_cycle_polytrope_e7), cmocka_unit_test(test_cycle_returns_its_work),
         cmocka_unit_test(test_cycle_otto_e5),      cmocka_unit_test(test_cycle_step),
         cmocka_unit_test(test_cycle_work_e18),     cmocka_unit_test(test_cycle_wall_heat),
+        cmocka_unit_test(test_cycle_exhaust),      cmocka_unit_test(test_cycle_rings),
         cmocka_unit_test(test_cycle_state),        cmocka_unit_test(test_cycle_intake),
         cmocka_unit_test(test_cycle_never_fires),  cmocka_unit_test(test_cycle_energy),
         cmocka_unit_test(test_cycle_trapped),
