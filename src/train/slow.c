@@ -12,8 +12,8 @@
 #include <math.h>
 #include <string.h>
 
-#define LOW_ORDER   12 // modes up to this order of the speed
-#define SLOW_MOST   4
+#define LOW_ORDER   18 // modes up to this order of the speed
+#define SLOW_MOST   SLOW_MODES_MOST
 #define STATES      (2 * SLOW_MOST)
 #define COLUMNS     (STATES + 1) // and a constant load torque
 #define OVERSAMPLED 16           // samples of K per period of the highest line that matters
@@ -208,7 +208,7 @@ void slow_correct(tacet_train_work *w, double speed, unsigned revolutions, size_
     slow s = {.w = w, .m = &w->steady.model, .shape = w->steady.scratch};
     s.samples = tacet_transform_samples(grid);
     s.step_s = 2 * M_PI / base / (double)s.samples;
-    double *memory = w->steady.sample;
+    double *memory = w->steady.coupling;
     for (size_t r = 0; r < SLOW_MOST; r++)
         for (size_t q = r; q < SLOW_MOST; q++, memory += s.samples)
             s.coupling[r][q] = memory;

@@ -67,9 +67,11 @@ bool steady_reserve(tacet_train_work *w)
     s->right = gsl_vector_alloc(n);
     s->solution = gsl_vector_alloc(n);
     s->sample = malloc(channels * w->most_samples * sizeof(double));
+    s->coupling =
+        malloc(SLOW_MODES_MOST * (SLOW_MODES_MOST + 1) / 2 * w->most_samples * sizeof(double));
     return s->step && s->evolve && s->state && s->start && s->defect && s->scale && s->mean &&
            s->monodromy && s->matrix && s->scratch && s->newton && s->pivots && s->right &&
-           s->solution && s->sample;
+           s->solution && s->sample && s->coupling;
 }
 
 void steady_release(tacet_train_work *w)
@@ -85,6 +87,7 @@ void steady_release(tacet_train_work *w)
     free(s->matrix);
     free(s->scratch);
     free(s->sample);
+    free(s->coupling);
 }
 
 // ---- start ------------------------------------------------------------------------------------

@@ -108,9 +108,12 @@ tacet_status periodic_check(const tacet_train *t, double speed, size_t n_throws,
     if (how->revolutions == 0 || how->n_lines == 0 || how->n_lines > w->most_lines)
         return TACET_BAD_INPUT;
     if (!(how->tolerance >= 0) || how->most_passes == 0) return TACET_BAD_INPUT;
-    for (size_t i = 0; i < n_throws; i++)
+    for (size_t i = 0; i < n_throws; i++) {
         if (throw_node[i] >= t->n || fabs(t->ratio[throw_node[i]] - 1) > 1e-12)
             return TACET_BAD_INPUT;
+        for (size_t k = 0; k < i; k++) // the reciprocating share of a node is known as a whole
+            if (throw_node[k] == throw_node[i]) return TACET_BAD_INPUT;
+    }
     return TACET_OK;
 }
 

@@ -27,6 +27,7 @@ typedef struct {
 #define TRANSFORM_FIRST 4  // log2 of the shortest transform
 #define TRANSFORM_KINDS 20 // up to 2^23 samples
 #define KRYLOV_MOST     12
+#define SLOW_MODES_MOST 6
 
 // Of ripple: the throws' angles and torques, and a linear solver for the angle common to all.
 typedef struct {
@@ -52,7 +53,8 @@ typedef struct {
     gsl_matrix *newton;
     gsl_permutation *pivots;
     gsl_vector *right, *solution;
-    double *sample; // [(n + links + 1) * most_samples]: speeds, link torques, flywheel's angle
+    double *coupling; // of slow modes, [SLOW_MODES_MOST (SLOW_MODES_MOST + 1) / 2 * most_samples]
+    double *sample;   // [(n + links + 1) * most_samples]: speeds, link torques, flywheel's angle
 } steady_work;
 
 struct tacet_train_work {

@@ -131,12 +131,13 @@ tacet_status pulses_drive(const void *who, size_t throw_index, size_t n, const d
                           double *torque_Nm, double *inertia_kgm2, double *slope_kgm2_per_rad)
 {
     const pulses *p = who;
-    double m = p->massless ? 0 : p->mass_kg, r = p->crank_m, l2 = p->rod_m * p->rod_m;
+    double m = p->mass_kg, r = p->crank_m, l2 = p->rod_m * p->rod_m;
     for (size_t k = 0; k < n; k++) {
         torque_Nm[k] = inertia_kgm2[k] = slope_kgm2_per_rad[k] = 0;
         for (unsigned i = 0; i < p->throw_slots[throw_index]; i++) {
             unsigned slot = p->throw_slot[throw_index][i];
             torque_Nm[k] += gas_torque(p, slot, angle_rad[k]);
+            if (p->massless) continue;
             double a = angle_rad[k] - slot * (4 * M_PI / p->cylinders), sn = sin(a), cs = cos(a);
             double q2 = l2 - r * r * sn * sn, q = sqrt(q2), v = r * sn * (1 + r * cs / q);
             double dv = r * cs + r * r * (cs * cs - sn * sn) / q +

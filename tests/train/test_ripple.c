@@ -337,14 +337,17 @@ static void test_what_goes_wrong(void **state)
     engine_drop(&e);
 }
 
-// Torque that follows angle needs a throw that turns with the crank.
+// Torque that follows angle needs a throw that turns with the crank, and one drive a node.
 static void test_geared_throw_is_refused(void **state)
 {
     (void)state;
     engine e;
     pulses_eight(&e.p, "x", 300);
     engine_new(&e, brush_truck());
-    const size_t geared[] = {11};
+    const size_t geared[] = {11}, twice[] = {2, 3, 2};
+    assert_int_equal(tacet_train_ripple(e.t, 100, 3, twice, pulses_drive, &e.p, &e.how, e.w, &e.m,
+                                        e.torque, &e.note),
+                     TACET_BAD_INPUT);
     assert_int_equal(tacet_train_ripple(e.t, 100, 1, geared, pulses_drive, &e.p, &e.how, e.w, &e.m,
                                         e.torque, &e.note),
                      TACET_BAD_INPUT);
