@@ -372,5 +372,7 @@ bool cylinder_run_half(const cylinder *c, const cylinder_run *r, cylinder_rule r
         memcpy(a, end, sizeof a);
         if (i + 1 == bottom) out->work_J[0] = a[WORK];
     }
+    if (rule.up && s.fuel_J > 0 && s.burn_speed_per_Pa == 0) // it burns from top on or later
+        burn_begins(&s, c->place + 2 * (size_t)n, a, n * h, gas);
     return finish(&s, a, c->place + 2 * (size_t)n, n * h, gas, out);
 }

@@ -306,6 +306,26 @@ static void test_cycle_rings(void **state)
     cylinder_clear(&c);
 }
 
+// A burn that starts at top or after it has the motored line of its own compression as well:
+// exponent a little below gamma, and wall heat that goes on evenly as the start passes top.
+static void test_cycle_late_burn(void **state)
+{
+    (void)state;
+    cylinder c = made(12.5, 1.38, 0.08e-3, false, 1);
+    double wall[12];
+    for (int i = 0; i < 12; i++) {
+        cylinder_run run = running(1400, 90e3, 12.2 + i, 15); // starts 3.5 before to 7.5 after top
+        cylinder_gas gas = cylinder_fill(&c, 112e3, 1000);
+        cylinder_half up, down;
+        settle(&c, &run, &gas, &up, &down);
+        assert_true(gas.exponent > 1.28 && gas.exponent < 1.38);
+        wall[i] = (up.wall_J + down.wall_J) / up.fuel_J;
+        if (i > 0) assert_true(wall[i] < wall[i - 1]);
+        if (i > 1) assert_near(wall[i - 2] - 2 * wall[i - 1] + wall[i], 0, 5e-4, 0);
+    }
+    cylinder_clear(&c);
+}
+
 // What is in the cylinder at the end is what flowed: mass by the gas law, energy by temperature.
 static void test_cycle_state(void **state)
 {
@@ -460,7 +480,7 @@ int main(void)
         cmocka_unit_test(test_cycle_exhaust),      cmocka_unit_test(test_cycle_rings),
         cmocka_unit_test(test_cycle_state),        cmocka_unit_test(test_cycle_intake),
         cmocka_unit_test(test_cycle_never_fires),  cmocka_unit_test(test_cycle_energy),
-        cmocka_unit_test(test_cycle_trapped),
+        cmocka_unit_test(test_cycle_trapped),      cmocka_unit_test(test_cycle_late_burn),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
