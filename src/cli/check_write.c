@@ -12,6 +12,11 @@ static const char *number(double value, int digits, char out[TACET_NUMBER_TEXT])
     return tacet_number_format_short(value, digits, out);
 }
 
+static const char *plural(size_t n)
+{
+    return n == 1 ? "" : "s";
+}
+
 static void add_revolutions(check_model *m, unsigned revolutions)
 {
     size_t i = m->n_revolutions;
@@ -54,11 +59,11 @@ static void write_engine(const check_model *m)
     const tacet_engine_def *d = tacet_engine_def_of(en);
     char a[TACET_NUMBER_TEXT], b[TACET_NUMBER_TEXT], c[TACET_NUMBER_TEXT], e[TACET_NUMBER_TEXT],
         f[TACET_NUMBER_TEXT];
-    printf(LABEL "%u cylinders, %u strokes, %s L: bore %s, stroke %s, rod %s mm, ratio %s\n",
-           "engine", tacet_engine_cylinders(en), tacet_engine_strokes(en),
-           number(tacet_engine_displacement(en) * 1e3, 4, a), number(d->bore_m * 1e3, 5, b),
-           number(d->stroke_m * 1e3, 5, c), number(d->rod_length_m * 1e3, 5, e),
-           number(d->compression_ratio, 4, f));
+    printf(LABEL "%u cylinder%s, %u strokes, %s L: bore %s, stroke %s, rod %s mm, ratio %s\n",
+           "engine", tacet_engine_cylinders(en), plural(tacet_engine_cylinders(en)),
+           tacet_engine_strokes(en), number(tacet_engine_displacement(en) * 1e3, 4, a),
+           number(d->bore_m * 1e3, 5, b), number(d->stroke_m * 1e3, 5, c),
+           number(d->rod_length_m * 1e3, 5, e), number(d->compression_ratio, 4, f));
     printf(LABEL, "firing");
     for (unsigned slot = 0; slot < tacet_engine_cylinders(en); slot++)
         printf("%s%u at %s", slot ? ", " : "cylinder ", tacet_engine_number(en, slot),
@@ -72,9 +77,9 @@ static void write_train(const check_model *m)
     const double *hz = tacet_model_mode_hz(m->s->model);
     char a[TACET_NUMBER_TEXT], b[TACET_NUMBER_TEXT], c[TACET_NUMBER_TEXT];
     printf(LABEL
-           "%zu nodes, %zu links, brake torque at %s, load at %s (turns %s times the crank)\n",
-           "train", tacet_train_nodes(t), tacet_train_links(t),
-           tacet_train_node_name(t, tacet_train_flywheel(t)),
+           "%zu node%s, %zu link%s, brake torque at %s, load at %s (turns %s times the crank)\n",
+           "train", tacet_train_nodes(t), plural(tacet_train_nodes(t)), tacet_train_links(t),
+           plural(tacet_train_links(t)), tacet_train_node_name(t, tacet_train_flywheel(t)),
            tacet_train_node_name(t, tacet_train_load(t)),
            number(tacet_train_node_ratio(t, tacet_train_load(t)), 4, a));
     printf(LABEL "%s kg m2 at the crank; %s without the reciprocating share of %s\n", "inertia",
@@ -83,7 +88,7 @@ static void write_train(const check_model *m)
     printf(LABEL, "modes");
     for (size_t i = 1; i < tacet_train_nodes(t); i++)
         printf("%s%s", i > 1 ? ", " : "", number(hz[i], 4, a));
-    printf(" Hz\n");
+    printf("%s\n", tacet_train_nodes(t) > 1 ? " Hz" : "none: one node alone does not twist");
 }
 
 // The lowest orders that meet a mode; how many do.
@@ -141,8 +146,10 @@ static void write_judging(const check_model *m)
         const tacet_limit *limit = tacet_model_limit(model, i);
         printf(LABEL, i ? "" : "limits");
         tacet_write_clean(stdout, limit->name);
-        printf(" %s ", number(limit->value, 5, a));
-        tacet_write_clean(stdout, limit->of.what->unit ? limit->of.what->unit : "");
+        const char *unit = limit->of.what->unit;
+        bool plain = !unit || strcmp(unit, "1") == 0;
+        printf(" %s%s", number(limit->value, 5, a), plain ? "" : " ");
+        tacet_write_clean(stdout, plain ? "" : unit);
         printf("\n");
     }
 }
@@ -153,10 +160,13 @@ static void write_screen(const check_model *m)
     char a[TACET_NUMBER_TEXT], b[TACET_NUMBER_TEXT], c[TACET_NUMBER_TEXT], d[TACET_NUMBER_TEXT];
     double rpm = tacet_unit_factor("rpm");
     cli_screened_rpm(m->s, range);
-    printf(LABEL "%zu patterns at %zu speeds, %s-%s rpm, %s to %s N m", "screen",
-           m->n_candidates - m->n_refused, m->s->study->screen.n_speeds, number(range[0], 6, a),
-           number(range[1], 6, b), number(tacet_model_demand(m->s->model, range[0] * rpm), 4, c),
-           number(tacet_model_demand(m->s->model, range[1] * rpm), 4, d));
+    size_t patterns = m->n_candidates - m->n_refused, speeds = m->s->study->screen.n_speeds;
+    number(tacet_model_demand(m->s->model, range[0] * rpm), 4, c);
+    number(tacet_model_demand(m->s->model, range[1] * rpm), 4, d);
+    bool level = strcmp(c, d) == 0;
+    printf(LABEL "%zu pattern%s at %zu speed%s, %s-%s rpm, %s%s%s N m", "screen", patterns,
+           plural(patterns), speeds, plural(speeds), number(range[0], 6, a), number(range[1], 6, b),
+           c, level ? "" : " to ", level ? "" : d);
     if (m->n_refused) printf("; %zu more cannot run on this engine", m->n_refused);
     printf("\n");
 }

@@ -20,6 +20,8 @@ static int run(const cli_call *call)
 {
     cli_session s;
     const char *node = cli_value(call, "response");
+    if (!node && cli_given(call, "frequencies"))
+        return cli_wrong("--frequencies needs --response NODE; modes have their own frequencies");
     int code = cli_open(call->operand[0], CLI_ASSEMBLED, &s);
     if (code == CLI_DONE) code = node ? cli_response(call, &s, node) : solve(call, &s);
     cli_close(&s);

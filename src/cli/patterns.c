@@ -67,7 +67,7 @@ static const cli_option options[] = {
     {"strokes", 0, "4|2", "4", "of the engine"},
     {"maker", 0, "NAME", "even",
      "even, sigma-delta-1, sigma-delta-2, cylinders, necklaces or book"},
-    {"length", 0, "LETTERS", "1", "of a modulator's word"},
+    {"length", 0, "LETTERS", NULL, "of a modulator's word (for K/L: L)"},
     {"dither", 0, "SHARE", "0", "of a modulator, share of one step, from 0 to 1"},
     {"seed", 0, "NUMBER", "1", "of the dither"},
     {"longest-run", 0, "N", "0", "skips in a row that a necklace may have, 0: any number"},
@@ -81,7 +81,8 @@ const cli_command cli_patterns_command = {
     .doc = "words of a density or a study: placements, repeat, runs, spectrum",
     .about = "In a word x fires, . skips and 1..9 fires at that many tenths of the charge. "
              "Placements are the\nrotations that load the crank differently. The repeat is the "
-             "stretch after which pattern and\ncylinders line up again.\n",
+             "stretch after which pattern and\ncylinders line up again. A book is a text file "
+             "named *.words: on each line a word, blanks, a\nname, and after # a comment.\n",
     .examples = examples,
     .options = options,
     .least_operands = 1,

@@ -35,6 +35,19 @@ static int read_positions(const char *text, tacet_arena *a, tacet_maker_def *d)
     return CLI_DONE;
 }
 
+// An option that would change nothing is a mistake in the call.
+static int refuse_idle(const cli_call *call, const char *maker, bool modulator)
+{
+    static const char *const of_modulators[] = {"length", "dither", "seed"};
+    for (size_t i = 0; !modulator && i < 3; i++)
+        if (cli_given(call, of_modulators[i]))
+            return cli_wrong("--%s is for --maker sigma-delta-1 and sigma-delta-2; this is %s",
+                             of_modulators[i], maker);
+    if (cli_given(call, "longest-run") && strcmp(maker, "necklaces") != 0)
+        return cli_wrong("--longest-run is for --maker necklaces; this is %s", maker);
+    return CLI_DONE;
+}
+
 static int make(const cli_call *call, const char *text, tacet_arena *a, tacet_maker_def *d,
                 tacet_words *out)
 {
@@ -57,14 +70,18 @@ static int make(const cli_call *call, const char *text, tacet_arena *a, tacet_ma
         code = modulator
                    ? cli_wrong("'%s': a density k/L or a number from 0 to 1 is allowed", text)
                    : cli_wrong("'%s' is no density k/L (1 <= k <= L <= %d), no word (x fires, "
-                               ". skips, 1..9 tenths of the charge) and no book (*.words)",
-                               text, TACET_PATTERN_LONGEST);
+                               ". skips, 1..9 tenths of the charge) and no book (*.words)%s",
+                               text, TACET_PATTERN_LONGEST,
+                               tacet_number_parse(text, &d->density)
+                                   ? "; a plain number needs --maker sigma-delta-1 or -2"
+                                   : "");
     if (code == CLI_DONE && modulator) {
         if (!fraction && !cli_given(call, "length"))
             return cli_wrong("a density of %s needs --length LETTERS, the length of its word",
                              text);
         if (cli_given(call, "length")) code = count_option(call, "length", 1, 64, &d->length);
     }
+    if (code == CLI_DONE) code = refuse_idle(call, names[which], modulator);
     if (code != CLI_DONE) return code;
     tacet_status status = tacet_makers()[which]->make(d, a, out, &e);
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);

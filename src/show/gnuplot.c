@@ -189,8 +189,10 @@ tacet_status gnuplot_run(const gnuplot_job *job, tacet_error *e)
     if (bad) {
         close(ends[0]);
         return bad == ENOENT
-                   ? tacet_fail(e, TACET_OUTSIDE_WORLD,
-                                "drawings need gnuplot, which is not installed")
+                   ? tacet_fail(
+                         e, TACET_OUTSIDE_WORLD,
+                         "drawings need gnuplot, which is not installed; install it, or ask for "
+                         "no drawings")
                    : tacet_fail(e, TACET_OUTSIDE_WORLD, "cannot start gnuplot: %s", strerror(bad));
     }
     int result = 0;

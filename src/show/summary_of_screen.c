@@ -142,7 +142,9 @@ static void what_limits(summary *y)
         add(y, &text, screen_text(y->a, "%s %s (%zu)", k ? "," : "", name, count[best]));
         count[best] = 0;
     }
-    add(y, &text, screen_text(y->a, " of the %zu conditions that are near or over.", n));
+    add(y, &text,
+        n == 1 ? " of the one condition that is near or over."
+               : screen_text(y->a, " of the %zu conditions that are near or over.", n));
     say(y, text);
 }
 
@@ -159,7 +161,8 @@ static void what_lacks(summary *y)
         say(y, screen_text(y->a, "At %zu of %zu speeds nothing is clear, all cylinders included.",
                            uncovered, y->s->n_ranks));
     if (y->s->n_failed)
-        say(y, screen_text(y->a, "%zu conditions could not be solved.", y->s->n_failed));
+        say(y, screen_text(y->a, "%zu condition%s could not be solved; levels.csv says why.",
+                           y->s->n_failed, y->s->n_failed == 1 ? "" : "s"));
     if (unsettled)
         say(y, screen_text(y->a, "%zu of %zu checks by the second solver did not settle.",
                            unsettled, y->s->n_referee));
@@ -183,10 +186,11 @@ static void what_agrees(summary *y)
     }
     if (n == 0) return;
     snprintf(a, sizeof a, "%.0e", same);
-    say(y, screen_text(y->a,
-                       "Solvers agree on the %zu worst conditions: same model within %s, fast path "
-                       "against the full march within %s dB.",
-                       n, a, text_fixed(full, 3, b)));
+    say(y,
+        screen_text(y->a,
+                    "Solvers agree on the %zu worst condition%s: same model within %s, fast path "
+                    "against the full march within %s dB.",
+                    n, n == 1 ? "" : "s", a, text_fixed(full, 3, b)));
 }
 
 tacet_status tacet_screen_summary(const tacet_model *m, const tacet_screen *s, tacet_arena *a,

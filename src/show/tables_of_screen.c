@@ -1,6 +1,7 @@
 // The tables of a screen, as plain data.
 #include "show/screen.h"
 #include <math.h>
+#include <string.h>
 
 #define N_COLUMNS(c) (sizeof(c) / sizeof *(c))
 
@@ -86,7 +87,7 @@ static const tacet_table_column summary_columns[] = {
     {"near", NULL, false, 0, false, NULL},
     {"over", NULL, false, 0, false, NULL},
     {"unreachable", NULL, false, 0, false, "out of reach"},
-    {"no_verdict", NULL, false, 0, true, NULL},
+    {"no_verdict", NULL, false, 0, true, "no verdict"},
     {"best_at", NULL, false, 0, true, NULL},
     {"clear_from_rpm", "rpm", false, -1, false, "from"},
     {"clear_to_rpm", "rpm", false, -1, false, "to"},
@@ -97,6 +98,8 @@ static const tacet_table_column summary_columns[] = {
     {"recommended", NULL, true, 0, true, NULL},
     {"note", NULL, true, 0, false, NULL},
 };
+
+#define NO_VERDICT 9 // its place among the columns
 
 static const char *limiting_name(const tacet_model *m, const tacet_candidate_note *note)
 {
@@ -134,9 +137,15 @@ tacet_status screen_summary_table(const tacet_model *m, const tacet_screen *s, t
                                   tacet_table *out)
 {
     table_row row;
-    tacet_status status =
-        table_start(a, "summary", "Candidates, by number of grid speeds", summary_columns,
-                    N_COLUMNS(summary_columns), s->n_candidates, out, &row);
+    size_t n = N_COLUMNS(summary_columns), none = 0;
+    tacet_table_column *columns = tacet_arena_alloc(a, sizeof summary_columns);
+    if (!columns) return TACET_NO_MEMORY;
+    memcpy(columns, summary_columns, sizeof summary_columns);
+    for (size_t i = 0; i < s->n_candidates; i++)
+        none += !s->candidates[s->notes[i].candidate].refused && s->notes[i].n_none > 0;
+    columns[NO_VERDICT].data_only = none == 0; // a column of zeros says nothing to a reader
+    tacet_status status = table_start(a, "summary", "Candidates, by number of grid speeds", columns,
+                                      n, s->n_candidates, out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_candidates; i++)
         summary_row(m, &s->candidates[s->notes[i].candidate], &s->notes[i], &row);
     return status;
@@ -241,8 +250,8 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
     static const char *const open[] = {"", "below", "above", "both ends"};
     table_row row;
     tacet_status status =
-        table_start(a, "no-go", "No-go ranges (open: runs on past what was screened)",
-                    no_go_columns, N_COLUMNS(no_go_columns), s->n_no_go, out, &row);
+        table_start(a, "no-go", "No-go ranges (open: beyond it nothing was judged)", no_go_columns,
+                    N_COLUMNS(no_go_columns), s->n_no_go, out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_no_go; i++) {
         const tacet_no_go *g = &s->no_go[i];
         put_text(&row, s->candidates[g->candidate].name);

@@ -134,7 +134,7 @@ static void test_summary_lines(void **state)
         "At 1 of 5 speeds nothing is clear, all cylinders included.",
         "1 of 2 checks by the second solver did not settle.",
         "1 of 4 candidates were not screened; the table says why.",
-        "Solvers agree on the 1 worst conditions: same model within 2e-09, fast path against the "
+        "Solvers agree on the 1 worst condition: same model within 2e-09, fast path against the "
         "full march within 0.042 dB."};
     assert_int_equal(n, sizeof expected / sizeof *expected);
     for (size_t i = 0; i < n; i++)
