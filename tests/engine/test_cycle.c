@@ -306,6 +306,31 @@ static void test_cycle_rings(void **state)
     cylinder_clear(&c);
 }
 
+// Compression after the inlet has shut, a second way: from the pressures at whole degrees, with
+// C1 = 2.28 again.
+static void test_cycle_compression(void **state)
+{
+    (void)state;
+    cylinder c = made(12.5, 1.38, 0.08e-3, false, 1);
+    c.blow_by_m2 = 0;
+    cylinder_run run = running(1400, 60e3, 8, 25);
+    cylinder_gas gas = cylinder_fill(&c, 112e3, 900);
+    cylinder_half up;
+    assert_true(cylinder_run_half(&c, &run, (cylinder_rule){.up = true, .open = true}, &gas, &up));
+    double mass = gas.mass_kg, sp = 2 * 0.130 * 1400 / 60, heat = 0, first = 0;
+    for (int i = 180; i <= 360; i++) {
+        double x, dx, ddx;
+        tacet_slider_at(&c.slider, i * DEG, &x, &dx, &ddx);
+        double V = c.clearance_m3 + c.piston_m2 * x, T = up.pressure_Pa[i] * V / (mass * 287);
+        double area = 2 * c.piston_m2 + M_PI * 0.108 * V / c.piston_m2;
+        double h = gas_woschni(0.108, up.pressure_Pa[i], T, 2.28 * sp);
+        heat += h * area * (T - 430) / (1400 * RPM) * DEG * (i % 180 ? 1 : 0.5);
+        if (i == 180) first = mass * gas_u(&c.gas, T);
+    }
+    assert_near(first - up.work_J[1] - gas.energy_J, heat, 2e-3 * fabs(heat) + 1e-3, 0);
+    cylinder_clear(&c);
+}
+
 // A burn that starts at top or after it has the motored line of its own compression as well:
 // exponent a little below gamma, and wall heat that goes on evenly as the start passes top.
 static void test_cycle_late_burn(void **state)
@@ -481,6 +506,7 @@ int main(void)
         cmocka_unit_test(test_cycle_state),        cmocka_unit_test(test_cycle_intake),
         cmocka_unit_test(test_cycle_never_fires),  cmocka_unit_test(test_cycle_energy),
         cmocka_unit_test(test_cycle_trapped),      cmocka_unit_test(test_cycle_late_burn),
+        cmocka_unit_test(test_cycle_compression),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -85,6 +85,37 @@ static void test_torque_angles(void **state)
     engine_cleared(&p);
 }
 
+// Uneven firing: a cylinder fires at the sum of the intervals before it, and equal cylinders that
+// all fire do the same from there on, so the work of the repeat stays what it is.
+static void test_torque_uneven(void **state)
+{
+    (void)state;
+    static const double interval[] = {90, 150, 100, 140, 110, 130},
+                        at[] = {0, 90, 240, 340, 480, 590};
+    double rad[6];
+    for (int i = 0; i < 6; i++)
+        rad[i] = interval[i] * DEG;
+    tacet_engine_def d = demo_six();
+    engine_pair even = engine_made(&d, 1200, 1300, 0);
+    d.firing_intervals_rad = rad, d.n_intervals = 6;
+    engine_pair p = engine_made(&d, 1200, 1300, 0);
+    tacet_duty q = duty_of(&p, "x", 1250, 300), r = duty_of(&even, "x", 1250, 300);
+    assert_near(q.charge_Pa, r.charge_Pa, 0, 1e-12);
+    tacet_roll *all = roll_of("x", 6);
+    assert_int_equal(tacet_engine_load(p.engine, all, &q, 1250 * RPM, p.work), TACET_OK);
+    for (unsigned slot = 0; slot < 6; slot++) {
+        assert_near(tacet_engine_firing_angle(p.engine, slot), at[slot] * DEG, 1e-12, 0);
+        for (double a = 0.1; a < 4 * M_PI; a += 0.37) {
+            double own = torque_at(&p, slot, at[slot] * DEG + a);
+            assert_near(own, torque_at(&p, 0, a), 1e-6, 1e-9);
+        }
+        assert_true(torque_at(&p, slot, (at[slot] + 25) * DEG) > 500);
+    }
+    tacet_roll_destroy(all);
+    engine_cleared(&even);
+    engine_cleared(&p);
+}
+
 // Value and slope are continuous over whole degrees and over both tops, for every kind of trapped
 // gas and with tenths, whose pressures differ most over the gas-exchange top.
 static void test_torque_is_smooth(void **state)
@@ -234,6 +265,7 @@ int main(void)
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_torque_is_pressure_times_lever),
         cmocka_unit_test(test_torque_angles),
+        cmocka_unit_test(test_torque_uneven),
         cmocka_unit_test(test_torque_is_smooth),
         cmocka_unit_test(test_torque_between_degrees),
         cmocka_unit_test(test_torque_inertia),
