@@ -21,6 +21,9 @@
 #define MOST_COMPRESSION      23.0
 #define LOWEST_EFFICIENT_HEAT 10e6 // J/kg, below every fuel in use
 #define HIGHEST_HEAT          121e6
+// Heat of the fuel that air can burn: about 3 MJ for each kg of air, hydrogen 3.5 (stoichiometric
+// mixtures; common practice, no source). All fuel burns in the model, so more is unusual.
+#define MOST_HEAT_OF_AIR 3.6e6
 
 static bool holds(const tacet_engine_def *d, unsigned number)
 {
@@ -172,6 +175,21 @@ static void check_burn(const tacet_cycle_def *c, const tacet_reporter *r)
         }
 }
 
+static void check_mixture(const tacet_cycle_def *c, const tacet_reporter *r)
+{
+    const tacet_curve *curve = &c->air_fuel_ratio;
+    for (size_t i = 0; i < (curve->n ? curve->n : 1); i++) {
+        double rpm = bend(curve, i), ratio = engine_air_fuel_ratio(c, rpm);
+        double heat = c->lower_heating_value_J_per_kg / ratio;
+        if (!(heat > MOST_HEAT_OF_AIR)) continue;
+        tacet_report(r, WARNING, "cycle.fuel.air_fuel_ratio",
+                     "%.4g at %.6g rpm, %.3g MJ of fuel for each kg of air; more than %.3g does "
+                     "not burn",
+                     ratio, rpm, heat / 1e6, MOST_HEAT_OF_AIR / 1e6);
+        return;
+    }
+}
+
 static void check_manifold(const tacet_cycle_def *c, const tacet_reporter *r)
 {
     if (c->load_by != TACET_LOAD_CHARGE) return;
@@ -192,6 +210,7 @@ static void check_cycle(const tacet_engine_def *d, const tacet_reporter *r)
 {
     const tacet_cycle_def *c = &d->cycle;
     check_manifold(c, r);
+    check_mixture(c, r);
     if (c->lower_heating_value_J_per_kg < LOWEST_EFFICIENT_HEAT ||
         c->lower_heating_value_J_per_kg > HIGHEST_HEAT)
         tacet_report(r, WARNING, "cycle.fuel.lower_heating_value_mj_per_kg",

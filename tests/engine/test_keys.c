@@ -187,6 +187,14 @@ static void test_check_cycle(void **state)
     d = demo_six();
     d.cycle.lowest_Pa = (tacet_curve){rpm, low, 1};
     expect(&d, false, "cycle.manifold_kpa.lowest: 150 kPa at 0 rpm");
+    d = demo_six();
+    double speeds[] = {900, 1900}, rich[] = {14.6, 10}; // 44 / 10 MJ
+    d.cycle.air_fuel_ratio = (tacet_curve){speeds, rich, 2};
+    expect(&d, true, "cycle.fuel.air_fuel_ratio: 10 at 1900 rpm, 4.4 MJ of fuel for each kg");
+    double stoichiometric = 34.3, hydrogen = 120e6; // hydrogen, from memory: no warning
+    d.cycle.air_fuel_ratio = (tacet_curve){rpm, &stoichiometric, 1};
+    d.cycle.lower_heating_value_J_per_kg = hydrogen;
+    assert_int_equal(check(&d).warnings, 0);
 }
 
 int main(void)
