@@ -12,19 +12,24 @@
 // d includes the static twist of the mean torques against the flywheel, whose own mean angle is W
 // t.
 //
-// The first passes are made on a quarter and a half of the samples, which is enough to find the low
-// lines; only passes on all samples decide whether the result stands.
+// The first passes are made on a quarter and a half of the samples and on the lines that these
+// resolve; only passes on all samples decide whether the result stands. A pass that changed things
+// by c, the one before by c / rho, leaves an error of about c rho / (1 - rho); passes take turns in
+// contracting well and badly, so a few times that is reckoned with.
 #include "train/work.h"
 #include <math.h>
 #include <string.h>
 
-#define OVERSAMPLING   4    // samples per period of the highest line; 6 change no level by 1e-6
-#define SAMPLES_A_TURN 126  // at least: torque has lines beyond the highest asked for
+#define OVERSAMPLING   4    // samples per period of the highest line, at least
+#define SAMPLES_A_TURN 126  // at least: no line of torque below order 90 reaches order 36
+#define FEWER          3    // samples per period of the highest line, on fewer samples
 #define LOW_ORDER      6    // lines up to here take Newton's step
 #define QUARTER_PASSES 2    // fewer leave low lines to be found on more samples
 #define HALF_PASSES    4    // at most
 #define HALF_ENOUGH    2e-4 // aliasing on half the samples is a tenth of that
 #define TOLERANCE      1e-6 // where none is asked for
+#define SLOW           0.5  // above, what is left cannot be told from the last changes
+#define CAUTION        4    // times the error that steady contraction would leave
 #define DIVERGED       1e3  // change over size of the torque lines
 
 typedef struct {
@@ -214,40 +219,38 @@ static tacet_status pass(ripple *r, double *change)
     return *change < DIVERGED ? TACET_OK : TACET_NOT_CONVERGED;
 }
 
-// Passes on one grid until `enough` or `most` of them.
-static tacet_status passes(ripple *r, size_t samples, size_t n_lines, unsigned most, double enough,
-                           double *change)
+// Passes on one grid until `enough` or `most` of them; the last one's remaining error.
+static tacet_status passes(ripple *r, size_t samples, unsigned most, double enough, double *error)
 {
     tacet_status status = TACET_OK;
+    size_t resolved = samples / FEWER;
+    double change = INFINITY;
+    *error = INFINITY;
     r->grid = work_transform(r->w, samples);
-    r->n_lines = n_lines;
-    for (unsigned i = 0; i < most && status == TACET_OK; i++) {
-        status = pass(r, change);
-        if (*change <= enough) break;
+    r->n_lines = resolved < r->how->n_lines ? resolved : r->how->n_lines;
+    for (unsigned i = 0; i < most && status == TACET_OK && *error > enough; i++) {
+        double before = change;
+        status = pass(r, &change);
+        double rho = change / before; // 0 in the first pass
+        *error = i > 0 && rho < SLOW ? fmin(change, CAUTION * change * rho / (1 - rho)) : change;
     }
     return status;
 }
 
 static tacet_status converge(ripple *r)
 {
-    size_t turns = r->how->revolutions, n_lines = r->how->n_lines;
-    size_t wanted = tacet_transform_length(n_lines, OVERSAMPLING);
-    while (wanted < SAMPLES_A_TURN * turns && wanted < r->w->most_samples)
-        wanted *= 2;
-    size_t low = wanted / 4 / OVERSAMPLING;
-    double change = INFINITY;
-    double tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
+    size_t turns = r->how->revolutions;
+    size_t all = tacet_transform_length(r->how->n_lines, OVERSAMPLING);
+    while (all < SAMPLES_A_TURN * turns && all < r->w->most_samples)
+        all *= 2;
+    double error, tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
     tacet_status status = start(r);
-    if (status == TACET_OK && low >= LOW_ORDER * turns)
-        status = passes(r, wanted / 4, low < n_lines ? low : n_lines, QUARTER_PASSES, 0, &change);
-    if (status == TACET_OK && wanted / 2 >= SAMPLES_A_TURN / 2 * turns && n_lines < wanted / 5)
-        status = passes(r, wanted / 2, n_lines, HALF_PASSES, fmax(tolerance, HALF_ENOUGH), &change);
-    if (status == TACET_OK) {
-        change = INFINITY;
-        status = passes(r, wanted, n_lines, r->how->most_passes, tolerance, &change);
-    }
-    if (status == TACET_OK && !(change <= tolerance)) status = TACET_NOT_CONVERGED;
-    return status;
+    if (status == TACET_OK && all / 4 >= FEWER * LOW_ORDER * turns)
+        status = passes(r, all / 4, QUARTER_PASSES, 0, &error);
+    if (status == TACET_OK && all / 2 >= FEWER * 2 * LOW_ORDER * turns)
+        status = passes(r, all / 2, HALF_PASSES, fmax(tolerance, HALF_ENOUGH), &error);
+    if (status == TACET_OK) status = passes(r, all, r->how->most_passes, tolerance, &error);
+    return status == TACET_OK && !(error <= tolerance) ? TACET_NOT_CONVERGED : status;
 }
 
 tacet_status ripple_solve(tacet_train_work *w, double speed, size_t n_throws,
