@@ -66,7 +66,8 @@ typedef struct {
     double clear_rad_per_s; // speed span: sum of the steps between neighbouring clear cells
     double clear_from_rad_per_s, clear_to_rad_per_s; // the widest clear stretch; NAN: clear nowhere
     double saving;         // mean of 1 - fuel to all-fire where clear; NAN: none known
-    int limiting_band;     // limits most often where it is not clear; -1: none or a limit
+    int limiting_band;     // limits most often where it is not clear; -1: none, or a limit does
+    int limiting_limit;    // scalar limit that does so oftener than any band; -1: none
     double limiting_order; // leading order of that band at its worst margin
 } tacet_candidate_note;
 

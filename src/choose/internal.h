@@ -82,7 +82,7 @@ typedef struct {
 // From candidates, cells and grid; demand of each grid speed from its cells.
 TACET_USE tacet_status ranks_make(tacet_screen *s, tacet_arena *scratch);
 // Counts, spans, savings, what limits.
-TACET_USE tacet_status notes_make(tacet_screen *s, const note_rules *rules, tacet_arena *scratch);
+TACET_USE tacet_status notes_make(tacet_screen *s, tacet_arena *scratch);
 // The best of each rank, and who is not recommended and why; after the two above.
 TACET_USE tacet_status recommend(tacet_screen *s, const note_rules *rules, tacet_arena *scratch);
 bool cell_is_clear(const tacet_cell *c);

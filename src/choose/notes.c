@@ -34,33 +34,48 @@ static double mean_saving(const tacet_screen *s, const tacet_candidate *c)
     return n ? sum / (double)n : NAN;
 }
 
-// The band with the smallest margin at most of the speeds where the candidate is not clear.
-static void what_limits(const tacet_screen *s, const tacet_candidate *c, size_t n_bands,
-                        tacet_candidate_note *note)
+// Index of the first of the largest counts, -1 when all are 0.
+static int most_often(const size_t *times, size_t n)
 {
-    size_t times[TACET_BANDS_MOST] = {0}, by_limit = 0, most = 0;
-    note->limiting_band = -1;
+    int found = -1;
+    for (size_t i = 0; i < n; i++)
+        if (times[i] > (found < 0 ? 0 : times[found])) found = (int)i;
+    return found;
+}
+
+// Leading order of a band at the candidate's worst grid speed in it.
+static double order_at_worst(const tacet_screen *s, const tacet_candidate *c, int band)
+{
+    double worst = INFINITY, order = 0;
+    for (size_t i = 0; i < s->n_speeds; i++) {
+        const tacet_row *row = &s->cells[c->first_cell + i].row;
+        if (row->outcome != TACET_SOLVED || !(row->bands[band].margin_db < worst)) continue;
+        worst = row->bands[band].margin_db;
+        order = row->bands[band].level.leading_order;
+    }
+    return order;
+}
+
+// The band or limit with the smallest margin at most of the speeds where the candidate is not
+// clear.
+static void what_limits(const tacet_screen *s, const tacet_candidate *c, tacet_candidate_note *note)
+{
+    size_t by_band[TACET_BANDS_MOST] = {0}, by_limit[TACET_LIMITS_MOST] = {0};
     for (size_t i = 0; i < s->n_speeds; i++) {
         const tacet_cell *cell = &s->cells[c->first_cell + i];
         if (cell->row.outcome != TACET_SOLVED || cell_is_clear(cell)) continue;
         if (cell->row.limiting_band >= 0)
-            times[cell->row.limiting_band]++;
-        else
-            by_limit++;
+            by_band[cell->row.limiting_band]++;
+        else if (cell->row.limiting_limit >= 0)
+            by_limit[cell->row.limiting_limit]++;
     }
-    for (size_t b = 0; b < n_bands; b++) {
-        if (times[b] <= most) continue;
-        most = times[b];
-        note->limiting_band = (int)b;
-    }
-    if (by_limit > most) note->limiting_band = -1;
-    double worst = INFINITY;
-    for (size_t i = 0; i < s->n_speeds && note->limiting_band >= 0; i++) {
-        const tacet_row *row = &s->cells[c->first_cell + i].row;
-        const tacet_band_result *band = &row->bands[note->limiting_band];
-        if (row->outcome != TACET_SOLVED || !(band->margin_db < worst)) continue;
-        worst = band->margin_db;
-        note->limiting_order = band->level.leading_order;
+    int band = most_often(by_band, TACET_BANDS_MOST),
+        limit = most_often(by_limit, TACET_LIMITS_MOST);
+    if (limit >= 0 && (band < 0 || by_limit[limit] > by_band[band]))
+        note->limiting_limit = limit;
+    else if (band >= 0) {
+        note->limiting_band = band;
+        note->limiting_order = order_at_worst(s, c, band);
     }
 }
 
@@ -96,7 +111,7 @@ static void spans(const tacet_screen *s, const tacet_candidate *c, const tacet_c
     }
 }
 
-tacet_status notes_make(tacet_screen *s, const note_rules *rules, tacet_arena *scratch)
+tacet_status notes_make(tacet_screen *s, tacet_arena *scratch)
 {
     size_t most = 0;
     for (size_t c = 0; c < s->n_candidates; c++)
@@ -110,12 +125,13 @@ tacet_status notes_make(tacet_screen *s, const note_rules *rules, tacet_arena *s
                                        .why_not = "",
                                        .saving = NAN,
                                        .limiting_band = -1,
+                                       .limiting_limit = -1,
                                        .clear_from_rad_per_s = NAN,
                                        .clear_to_rad_per_s = NAN};
         if (s->candidates[c].refused) continue;
         count(s, &s->candidates[c], note);
         spans(s, &s->candidates[c], sorted, note);
-        what_limits(s, &s->candidates[c], rules->n_bands, note);
+        what_limits(s, &s->candidates[c], note);
         note->saving = mean_saving(s, &s->candidates[c]);
     }
     return TACET_OK;

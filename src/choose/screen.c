@@ -262,7 +262,7 @@ static tacet_status judge_together(screening *g)
     for (size_t i = 0; i < tacet_model_limits(g->m); i++)
         limits[i] = tacet_model_limit(g->m, i)->name;
     tacet_status status = ranks_make(g->s, g->scratch);
-    if (status == TACET_OK) status = notes_make(g->s, &rules, g->scratch);
+    if (status == TACET_OK) status = notes_make(g->s, g->scratch);
     if (status == TACET_OK) status = recommend(g->s, &rules, g->scratch);
     return status == TACET_OK ? TACET_OK : no_memory(g);
 }

@@ -103,6 +103,7 @@ static const tacet_table_column summary_columns[] = {
 
 static const char *limiting_name(const tacet_model *m, const tacet_candidate_note *note)
 {
+    if (note->limiting_limit >= 0) return tacet_model_limit(m, (size_t)note->limiting_limit)->name;
     return note->limiting_band >= 0 ? tacet_model_band(m, (size_t)note->limiting_band)->name : "";
 }
 
