@@ -21,7 +21,8 @@ typedef enum {
     TACET_NOT_CONVERGED, // an iteration used up its passes
     TACET_NOT_FINITE,    // a computed value is NaN or infinite; it was not passed on
     TACET_OUTSIDE_WORLD, // file, folder, pipe or another program
-    TACET_STOPPED        // asked to stop
+    TACET_STOPPED,       // asked to stop
+    TACET_HARMONIC_ONLY  // a law of frequency alone: no march can follow it
 } tacet_status;
 
 // Message and place of a failure; line and column count from 1, 0 = no place.

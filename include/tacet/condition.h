@@ -24,8 +24,8 @@ size_t tacet_model_bands(const tacet_model *m);
 const tacet_band *tacet_model_band(const tacet_model *m, size_t i);
 size_t tacet_model_limits(const tacet_model *m);
 const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i);
-// Highest order of the lines; `limited` (may be NULL): the mode of interest asked for more than
-// TACET_ORDER_MOST.
+// Highest order of the lines, past every band at every speed that may be asked; `limited` (may be
+// NULL): the mode of interest asked for more than TACET_ORDER_MOST.
 #define TACET_ORDER_MOST 36
 double tacet_model_highest_order(const tacet_model *m, bool *limited);
 // All-fire reference level of a band at its worst screened speed; NAN: unreachable at every one.
@@ -73,8 +73,8 @@ typedef struct {
     tacet_limit_result limits[TACET_LIMITS_MOST];
 } tacet_row;
 
-// Of two rows of one candidate, the one that decides: out of reach, then failed, then without
-// verdict, then the smaller margin (no line anywhere: better than any).
+// Of two rows of one candidate, the one that decides: out of reach, then failed, then over, then
+// without verdict, then the smaller margin (no line anywhere: better than any).
 bool tacet_row_worse(const tacet_row *a, const tacet_row *b);
 
 // A pure function of (model, condition, level); the workspace only lends memory. A condition that
@@ -91,8 +91,9 @@ TACET_USE tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quanti
 
 // How well the solvers agree on a condition: same_model = largest difference of link torque and
 // node speed lines, steady with frozen inertia and torque at W t against constant-speed harmonic,
-// relative to the largest line; full_model_db = largest difference of band levels and of link
-// torque lines within 40 dB of their largest, ripple harmonic against the full march, dB.
+// relative to the largest line; full_model_db = largest difference of band levels, and of lines of
+// link torques and of the bands' quantities within 40 dB of their largest, ripple harmonic against
+// the full march, dB.
 typedef struct {
     bool settled; // both marches settled
     double same_model, full_model_db;

@@ -128,7 +128,8 @@ typedef enum {
     TACET_REACH_TOO_LOW,       // less than the lowest charge gives; with tenths: of the least fire
     TACET_REACH_PEAK_PRESSURE, // the charge would do, but a cycle would pass the peak limit
     TACET_REACH_SPEED,         // outside the speeds prepared
-    TACET_REACH_RUN            // a cylinder skips longer in a row than prepared
+    TACET_REACH_RUN,           // a cylinder skips longer in a row than prepared
+    TACET_REACH_CYLINDER       // a cylinder skips that may not
 } tacet_reach;
 typedef struct {
     bool reachable;
@@ -148,9 +149,9 @@ typedef struct {
 } tacet_duty;
 // Finds the charge at which the mean over the repeat of all gas torques less friction is the
 // demand. Unreachable is a result (TACET_OK with reachable false), never clamped in silence: the
-// members then tell of the nearest reachable torque; speed and run: NAN. TACET_BAD_INPUT: the roll
-// is of another engine, or speed or demand are not finite. A pure function of (en, r, speed,
-// demand).
+// members then tell of the nearest reachable torque; speed, run and cylinder: NAN. TACET_BAD_INPUT:
+// the roll is of another engine, or speed or demand are not finite. A pure function of (en, r,
+// speed, demand).
 TACET_USE tacet_status tacet_engine_duty(const tacet_engine *en, const tacet_roll *r,
                                          double speed_rad_per_s, double demand_Nm,
                                          tacet_engine_work *w, tacet_duty *out);
@@ -163,7 +164,7 @@ TACET_USE tacet_status tacet_engine_load(const tacet_engine *en, const tacet_rol
                                          tacet_engine_work *w);
 // Gas torque of the cylinder in `slot` at n crank angles (rad from the start of the repeat, any
 // value, taken modulo the repeat), of the last load: (p - crankcase pressure) area x'. Smooth (C1)
-// in angle. N m. NAN: no load, or the angle is not finite.
+// in angle. N m. NAN: no load, or the angle is not finite or beyond 1.7e7 rad (1e9 degrees).
 void tacet_engine_gas_torque(const tacet_engine *en, const tacet_engine_work *w, unsigned slot,
                              size_t n, const double *angle_rad, double *torque_Nm);
 // Cylinder pressure at n crank angles, Pa absolute.

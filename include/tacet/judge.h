@@ -30,9 +30,10 @@ enum { TACET_TARGET_NONE, TACET_TARGET_NODE, TACET_TARGET_LINK };
 // and pressure: MPa).
 typedef struct tacet_quantity {
     const char *name, *unit, *doc;
-    int target;    // kind of target after ':'
-    bool scalar;   // has no spectrum: `value` gives one number (damper-heat, peak-pressure)
-    int statistic; // the only one that a limit may use; -1: any
+    int target;           // kind of target after ':'
+    bool scalar;          // has no spectrum: `value` gives one number (damper-heat, peak-pressure)
+    int statistic;        // the only one that a limit may use; -1: any
+    bool over_mean_speed; // divided by the mean speed: at another speed, the same motion is another
     // Lines up to out->n_lines, which is at most r->n_lines; sets out->revolutions.
     tacet_status (*spectrum)(const tacet_response *r, size_t target, tacet_spectrum *out);
     tacet_status (*value)(const tacet_response *r, size_t target, double *out);

@@ -171,6 +171,7 @@ TACET_USE tacet_status tacet_train_ripple(const tacet_train *t, double speed_rad
                                           tacet_train_motion *out, tacet_spectrum *torque,
                                           tacet_solver_note *note);
 // Periodic steady state of the full equations by march (GSL odeiv2) and shooting.
+// TACET_HARMONIC_ONLY: a link has loss_law constant.
 TACET_USE tacet_status tacet_train_steady(const tacet_train *t, double speed_rad_per_s,
                                           size_t n_throws, const size_t *throw_node,
                                           tacet_drive *drive, const void *who,

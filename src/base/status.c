@@ -4,7 +4,7 @@
 const char *tacet_status_text(tacet_status status)
 {
     static const char *const text[] = {"ok",         "bad input",     "no memory", "not converged",
-                                       "not finite", "outside world", "stopped"};
+                                       "not finite", "outside world", "stopped",   "harmonic only"};
     return (unsigned)status < sizeof text / sizeof *text ? text[status] : "unknown status";
 }
 

@@ -18,6 +18,7 @@ int cli_exit_of(tacet_status status)
         return CLI_WRONG;
     case TACET_NOT_CONVERGED:
     case TACET_NOT_FINITE:
+    case TACET_HARMONIC_ONLY:
         return CLI_SOME_FAILED;
     case TACET_NO_MEMORY:
     case TACET_OUTSIDE_WORLD:

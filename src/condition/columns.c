@@ -50,8 +50,13 @@ static const char *outcome(TEXT_ROW)
 
 static const char *reach(TEXT_ROW)
 {
-    static const char *const text[] = {"ok",    "too high",     "too low", "peak pressure",
-                                       "speed", "skip too long"};
+    static const char *const text[] = {"ok",
+                                       "too high",
+                                       "too low",
+                                       "peak pressure",
+                                       "speed",
+                                       "skip too long",
+                                       "cylinder may not skip"};
     USE, (void)buffer;
     return (unsigned)r->duty.reach < sizeof text / sizeof *text ? text[r->duty.reach] : "unknown";
 }

@@ -2,6 +2,12 @@
 #include "condition/internal.h"
 #include <math.h>
 
+#define CYCLIC_SPACING  0.25 // orders at the lowest screened speed between grid frequencies
+#define CYCLIC_LEAST    24   // intervals
+#define CYCLIC_BEND     1e-3 // of |H|^2 between neighbouring probes that is left to Simpson's rule
+#define CYCLIC_HALVINGS 20   // of a grid interval at most: peaks down to a millionth of it
+#define BESIDE_MODE     1e-9 // relative
+
 // Quantity of a band for unit torque on one throw, constant speed, lines of `revolutions` at
 // `speed`. The piston torque that goes with it: the unit itself on that throw, less <J> a'' on
 // every throw.
@@ -50,11 +56,6 @@ static tacet_status unit_response(tacet_workspace *w, size_t throw_index, double
     return TACET_OK;
 }
 
-static bool wants_dispersion(const tacet_model *m)
-{
-    return m->study->engine.cylinder_dispersion > 0 || m->study->engine.cyclic_dispersion > 0;
-}
-
 // Lines up to the highest counted band edge.
 static size_t band_lines(const tacet_model *m, double speed, unsigned revolutions)
 {
@@ -87,40 +88,175 @@ tacet_status dispersion_transfers(tacet_workspace *w, double speed, unsigned rev
     return TACET_OK;
 }
 
-// One band's transfers on CYCLIC_INTERVALS equal intervals of its counted width. The train is
-// solved on the lines of a fictitious repeat of one revolution a spacing long; lines below the band
-// are unused.
-static tacet_status prepare_band(tacet_model *m, tacet_workspace *w, size_t b)
+// ---- cycle-to-cycle variation -------------------------------------------------------------------
+
+// |H|^2 of a band's quantity to unit torque on each throw at one frequency.
+typedef struct {
+    double f_hz, square[TACET_ENGINE_CYLINDERS_MOST];
+} probe;
+
+typedef struct {
+    tacet_model *m;
+    tacet_workspace *w;
+    const tacet_band *band;
+    const cyclic_grid *g;
+    double *integral;  // [n_throws * n] of |H|^2 under the hat of each grid frequency
+    size_t k;          // interval from f_hz[k] to f_hz[k + 1]
+    double endless_hz; // where |H|^2 keeps rising however near one looks; 0: nowhere
+    tacet_status status;
+} integration;
+
+static void probe_once(integration *q, probe *p, double f_hz)
+{
+    tacet_response r;
+    double speed = 2 * M_PI * f_hz; // a repeat of one revolution, of which line 1 is at f
+    q->status = TACET_OK;
+    for (size_t t = 0; t < q->m->n_throws && q->status == TACET_OK; t++) {
+        q->status = unit_response(q->w, t, speed, 1, 1, &r);
+        q->w->quantity.revolutions = 1;
+        q->w->quantity.n_lines = 1;
+        if (q->status == TACET_OK)
+            q->status = q->band->of.what->spectrum(&r, q->band->of.target, &q->w->quantity);
+        double complex H = q->w->quantity.line[1] * (q->band->of.what->over_mean_speed ? speed : 1);
+        p->square[t] = creal(H) * creal(H) + cimag(H) * cimag(H);
+    }
+}
+
+static void probe_at(integration *q, double f_hz, probe *p)
+{
+    if (q->status != TACET_OK) return;
+    p->f_hz = f_hz;
+    probe_once(q, p, f_hz);
+    // exactly on an undamped mode
+    if (q->status == TACET_NOT_FINITE) probe_once(q, p, f_hz * (1 + BESIDE_MODE));
+}
+
+// Adds Simpson's rule over a..middle..b, times the two hats that share the interval.
+static void add_piece(integration *q, const probe *a, const probe *middle, const probe *b)
+{
+    const double *f = &q->g->f_hz[q->k];
+    const probe *at[3] = {a, middle, b};
+    double width = f[1] - f[0];
+    for (size_t t = 0; t < q->m->n_throws; t++)
+        for (int i = 0; i < 3; i++) {
+            double part = (b->f_hz - a->f_hz) / 6 * (i == 1 ? 4 : 1) * at[i]->square[t];
+            double rise = (at[i]->f_hz - f[0]) / width;
+            q->integral[t * q->g->n + q->k] += part * (1 - rise);
+            q->integral[t * q->g->n + q->k + 1] += part * rise;
+        }
+}
+
+// Is |H|^2 between a and b a parabola, near enough?
+static bool smooth(const integration *q, const probe *a, const probe *middle, const probe *b)
+{
+    for (size_t t = 0; t < q->m->n_throws; t++) {
+        double line = (a->square[t] + b->square[t]) / 2, bent = 2 * middle->square[t] + line;
+        if (!(fabs(3 * line - bent) <= CYCLIC_BEND * bent)) return false;
+    }
+    return true;
+}
+
+static void integrate(integration *q, const probe *a, const probe *b, int halvings)
+{
+    probe middle;
+    probe_at(q, (a->f_hz + b->f_hz) / 2, &middle);
+    if (q->status != TACET_OK) return;
+    bool is_smooth = smooth(q, a, &middle, b);
+    if (halvings == 0 && !is_smooth) q->endless_hz = middle.f_hz;
+    if (halvings == 0 || is_smooth) {
+        add_piece(q, a, &middle, b);
+        return;
+    }
+    integrate(q, a, &middle, halvings - 1);
+    integrate(q, &middle, b, halvings - 1);
+}
+
+// One interval of the grid, piece by piece between the modes in it, so that no peak is stepped
+// over.
+static void integrate_interval(integration *q, size_t k)
+{
+    const double *f = &q->g->f_hz[k];
+    probe from, to;
+    q->k = k;
+    probe_at(q, f[0], &from);
+    for (size_t mode = 0; mode < tacet_train_nodes(q->m->train); mode++) {
+        double hz = q->m->mode_hz[mode];
+        if (!(hz > from.f_hz && hz < f[1])) continue;
+        probe_at(q, hz, &to);
+        if (q->status == TACET_OK) integrate(q, &from, &to, CYCLIC_HALVINGS);
+        from = to;
+    }
+    probe_at(q, f[1], &to);
+    if (q->status == TACET_OK) integrate(q, &from, &to, CYCLIC_HALVINGS);
+}
+
+static size_t intervals(const tacet_model *m, const tacet_band *b)
+{
+    double lowest = m->study->screen.speeds_rad_per_s[0];
+    for (size_t i = 1; i < m->study->screen.n_speeds; i++)
+        lowest = fmin(lowest, m->study->screen.speeds_rad_per_s[i]);
+    double wanted =
+        (b->counted_high_hz - b->counted_low_hz) / tacet_order_hz(CYCLIC_SPACING, lowest);
+    return (size_t)fmin(fmax(ceil(wanted), CYCLIC_LEAST), CYCLIC_MOST);
+}
+
+// One band's transfers on equal intervals of its counted width. The square of the pulse is smooth
+// and taken as straight between two frequencies; that of H may have peaks of any sharpness, so H
+// here is what keeps its integral under the hat of each frequency.
+static tacet_status prepare_band(tacet_model *m, tacet_workspace *w, size_t b, tacet_error *e)
 {
     const tacet_band *band = &m->bands[b];
     cyclic_grid *g = &m->cyclic[b];
-    double low = band->counted_low_hz, high = band->counted_high_hz;
-    g->n = CYCLIC_INTERVALS + 1;
+    double low = band->counted_low_hz, width = band->counted_high_hz - low;
+    size_t n = intervals(m, band);
+    g->n = n + 1;
     g->f_hz = tacet_arena_alloc(m->arena, g->n * sizeof *g->f_hz);
     g->H = tacet_arena_alloc(m->arena, g->n * m->n_throws * sizeof *g->H);
-    if (!g->f_hz || !g->H) return TACET_NO_MEMORY;
+    integration q = {.m = m, .w = w, .band = band, .g = g, .status = TACET_OK};
+    q.integral = tacet_arena_alloc(m->arena, g->n * m->n_throws * sizeof *q.integral);
+    if (!g->f_hz || !g->H || !q.integral)
+        return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
     for (size_t k = 0; k < g->n; k++)
-        g->f_hz[k] = low + (high - low) * (double)k / CYCLIC_INTERVALS;
+        g->f_hz[k] = low + width * (double)k / (double)n;
+    for (size_t k = 0; k < n && q.status == TACET_OK; k++)
+        integrate_interval(&q, k);
+    if (q.status != TACET_OK)
+        return tacet_fail(e, q.status, "response in band '%s': %s", band->name,
+                          tacet_status_text(q.status));
+    if (q.endless_hz > 0)
+        return tacet_fail(e, TACET_BAD_INPUT,
+                          "band '%s' holds an undamped mode at %.4g Hz, at which cycle-to-cycle "
+                          "variation has no bound; give its links damping, or set "
+                          "engine.dispersion.cyclic_percent: 0",
+                          band->name, q.endless_hz);
     for (size_t t = 0; t < m->n_throws; t++)
         for (size_t k = 0; k < g->n; k++) {
-            tacet_response r;
-            tacet_status status = unit_response(w, t, 2 * M_PI * g->f_hz[k], 1, 1, &r);
-            w->quantity.revolutions = 1;
-            w->quantity.n_lines = 1;
-            if (status == TACET_OK)
-                status = band->of.what->spectrum(&r, band->of.target, &w->quantity);
-            if (status != TACET_OK) return status;
-            g->H[t * g->n + k] = w->quantity.line[1];
+            double hat = width / (double)n * (k == 0 || k == n ? 0.5 : 1);
+            g->H[t * g->n + k] = sqrt(q.integral[t * g->n + k] / hat);
         }
     return TACET_OK;
 }
 
-tacet_status dispersion_prepare(tacet_model *m, tacet_workspace *w)
+tacet_status dispersion_prepare(tacet_model *m, tacet_workspace *w, tacet_error *e)
 {
     tacet_status status = TACET_OK;
-    for (size_t b = 0; b < m->n_bands && status == TACET_OK && wants_dispersion(m); b++)
-        status = prepare_band(m, w, b);
+    bool wanted = m->study->engine.cyclic_dispersion > 0;
+    for (size_t b = 0; b < m->n_bands && status == TACET_OK && wanted; b++)
+        status = prepare_band(m, w, b, e);
     return status;
+}
+
+// Fires per second of each throw; a fire at tenths of the charge varies by as many tenths of the
+// torque, and counts by the square.
+static void fire_rates(const tacet_workspace *w, double speed, double *rate)
+{
+    const tacet_roll *roll = w->roll;
+    double repeats_per_s = speed / (2 * M_PI * roll->revolutions);
+    for (unsigned slot = 0; slot < roll->cylinders; slot++)
+        for (unsigned c = 0; c < roll->cycles; c++) {
+            double weight = 0.1 * tacet_roll_cycle(roll, slot, c).tenths;
+            rate[w->m->slot_throw[slot]] += weight * weight * repeats_per_s;
+        }
 }
 
 double dispersion_cyclic(tacet_workspace *w, size_t b, double speed)
@@ -129,17 +265,19 @@ double dispersion_cyclic(tacet_workspace *w, size_t b, double speed)
     const cyclic_grid *g = &m->cyclic[b];
     double sigma = m->study->engine.cyclic_dispersion;
     if (!(sigma > 0)) return 0;
-    double rate[TACET_PATTERN_LONGEST] = {0};
-    double repeats_per_s = speed / (2 * M_PI * w->roll->revolutions);
-    for (unsigned slot = 0; slot < w->roll->cylinders; slot++)
-        rate[m->slot_throw[slot]] += tacet_roll_fires_of(w->roll, slot) * repeats_per_s;
+    double rate[TACET_ENGINE_CYLINDERS_MOST] = {0};
+    fire_rates(w, speed, rate);
     for (size_t k = 0; k < g->n; k++)
         w->order[k] = g->f_hz[k] / tacet_order_hz(1, speed);
     tacet_engine_fired_pulse(m->engine, w->engine, g->n, w->order, w->pulse);
     for (size_t k = 0; k < g->n; k++)
         w->pulse[k] /= speed; // N m rad -> N m s
-    return tacet_cyclic_mean_square(g->n, g->f_hz, m->n_throws, g->H, w->pulse, rate, sigma);
+    double over = m->bands[b].of.what->over_mean_speed ? speed : 1;
+    return tacet_cyclic_mean_square(g->n, g->f_hz, m->n_throws, g->H, w->pulse, rate, sigma) /
+           (over * over);
 }
+
+// ---- unequal cylinders --------------------------------------------------------------------------
 
 // Fired torque of each slot alone: the pulse of one fired window at its own firing angles, weighted
 // by its share of the full charge. line[h] = P(h/R) / (pi R) sum_c weight_c exp(-i h/R (firing

@@ -4,13 +4,14 @@
 #include "tacet/condition.h"
 
 // Transform lengths are powers of two from 2^TRANSFORM_FIRST on.
-#define TRANSFORM_FIRST  6
-#define TRANSFORM_KINDS  14
-#define PEAK_OVERSAMPLE  6
-#define EVEN_CYCLES      16 // repeats of up to this many cycles have a transform of their own
-#define CYCLIC_INTERVALS 24 // of a counted band, for the integral of cycle-to-cycle variation
+#define TRANSFORM_FIRST 6
+#define TRANSFORM_KINDS 14
+#define PEAK_OVERSAMPLE 6
+#define EVEN_CYCLES     16 // repeats of up to this many cycles have a transform of their own
+#define CYCLIC_MOST     96 // intervals of a counted band, for the integral of cyclic variation
 
-// Transfers of one band's quantity to unit torque on each throw, on a fixed frequency grid.
+// Transfers of one band's quantity to unit torque on each throw, on a fixed frequency grid: the
+// root of the mean |H|^2 about each frequency.
 typedef struct {
     size_t n;          // frequencies
     double *f_hz;      // [n]
@@ -74,7 +75,8 @@ struct tacet_workspace {
     const tacet_spectrum **slot_transfer;                        // [cylinders]
     double *samples, *angle, *torque_at, *inertia_at, *slope_at; // [longest transform (+ 2)]
     double *order;                                               // [most of any grid]
-    double complex *pulse, *phase;                               // the same
+    double complex *pulse;                                       // the same
+    double *twist;          // [nodes] mean angle against the flywheel's, referred to the crank
     double friction_Nm;     // mean total of the loaded condition
     const tacet_roll *roll; // of the loaded condition
     tacet_response response;
@@ -96,13 +98,13 @@ tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_le
                           tacet_solver_note *note);
 tacet_status motion_constant(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions,
                              size_t n_lines);
-void motion_piston(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions,
-                   size_t n_lines);
+tacet_status motion_piston(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions,
+                           size_t n_lines);
 
 // Levels with dispersion of every band for the motion in the workspace.
 tacet_status levels_solve(tacet_workspace *w, const tacet_condition *c, tacet_band_level *out);
 // Fills m->cyclic.
-tacet_status dispersion_prepare(tacet_model *m, tacet_workspace *w);
+tacet_status dispersion_prepare(tacet_model *m, tacet_workspace *w, tacet_error *e);
 tacet_status dispersion_transfers(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions);
 double dispersion_cyclic(tacet_workspace *w, size_t band, double speed_rad_per_s);
 void dispersion_fired(tacet_workspace *w, size_t n_lines);

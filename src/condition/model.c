@@ -4,8 +4,9 @@
 #include <string.h>
 
 // Lines reach this much beyond the highest mode of interest, so that its resonance is whole.
-#define ORDER_MARGIN 1.15
-#define ORDER_LEAST  24.0
+#define ORDER_MARGIN  1.15
+#define ORDER_LEAST   24.0
+#define ORDER_LARGEST 60.0 // that a study may state
 // Speeds may be asked this far outside the screened ones.
 #define SPEED_MARGIN 0.1
 
@@ -49,6 +50,38 @@ static tacet_status assemble_throws(tacet_model *m, const tacet_train_def *train
     return TACET_OK;
 }
 
+// Torque hangs on the crank's angle: no gear between a throw and the flywheel.
+static tacet_status check_throws(const tacet_model *m, tacet_error *e)
+{
+    for (size_t t = 0; t < m->n_throws; t++) {
+        double ratio = tacet_train_node_ratio(m->train, m->throw_node[t]);
+        if (fabs(ratio - 1) <= 1e-12) continue;
+        return tacet_fail(e, TACET_BAD_INPUT,
+                          "cylinders drive node '%s', which turns at %.6g times the speed of the "
+                          "flywheel '%s'; throws turn with it, without a gear in between",
+                          tacet_train_node_name(m->train, m->throw_node[t]), ratio,
+                          tacet_train_node_name(m->train, tacet_train_flywheel(m->train)));
+    }
+    return TACET_OK;
+}
+
+// Lines of words as long as the densities', and all bands, lie inside the range in which loss
+// factors hold.
+static void choose_loss_range(const tacet_study *s, tacet_train_def *d)
+{
+    double range[2];
+    speed_range(s, range);
+    unsigned longest = s->screen.densities.longest > 8 ? s->screen.densities.longest : 8;
+    double highest = fmax(TACET_ORDER_MOST, s->screen.highest_order); // NAN drops out
+    d->lowest_hz = tacet_order_hz(1.0 / (2 * longest), range[0]);
+    d->highest_hz = tacet_order_hz(highest, range[1]);
+    for (size_t i = 0; i < s->n_bands; i++) {
+        double guard = tacet_band_guard(&s->bands[i]);
+        d->lowest_hz = fmin(d->lowest_hz, s->bands[i].low_hz * (1 - guard));
+        d->highest_hz = fmax(d->highest_hz, s->bands[i].high_hz * (1 + guard));
+    }
+}
+
 static tacet_status assemble_train(tacet_model *m, tacet_error *e)
 {
     const tacet_study *s = m->study;
@@ -59,13 +92,10 @@ static tacet_status assemble_train(tacet_model *m, tacet_error *e)
     if (status != TACET_OK) return status;
     for (size_t t = 0; t < m->n_throws; t++)
         added[m->throw_node[t]] = m->throw_inertia[t];
-    double range[2];
-    speed_range(s, range);
-    unsigned longest = s->screen.densities.longest > 8 ? s->screen.densities.longest : 8;
     d.added_inertia_kgm2 = added;
-    d.lowest_hz = tacet_order_hz(1.0 / (2 * longest), range[0]);
-    d.highest_hz = tacet_order_hz(TACET_ORDER_MOST, range[1]);
+    choose_loss_range(s, &d);
     status = tacet_train_create(&d, &m->train, e);
+    if (status == TACET_OK) status = check_throws(m, e);
     if (status != TACET_OK) return status;
     size_t n = tacet_train_nodes(m->train);
     m->mode_hz = tacet_arena_alloc(m->arena, n * sizeof *m->mode_hz);
@@ -77,23 +107,49 @@ static tacet_status assemble_train(tacet_model *m, tacet_error *e)
                : tacet_fail(e, status, "the modes of the train: %s", tacet_status_text(status));
 }
 
+// A line that is not computed is in no level: lines reach over every band at every speed that may
+// be asked. `least` gets the order that this takes.
+static tacet_status cover_bands(tacet_model *m, double lowest_rad_per_s, double *least,
+                                tacet_error *e)
+{
+    double stated = m->study->screen.highest_order, rpm = 60 * tacet_order_hz(1, lowest_rad_per_s);
+    *least = 0;
+    for (size_t i = 0; i < m->n_bands; i++) {
+        double hz = m->bands[i].counted_high_hz;
+        double order = ceil(hz / tacet_order_hz(1, lowest_rad_per_s) * (1 - 1e-12));
+        m->highest_band_hz = fmax(m->highest_band_hz, hz);
+        *least = fmax(*least, order);
+        if (order > stated) // false where none is stated
+            return tacet_fail(e, TACET_BAD_INPUT,
+                              "highest_order %g: at %.4g rpm that is %.4g Hz, and band '%s' is "
+                              "counted up to %.4g Hz; order %g or more is needed",
+                              stated, rpm, tacet_order_hz(stated, lowest_rad_per_s),
+                              m->bands[i].name, hz, order);
+        if (order > ORDER_LARGEST)
+            return tacet_fail(e, TACET_BAD_INPUT,
+                              "band '%s' is counted up to %.4g Hz, at %.4g rpm order %g; lines are "
+                              "computed up to order %g, so screen higher speeds or a lower band",
+                              m->bands[i].name, hz, rpm, order, ORDER_LARGEST);
+    }
+    return TACET_OK;
+}
+
 // The mode of interest is the highest one that order 24 reaches at the highest screened speed;
-// lines go a little beyond it at the lowest speed, and beyond the highest band edge, but not past
-// TACET_ORDER_MOST, where the torque of a fired cycle has faded (common practice, no source).
-static void choose_highest_order(tacet_model *m)
+// lines go a little beyond it at the lowest speed, but not past TACET_ORDER_MOST, where the torque
+// of a fired cycle has faded (common practice, no source), except for bands.
+static tacet_status choose_highest_order(tacet_model *m, tacet_error *e)
 {
     const tacet_screen_def *screen = &m->study->screen;
-    double range[2], hz = 0;
+    double range[2], hz = 0, bands;
     speed_range(m->study, range);
-    for (size_t i = 0; i < m->n_bands; i++)
-        m->highest_band_hz = fmax(m->highest_band_hz, m->bands[i].counted_high_hz);
+    tacet_status status = cover_bands(m, (1 - SPEED_MARGIN) * range[0], &bands, e);
     for (size_t i = 0; i < tacet_train_nodes(m->train); i++)
         if (m->mode_hz[i] < tacet_order_hz(ORDER_LEAST, range[1])) hz = fmax(hz, m->mode_hz[i]);
-    double wanted = fmax(ORDER_MARGIN * hz, m->highest_band_hz) / tacet_order_hz(1, range[0]);
+    double wanted = fmax(ORDER_MARGIN * hz / tacet_order_hz(1, range[0]), bands);
     double order = fmin(fmax(ceil(wanted), ORDER_LEAST), TACET_ORDER_MOST);
-    m->order_limited = wanted > TACET_ORDER_MOST;
-    m->highest_order = isnan(screen->highest_order) ? order : screen->highest_order;
-    if (!isnan(screen->highest_order)) m->order_limited = false;
+    m->highest_order = isnan(screen->highest_order) ? fmax(order, bands) : screen->highest_order;
+    m->order_limited = isnan(screen->highest_order) && wanted > m->highest_order;
+    return status;
 }
 
 static tacet_status assemble_judgement(tacet_model *m, tacet_error *e)
@@ -145,7 +201,8 @@ static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
     tacet_pattern fire = {.length = 1, .tenths = {10}};
     tacet_status status = tacet_roll_create(&fire, n, strokes, &m->all_fire, e);
     if (status != TACET_OK) return status;
-    choose_highest_order(m);
+    status = choose_highest_order(m, e);
+    if (status != TACET_OK) return status;
     m->most_revolutions = TACET_PATTERN_LONGEST * strokes / 2;
     m->most_lines = tacet_model_lines(m, m->most_revolutions);
     size_t most = tacet_transform_length(m->most_lines, PEAK_OVERSAMPLE);
@@ -215,11 +272,10 @@ tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e)
     if (status != TACET_OK) return status;
     tacet_workspace *w = NULL;
     status = workspace_build(m, &w);
-    if (status == TACET_OK) status = dispersion_prepare(m, w);
     if (status != TACET_OK)
-        (void)tacet_fail(e, status, "preparing the model: %s", tacet_status_text(status));
-    else
-        status = prepare_references(m, w, e);
+        return tacet_fail(e, status, "preparing the model: %s", tacet_status_text(status));
+    status = dispersion_prepare(m, w, e);
+    if (status == TACET_OK) status = prepare_references(m, w, e);
     tacet_workspace_destroy(w);
     m->prepared = status == TACET_OK;
     return status;

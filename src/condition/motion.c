@@ -2,9 +2,11 @@
 #include <math.h>
 #include <string.h>
 
-#define CHUNK 256
 // Change of a line between the last two passes, over the largest line.
 #define RIPPLE_CHANGE 1e-6
+// Long words have lines far below the speed, at which the angle swings widely: passes then contract
+// by half, and steady would need seconds for what a few more of them settle.
+#define RIPPLE_PASSES 24
 // End defect of the marched repeat over the motion: a thousandth of the 0.1 dB that is asked for,
 // and what linear shooting reaches in two to four repeats of the full equations.
 #define STEADY_CLOSURE 1e-5
@@ -19,23 +21,13 @@ tacet_status workspace_drive(const void *who, size_t throw_index, size_t n, cons
     unsigned cylinders = tacet_engine_cylinders(m->engine), on = m->throw_n_slots[throw_index];
     const unsigned *slot = &m->throw_slots[throw_index * cylinders];
     double friction = w->friction_Nm * on / cylinders;
-    double torque[CHUNK], inertia[CHUNK], slope[CHUNK];
-    for (size_t from = 0; from < n; from += CHUNK) {
-        size_t count = n - from < CHUNK ? n - from : CHUNK;
-        for (size_t k = 0; k < count; k++) {
-            torque_Nm[from + k] = -friction;
-            inertia_kgm2[from + k] = slope_kgm2_per_rad[from + k] = 0;
-        }
-        for (unsigned i = 0; i < on; i++) {
-            tacet_engine_gas_torque(m->engine, w->engine, slot[i], count, angle_rad + from, torque);
-            tacet_engine_inertia(m->engine, slot[i], count, angle_rad + from, inertia, slope);
-            for (size_t k = 0; k < count; k++) {
-                torque_Nm[from + k] += torque[k];
-                inertia_kgm2[from + k] += inertia[k];
-                slope_kgm2_per_rad[from + k] += slope[k];
-            }
-        }
+    for (size_t k = 0; k < n; k++) {
+        torque_Nm[k] = -friction;
+        inertia_kgm2[k] = slope_kgm2_per_rad[k] = 0;
     }
+    for (unsigned i = 0; i < on; i++)
+        tacet_engine_drive(m->engine, w->engine, slot[i], n, angle_rad, torque_Nm, inertia_kgm2,
+                           slope_kgm2_per_rad);
     return TACET_OK;
 }
 
@@ -102,21 +94,45 @@ static void samples_of(tacet_workspace *w, const tacet_transform *t, const tacet
     memcpy(out, w->samples, tacet_transform_samples(t) * sizeof *out);
 }
 
+// Mean angle of every node against the flywheel's, referred to the crank, under the mean torques
+// that the links carry: y_from - y_to = T_to / (k ratio_to); order 0 uses the stated stiffness.
+static void twist_statically(tacet_workspace *w)
+{
+    const tacet_train *t = w->m->train;
+    size_t n = tacet_train_nodes(t), links = tacet_train_links(t);
+    for (size_t j = 0; j < n; j++)
+        w->twist[j] = NAN; // not reached yet
+    w->twist[tacet_train_flywheel(t)] = 0;
+    for (size_t pass = 0; pass < links; pass++) // a tree: each pass reaches one node or more
+        for (size_t l = 0; l < links; l++) {
+            tacet_link_info info = tacet_train_link_info(t, l);
+            double *from = &w->twist[info.from], *to = &w->twist[info.to];
+            double y = w->motion.link_torque_Nm[l].mean /
+                       (info.stiffness_Nm_per_rad * tacet_train_node_ratio(t, info.to));
+            if (isnan(*from) && !isnan(*to)) *from = *to + y;
+            if (isnan(*to) && !isnan(*from)) *to = *from - y;
+        }
+}
+
 // Piston torque of a motion that came from the march: from its actual angles, speeds and
-// accelerations. scratch: angle -> w->angle; a' and a'' in turn.
-void motion_piston(tacet_workspace *w, double W, unsigned revolutions, size_t n_lines)
+// accelerations. Scratch: w->angle for a, a' and a'' in turn.
+tacet_status motion_piston(tacet_workspace *w, double W, unsigned revolutions, size_t n_lines)
 {
     const tacet_model *m = w->m;
     const tacet_transform *t = model_transform(m, n_lines, PEAK_OVERSAMPLE);
     size_t n = tacet_transform_samples(t);
     double base = W / revolutions;
+    twist_statically(w);
     for (size_t i = 0; i < m->n_throws; i++) {
         const tacet_spectrum *angle = &w->motion.angle_rad[m->throw_node[i]];
         double share = w->friction_Nm * m->throw_n_slots[i] / tacet_engine_cylinders(m->engine);
+        double twist = w->twist[m->throw_node[i]];
         samples_of(w, t, angle, 0, base, w->angle);
         for (size_t k = 0; k < n; k++)
-            w->angle[k] += 2 * M_PI * revolutions * (double)k / (double)n;
-        (void)workspace_drive(w, i, n, w->angle, w->torque_at, w->inertia_at, w->slope_at);
+            w->angle[k] += twist + 2 * M_PI * revolutions * (double)k / (double)n;
+        tacet_status status =
+            workspace_drive(w, i, n, w->angle, w->torque_at, w->inertia_at, w->slope_at);
+        if (status != TACET_OK) return status;
         samples_of(w, t, angle, 1, base, w->angle);
         for (size_t k = 0; k < n; k++) {
             double speed = W + w->angle[k];
@@ -127,6 +143,7 @@ void motion_piston(tacet_workspace *w, double W, unsigned revolutions, size_t n_
             w->samples[k] = w->torque_at[k] - w->inertia_at[k] * w->angle[k];
         tacet_transform_lines(t, w->samples, &w->piston[i]);
     }
+    return TACET_OK;
 }
 
 static void respond(tacet_workspace *w, const tacet_condition *c, size_t n_lines)
@@ -163,6 +180,7 @@ tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_le
         status = motion_constant(w, W, revolutions, n_lines);
     } else if (level == TACET_LEVEL_RIPPLE) {
         how.tolerance = RIPPLE_CHANGE;
+        how.most_passes = RIPPLE_PASSES;
         status = tacet_train_ripple(m->train, W, m->n_throws, m->throw_node, workspace_drive, w,
                                     &how, w->train, &w->motion, w->torque, note);
     }
@@ -170,9 +188,12 @@ tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_le
         piston_from_torque(w, W, revolutions, n_lines);
     } else if (status == TACET_NOT_CONVERGED) { // steady decides
         how.tolerance = STEADY_CLOSURE;
+        how.most_passes = tacet_periodic_default().most_passes;
         status = tacet_train_steady(m->train, W, m->n_throws, m->throw_node, workspace_drive, w,
                                     &how, w->train, &w->motion, note);
-        if (status == TACET_OK) motion_piston(w, W, revolutions, n_lines);
+        if (status == TACET_HARMONIC_ONLY && level == TACET_LEVEL_RIPPLE)
+            status = TACET_NOT_CONVERGED; // as ripple said
+        if (status == TACET_OK) status = motion_piston(w, W, revolutions, n_lines);
     }
     if (status == TACET_OK) respond(w, c, n_lines);
     return status;

@@ -121,7 +121,7 @@ static double largest_difference_db(const tacet_spectrum *a, const tacet_spectru
     return worst;
 }
 
-static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition *c,
+static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition *c, tacet_arena *a,
                                        tacet_agreement *out)
 {
     const tacet_model *m = w->m;
@@ -134,8 +134,6 @@ static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition
     how.n_lines = n_lines;
     how.frozen = true;
     how.tolerance = FROZEN_CLOSURE;
-    tacet_arena *a = tacet_arena_create();
-    if (!a) return TACET_NO_MEMORY;
     tacet_status status = motion_constant(w, c->speed_rad_per_s, revolutions, n_lines);
     if (status == TACET_OK) {
         copy_motion(&w->unit_motion, &w->motion);
@@ -150,7 +148,30 @@ static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition
                                     w->motion.n_links, 0),
                  largest_difference(w->motion.angle_rad, w->unit_motion.angle_rad,
                                     w->motion.n_nodes, 1));
-    tacet_arena_destroy(a);
+    return status;
+}
+
+// Spectra of every band's quantity for the motion in the workspace.
+static tacet_status take_quantities(tacet_workspace *w, tacet_spectrum *out)
+{
+    for (size_t b = 0; b < w->m->n_bands; b++) {
+        const tacet_band *band = &w->m->bands[b];
+        out[b].n_lines = w->response.n_lines;
+        tacet_status status = band->of.what->spectrum(&w->response, band->of.target, &out[b]);
+        if (status != TACET_OK) return status;
+    }
+    return TACET_OK;
+}
+
+static tacet_status create_quantities(const tacet_workspace *w, tacet_arena *a,
+                                      tacet_spectrum **out)
+{
+    size_t n = w->m->n_bands;
+    tacet_status status = TACET_OK;
+    *out = tacet_arena_alloc(a, (n + 1) * sizeof **out);
+    if (!*out) return TACET_NO_MEMORY;
+    for (size_t b = 0; b < n && status == TACET_OK; b++)
+        status = tacet_spectrum_init(&(*out)[b], w->response.n_lines, a);
     return status;
 }
 
@@ -159,41 +180,55 @@ static double levels_difference_db(const tacet_model *m, const tacet_band_level 
 {
     double worst = 0;
     for (size_t i = 0; i < m->n_bands; i++)
-        if (a[i].has_line && b[i].has_line && a[i].nominal > 0 && b[i].nominal > 0)
+        if (a[i].has_line && b[i].has_line)
             worst = fmax(worst, fabs(20 * log10(a[i].dispersed / b[i].dispersed)));
     return worst;
 }
 
-static tacet_status compare_full_model(tacet_workspace *w, const tacet_condition *c,
-                                       tacet_agreement *out)
+// What ripple and march give of one condition.
+typedef struct {
+    tacet_train_motion motion; // ripple's
+    tacet_spectrum *ripple, *march;
+    tacet_band_level ripple_level[TACET_BANDS_MOST], march_level[TACET_BANDS_MOST];
+} both;
+
+static tacet_status solve_ripple(tacet_workspace *w, const tacet_condition *c, tacet_arena *a,
+                                 both *x, bool *converged)
 {
     tacet_solver_note note;
-    tacet_band_level ripple[TACET_BANDS_MOST], steady[TACET_BANDS_MOST];
     tacet_status status = motion_solve(w, c, TACET_LEVEL_RIPPLE, &note);
-    bool converged = status == TACET_OK && strcmp(note.method, "ripple") == 0;
-    if (status == TACET_OK) status = levels_solve(w, c, ripple);
+    if (status == TACET_OK) status = levels_solve(w, c, x->ripple_level);
+    if (status == TACET_OK)
+        status = tacet_train_motion_init(&x->motion, w->m->train, w->response.n_lines, a);
+    if (status == TACET_OK) status = create_quantities(w, a, &x->ripple);
+    if (status == TACET_OK) status = create_quantities(w, a, &x->march);
+    if (status == TACET_OK) status = take_quantities(w, x->ripple);
     if (status != TACET_OK) return status;
-    tacet_arena *a = tacet_arena_create();
-    tacet_train_motion first;
-    status =
-        a ? tacet_train_motion_init(&first, w->m->train, w->response.n_lines, a) : TACET_NO_MEMORY;
-    if (status == TACET_OK) {
-        copy_motion(&first, &w->motion);
-        status = motion_solve(w, c, TACET_LEVEL_STEADY, &note);
-    }
-    if (status == TACET_OK) status = levels_solve(w, c, steady);
-    if (status == TACET_OK) {
-        out->repeats = note.repeats;
-        out->evaluations = note.evaluations;
-        out->closure = note.closure;
-        if (converged)
-            out->full_model_db =
-                fmax(levels_difference_db(w->m, ripple, steady),
-                     largest_difference_db(first.link_torque_Nm, w->motion.link_torque_Nm,
-                                           first.n_links));
-    }
-    tacet_arena_destroy(a);
-    return status;
+    copy_motion(&x->motion, &w->motion);
+    *converged = strcmp(note.method, "ripple") == 0;
+    return TACET_OK;
+}
+
+static tacet_status compare_full_model(tacet_workspace *w, const tacet_condition *c, tacet_arena *a,
+                                       tacet_agreement *out)
+{
+    tacet_solver_note note = {.closure = NAN};
+    both x;
+    bool converged = false;
+    tacet_status status = solve_ripple(w, c, a, &x, &converged);
+    if (status != TACET_OK) return status;
+    status = motion_solve(w, c, TACET_LEVEL_STEADY, &note);
+    out->repeats = note.repeats;
+    out->evaluations = note.evaluations;
+    out->closure = note.closure;
+    if (status == TACET_OK) status = levels_solve(w, c, x.march_level);
+    if (status == TACET_OK) status = take_quantities(w, x.march);
+    if (status != TACET_OK || !converged) return status;
+    double lines = fmax(
+        largest_difference_db(x.motion.link_torque_Nm, w->motion.link_torque_Nm, x.motion.n_links),
+        largest_difference_db(x.ripple, x.march, w->m->n_bands));
+    out->full_model_db = fmax(levels_difference_db(w->m, x.ripple_level, x.march_level), lines);
+    return TACET_OK;
 }
 
 tacet_status tacet_solve_referee(const tacet_model *m, const tacet_condition *c, tacet_workspace *w,
@@ -204,9 +239,13 @@ tacet_status tacet_solve_referee(const tacet_model *m, const tacet_condition *c,
     tacet_status status = tacet_solve(m, c, TACET_LEVEL_RIPPLE, w, &row);
     if (status != TACET_OK) return status;
     if (row.outcome != TACET_SOLVED) return row.outcome == TACET_FAILED ? row.why : TACET_OK;
-    status = compare_same_model(w, c, out);
-    if (status == TACET_OK) status = compare_full_model(w, c, out);
-    out->settled = status == TACET_OK;
+    tacet_arena *a = tacet_arena_create();
+    if (!a) return TACET_NO_MEMORY;
+    tacet_status same = compare_same_model(w, c, a, out), full = TACET_NO_MEMORY;
+    if (same != TACET_NO_MEMORY) full = compare_full_model(w, c, a, out);
+    tacet_arena_destroy(a);
     w->has_response = false; // the spectra are no longer one condition's own
-    return status == TACET_NOT_CONVERGED ? TACET_OK : status;
+    out->settled = same == TACET_OK && full == TACET_OK;
+    if (same != TACET_OK && same != TACET_NOT_CONVERGED) return same;
+    return full == TACET_NOT_CONVERGED ? TACET_OK : full;
 }

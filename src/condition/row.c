@@ -4,8 +4,9 @@
 
 static int decides(const tacet_row *row)
 {
-    if (row->outcome == TACET_UNREACHABLE) return 3;
-    if (row->outcome == TACET_FAILED) return 2;
+    if (row->outcome == TACET_UNREACHABLE) return 4;
+    if (row->outcome == TACET_FAILED) return 3;
+    if (row->worst == TACET_OVER) return 2; // whatever else has no verdict
     return row->worst == TACET_NO_VERDICT ? 1 : 0;
 }
 

@@ -58,7 +58,8 @@ static bool same(double a, double b)
     return memcmp(&a, &b, sizeof a) == 0;
 }
 
-// Fuel of the same engine firing on all cylinders at this speed and demand.
+// Fuel of the same engine firing on all cylinders at this speed and demand; what fails of it is no
+// reference, not a failure of the condition.
 static tacet_status all_fire_duty(tacet_workspace *w, const tacet_condition *c)
 {
     all_fire_memo *memo = &w->all_fire;
@@ -68,11 +69,11 @@ static tacet_status all_fire_duty(tacet_workspace *w, const tacet_condition *c)
     memo->valid = false;
     tacet_status status = tacet_engine_duty(w->m->engine, w->m->all_fire, c->speed_rad_per_s,
                                             c->demand_Nm, w->engine, &duty);
-    if (status != TACET_OK) return status;
+    if (status == TACET_NO_MEMORY) return status;
     *memo = (all_fire_memo){.valid = true,
                             .speed = c->speed_rad_per_s,
                             .demand = c->demand_Nm,
-                            .reachable = duty.reachable,
+                            .reachable = status == TACET_OK && duty.reachable,
                             .fuel_kg_per_s = duty.fuel_kg_per_s};
     return TACET_OK;
 }
@@ -107,6 +108,8 @@ static void judge_none(const tacet_model *m, tacet_why why, tacet_row *out)
     for (size_t i = 0; i < m->n_limits; i++)
         tacet_limit_no_verdict(why, &out->limits[i]);
     out->worst = TACET_NO_VERDICT;
+    out->worst_margin_db = NAN;
+    out->limiting_band = out->limiting_limit = -1;
 }
 
 // over is worse than no verdict, that is worse than near, near worse than clear.
@@ -153,11 +156,12 @@ static tacet_status judge_all(tacet_workspace *w, const tacet_band_level *levels
 
 // A condition that fails is a row that says why; only running out of memory is the call's own
 // failure.
-static tacet_status row_failed(const tacet_model *m, tacet_status status, tacet_row *out)
+static tacet_status row_failed(tacet_workspace *w, tacet_status status, tacet_row *out)
 {
+    w->has_response = false;
     out->outcome = TACET_FAILED;
     out->why = status;
-    judge_none(m, TACET_WHY_FAILED, out);
+    judge_none(w->m, TACET_WHY_FAILED, out);
     return status == TACET_NO_MEMORY ? status : TACET_OK;
 }
 
@@ -165,7 +169,8 @@ tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c, tacet_l
                          tacet_workspace *w, tacet_row *out)
 {
     if (!(c->speed_rad_per_s > 0) || !isfinite(c->speed_rad_per_s) || !isfinite(c->demand_Nm) ||
-        c->roll->cylinders != tacet_engine_cylinders(m->engine))
+        c->roll->cylinders != tacet_engine_cylinders(m->engine) ||
+        c->roll->strokes != tacet_engine_strokes(m->engine) || w->m != m)
         return TACET_BAD_INPUT;
     *out = (tacet_row){.id = c->id,
                        .speed_rad_per_s = c->speed_rad_per_s,
@@ -182,7 +187,7 @@ tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c, tacet_l
     if (status == TACET_OK) status = all_fire_levels(w, c);
     if (status == TACET_OK)
         status = condition_levels(w, c, level, &out->duty, &out->solver, levels);
-    if (status != TACET_OK) return row_failed(m, status, out);
+    if (status != TACET_OK) return row_failed(w, status, out);
     if (!out->duty.reachable) {
         out->outcome = TACET_UNREACHABLE;
         judge_none(m, TACET_WHY_UNREACHABLE, out);
@@ -191,5 +196,5 @@ tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c, tacet_l
     if (w->all_fire.reachable && w->all_fire.fuel_kg_per_s > 0)
         out->fuel_to_all_fire = out->duty.fuel_kg_per_s / w->all_fire.fuel_kg_per_s;
     status = judge_all(w, levels, out);
-    return status == TACET_OK ? TACET_OK : row_failed(m, status, out);
+    return status == TACET_OK ? TACET_OK : row_failed(w, status, out);
 }

@@ -1,6 +1,8 @@
 #include "condition/internal.h"
 #include <stdlib.h>
 
+#define MARCH_ORDER 24
+
 static tacet_status spectra_create(tacet_spectrum **out, size_t n, size_t n_lines, tacet_arena *a)
 {
     *out = tacet_arena_alloc(a, n * sizeof **out);
@@ -10,12 +12,6 @@ static tacet_status spectra_create(tacet_spectrum **out, size_t n, size_t n_line
         if (status != TACET_OK) return status;
     }
     return TACET_OK;
-}
-
-// Lines of a repeat up to the highest counted band edge, never more than the repeat has.
-static size_t most_band_lines(const tacet_model *m)
-{
-    return m->most_lines;
 }
 
 static tacet_status create_spectra(tacet_workspace *w)
@@ -30,8 +26,8 @@ static tacet_status create_spectra(tacet_workspace *w)
     if (status == TACET_OK) status = spectra_create(&w->unit_piston, m->n_throws, lines, w->arena);
     if (status == TACET_OK) status = spectra_create(&w->fired, n_slots, lines, w->arena);
     if (status == TACET_OK)
-        status = spectra_create(&w->transfers.transfer, (m->n_bands + 1) * m->n_throws,
-                                most_band_lines(m), w->arena);
+        status =
+            spectra_create(&w->transfers.transfer, (m->n_bands + 1) * m->n_throws, lines, w->arena);
     if (status == TACET_OK) status = tacet_spectrum_init(&w->unit, lines, w->arena);
     if (status == TACET_OK) status = tacet_spectrum_init(&w->quantity, lines, w->arena);
     return status;
@@ -42,7 +38,7 @@ static tacet_status create_scratch(tacet_workspace *w)
     const tacet_model *m = w->m;
     const tacet_transform *longest = model_transform(m, m->most_lines, PEAK_OVERSAMPLE);
     size_t n = tacet_transform_samples(longest);
-    size_t most = m->most_lines + CYCLIC_INTERVALS + 2;
+    size_t most = m->most_lines + CYCLIC_MOST + 2;
     w->samples = tacet_transform_buffer(longest);
     w->angle = tacet_arena_alloc(w->arena, n * sizeof(double));
     w->torque_at = tacet_arena_alloc(w->arena, n * sizeof(double));
@@ -50,13 +46,21 @@ static tacet_status create_scratch(tacet_workspace *w)
     w->slope_at = tacet_arena_alloc(w->arena, n * sizeof(double));
     w->order = tacet_arena_alloc(w->arena, most * sizeof *w->order);
     w->pulse = tacet_arena_alloc(w->arena, most * sizeof *w->pulse);
-    w->phase = tacet_arena_alloc(w->arena, most * sizeof *w->phase);
+    w->twist = tacet_arena_alloc(w->arena, tacet_train_nodes(m->train) * sizeof(double));
     w->slot_transfer = tacet_arena_alloc(w->arena, tacet_engine_cylinders(m->engine) *
                                                        sizeof(const tacet_spectrum *));
     return w->samples && w->angle && w->torque_at && w->inertia_at && w->slope_at && w->order &&
-                   w->pulse && w->phase && w->slot_transfer
+                   w->pulse && w->twist && w->slot_transfer
                ? TACET_OK
                : TACET_NO_MEMORY;
+}
+
+// The march samples a turn finely however few lines are asked for: memory for as many lines as its
+// samples take.
+static size_t march_lines(const tacet_model *m)
+{
+    size_t least = (size_t)MARCH_ORDER * m->most_revolutions;
+    return m->most_lines > least ? m->most_lines : least;
 }
 
 tacet_status workspace_build(const tacet_model *m, tacet_workspace **out)
@@ -69,7 +73,7 @@ tacet_status workspace_build(const tacet_model *m, tacet_workspace **out)
     if (status == TACET_OK) status = create_scratch(w);
     if (status == TACET_OK) status = tacet_engine_work_create(m->engine, &w->engine);
     if (status == TACET_OK)
-        status = tacet_train_work_create(m->train, m->most_lines, m->n_throws, &w->train);
+        status = tacet_train_work_create(m->train, march_lines(m), m->n_throws, &w->train);
     if (status == TACET_OK)
         status = tacet_train_work_create(m->train, m->most_lines, 1, &w->train_unit);
     if (status != TACET_OK) {

@@ -88,7 +88,8 @@ struct tacet_engine_work {
     double fired_Nm[2 * CYLINDER_SAMPLES - 1]; // fired cycle per full charge, from gas-exchange top
 };
 
-// Counts the halves of a roll by kind and charge. TACET_REACH_RUN: a run is too long for the table.
+// Counts the halves of a roll by kind and charge. TACET_REACH_RUN: a run is too long for the table;
+// TACET_REACH_CYLINDER: one skips that may not.
 tacet_reach engine_gather(const tacet_engine *en, const tacet_roll *r, tacet_engine_work *w);
 // Charge of a cycle relative to the common one. cycle: of the fire, or of a skip in `slot`.
 double engine_share(const tacet_engine *en, const tacet_roll *r, unsigned slot, unsigned cycle);

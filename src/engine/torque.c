@@ -3,6 +3,9 @@
 #include <complex.h>
 
 #define PER_RAD (180 / M_PI)
+// No repeat turns that far, but a march that runs away does; beyond it rounding would step over the
+// ends of the tables.
+#define MOST_DEG 1e9
 
 typedef struct { // the half in which the last angle lay; angles in degrees after the firing top of
                  // cycle 0
@@ -11,12 +14,12 @@ typedef struct { // the half in which the last angle lay; angles in degrees afte
     unsigned from_top; // degrees from the piston top before it to where the half starts
 } cursor;
 
-// False: the angle is not finite.
+// False: the angle is not finite, or out of all reach.
 static bool find_half(const tacet_engine *en, const tacet_engine_work *w, unsigned slot, double deg,
                       cursor *at)
 {
     double half = en->half_degrees, repeat = half * 2 * w->cycles;
-    if (!isfinite(deg)) return false;
+    if (!(fabs(deg) <= MOST_DEG)) return false;
     double within = deg - repeat * floor(deg / repeat);
     unsigned k = (unsigned)(within / half);
     if (k >= 2 * w->cycles) k = 2 * w->cycles - 1;
@@ -115,7 +118,7 @@ void tacet_engine_inertia(const tacet_engine *en, unsigned slot, size_t n, const
     for (size_t k = 0; k < n; k++) {
         double deg = angle_rad[k] * PER_RAD - top, within = deg - first, slope;
         if (!(within >= 0 && within < 360)) {
-            if (!isfinite(deg)) {
+            if (!(fabs(deg) <= MOST_DEG)) {
                 inertia_kgm2[k] = slope_kgm2_per_rad[k] = NAN;
                 continue;
             }

@@ -87,6 +87,8 @@ tacet_reach engine_gather(const tacet_engine *en, const tacet_roll *r, tacet_eng
     for (unsigned slot = 0; slot < r->cylinders; slot++)
         for (unsigned c = 0; c < r->cycles; c++) {
             unsigned up, down;
+            if (!en->slot[slot].may_skip && tacet_roll_cycle(r, slot, c).tenths == 0)
+                return TACET_REACH_CYLINDER;
             if (!halves_of_cycle(&en->table.halves, r, slot, c, &up, &down)) return TACET_REACH_RUN;
             engine_group *g = group_of(w, engine_share(en, r, slot, c));
             count(g, up);

@@ -42,6 +42,7 @@ static const tacet_quantity quantities[] = {
      .unit = "1",
      .doc = "speed of the flywheel over its mean; a limit is on (highest - lowest) / mean",
      .statistic = TACET_STAT_PP,
+     .over_mean_speed = true,
      .spectrum = irregularity},
     {.name = "damper-heat",
      .unit = "W",

@@ -416,7 +416,7 @@ tacet_status tacet_train_steady(const tacet_train *t, double speed, size_t n_thr
     tacet_status status = periodic_check(t, speed, n_throws, throw_node, how, w);
     if (status != TACET_OK) return status;
     for (size_t e = 0; e < t->n_links; e++)
-        if (t->constant_loss[e]) return TACET_BAD_INPUT;
+        if (t->constant_loss[e]) return TACET_HARMONIC_ONLY;
     steady s = {.w = w, .s = &w->steady, .how = how, .out = out, .note = note};
     s.period_s = 2 * M_PI * how->revolutions / speed;
     s.drive = (march_drive){.m = &w->steady.model,

@@ -46,6 +46,7 @@ static void test_status_texts(void **state)
     (void)state;
     assert_string_equal(tacet_status_text(TACET_OK), "ok");
     assert_string_equal(tacet_status_text(TACET_STOPPED), "stopped");
+    assert_string_equal(tacet_status_text(TACET_HARMONIC_ONLY), "harmonic only");
     assert_string_equal(tacet_status_text((tacet_status)99), "unknown status");
     tacet_error e;
     char long_text[600];

@@ -58,6 +58,28 @@ static void test_torque_is_pressure_times_lever(void **state)
     engine_cleared(&p);
 }
 
+// A march that runs away asks for any angle there is: the answer is a torque or NAN, from inside
+// the tables.
+static void test_torque_angles_out_of_all_reach(void **state)
+{
+    (void)state;
+    tacet_engine_def d = demo_six();
+    tacet_roll *r;
+    engine_pair p = loaded(&d, "xx.x", &r);
+    for (double angle = 1; angle < 1e300; angle *= 1.37)
+        for (int sign = -1; sign <= 1; sign += 2) {
+            double a = sign * angle, t = 0, J = 0, s = 0, J1, s1;
+            bool far = angle * 180 / M_PI > 1.001e9;
+            tacet_engine_drive(p.engine, p.work, 2, 1, &a, &t, &J, &s);
+            tacet_engine_inertia(p.engine, 2, 1, &a, &J1, &s1);
+            assert_true(far ? isnan(t) && isnan(J) && isnan(s) && isnan(J1) && isnan(s1)
+                            : fabs(t) < 1e4 && J >= 0 && J < 0.1 && J1 >= 0 && J1 < 0.1);
+            assert_true(isnan(pressure_at(&p, 2, a)) == far && isnan(torque_at(&p, 2, a)) == far);
+        }
+    tacet_roll_destroy(r);
+    engine_cleared(&p);
+}
+
 // The repeat repeats, at any angle; many angles in one call give what single calls give; what is
 // not finite comes back as such.
 static void test_torque_angles(void **state)
@@ -266,6 +288,7 @@ int main(void)
         cmocka_unit_test(test_torque_is_pressure_times_lever),
         cmocka_unit_test(test_torque_angles),
         cmocka_unit_test(test_torque_uneven),
+        cmocka_unit_test(test_torque_angles_out_of_all_reach),
         cmocka_unit_test(test_torque_is_smooth),
         cmocka_unit_test(test_torque_between_degrees),
         cmocka_unit_test(test_torque_inertia),
