@@ -276,6 +276,27 @@ static void test_duty_charge_factor(void **state)
     engine_cleared(&p);
 }
 
+// The most fuel by fuel is the air over the lowest air/fuel ratio; by charge it is the mixture over
+// one more. The same cylinder full of gas but for the little that residual gas differs.
+static void test_duty_most_fuel(void **state)
+{
+    (void)state;
+    tacet_engine_def d = demo_six();
+    d.cycle.peak_pressure_Pa = NAN;
+    engine_pair charge = engine_made(&d, 1400, 1600, 0);
+    d.cycle.load_by = TACET_LOAD_FUEL;
+    engine_pair fuel = engine_made(&d, 1400, 1600, 0);
+    tacet_duty a = duty_of(&charge, "x", 1500, 1e6), b = duty_of(&fuel, "x", 1500, 1e6);
+    assert_true(a.reach == TACET_REACH_TOO_HIGH && b.reach == TACET_REACH_TOO_HIGH);
+    assert_near(b.charge_ratio, 1, 1e-12, 0);
+    assert_near(b.fuel_W / a.fuel_W, 16.6 / 15.6, 0, 5e-3);
+    // a cylinder full at manifold pressure and temperature, within a few per cent
+    double mass = 6 * 185e3 * M_PI / 4 * 0.108 * 0.108 * 0.130 / (287 * 320);
+    assert_near(b.fuel_kg_per_s, mass / 15.6 * 1500 / 120, 0, 0.03);
+    engine_cleared(&charge);
+    engine_cleared(&fuel);
+}
+
 // Load by fuel: air at the highest pressure, fuel from the demand; less fuel burns in more air, so
 // peak pressure stays high at low load; zero fuel motors the engine.
 static void test_duty_by_fuel(void **state)
@@ -308,6 +329,7 @@ int main(void)
         cmocka_unit_test(test_duty_peak_in_skip),  cmocka_unit_test(test_duty_refuses),
         cmocka_unit_test(test_duty_is_pure),       cmocka_unit_test(test_duty_placements),
         cmocka_unit_test(test_duty_charge_factor), cmocka_unit_test(test_duty_by_fuel),
+        cmocka_unit_test(test_duty_most_fuel),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

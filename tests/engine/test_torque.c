@@ -218,6 +218,24 @@ static void test_torque_inertia(void **state)
     }
 }
 
+// With a pin offset a stroke is a little longer than two cranks: sqrt((l+r)^2 - e^2) -
+// sqrt((l-r)^2 - e^2), closed form; displacement and compression ratio are of that stroke.
+static void test_torque_displacement(void **state)
+{
+    (void)state;
+    tacet_engine_def d = demo_v8();
+    d.pin_offset_m = 0.02;
+    tacet_engine *en = NULL;
+    assert_int_equal(tacet_engine_create(&d, &en, NULL), TACET_OK);
+    double stroke = sqrt(0.201 * 0.201 - 4e-4) - sqrt(0.109 * 0.109 - 4e-4), x, dx, ddx;
+    assert_true(stroke > 0.0925);
+    assert_near(tacet_engine_displacement(en), 8 * M_PI / 4 * 0.01 * stroke, 0, 1e-14);
+    double bottom = M_PI + asin(0.02 / 0.109) - asin(0.02 / 0.201), dead = en->cyl.clearance_m3;
+    tacet_slider_at(tacet_engine_slider(en), bottom, &x, &dx, &ddx);
+    assert_near((dead + M_PI / 4 * 0.01 * x) / dead, 10.8, 0, 1e-13);
+    tacet_engine_destroy(en);
+}
+
 // All three at once are what they are one after another, added to what was there; 2-stroke halves
 // start at bottom (test_traces.c has such an engine).
 static void test_torque_drive(void **state)
@@ -292,6 +310,7 @@ int main(void)
         cmocka_unit_test(test_torque_is_smooth),
         cmocka_unit_test(test_torque_between_degrees),
         cmocka_unit_test(test_torque_inertia),
+        cmocka_unit_test(test_torque_displacement),
         cmocka_unit_test(test_torque_drive),
         cmocka_unit_test(test_torque_pulse),
     };
