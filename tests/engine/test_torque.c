@@ -147,7 +147,8 @@ static void test_torque_is_smooth(void **state)
         tacet_engine_def d = demo_six();
         d.skip.trapped = trapped;
         tacet_roll *r;
-        engine_pair p = loaded(&d, "x.5.", &r);
+        engine_pair p = loaded(&d, "x.5..", &r);
+        assert_int_equal(tacet_roll_fires_of(r, 1), 2); // a full and a half charge, and skips
         double h = 1e-5 * DEG, top = tacet_engine_firing_angle(p.engine, 1);
         for (unsigned deg = 0; deg < 360 * r->revolutions; deg++) {
             double a = top + deg * DEG, at = torque_at(&p, 1, a);
