@@ -11,6 +11,7 @@
 #define WIDEST_DEG  5.0  // between rows
 #define ANGLE_SLACK 1e-6 // deg
 #define FOREVER     1000 // run of a cylinder that never fires
+#define ANY_NEXT    2
 #define LEAST_KPA   0.1
 #define MOST_KPA    100000.0
 
@@ -218,7 +219,8 @@ static size_t different(const reader *r, size_t offset, double *out)
 }
 
 // The trace that stands for a cycle: of the given load and speed, the longest run not above the
-// one asked, and of those the one that says what comes next before one that does not.
+// one asked, and of those the one that says what comes next before one that does not. ANY_NEXT:
+// whatever comes next, which the half up does not know yet.
 static const trace *find(const reader *r, bool fired, double load, double rpm, unsigned run,
                          int next)
 {
@@ -228,7 +230,7 @@ static const trace *find(const reader *r, bool fired, double load, double rpm, u
         if (t->fired != fired || t->run > run) continue;
         if (!isnan(t->load) && t->load != load) continue;
         if (!isnan(t->rpm) && t->rpm != rpm) continue;
-        if (t->next >= 0 && t->next != next) continue;
+        if (t->next >= 0 && t->next != next && next != ANY_NEXT) continue;
         if (!best || t->run > best->run || (t->run == best->run && t->next > best->next)) best = t;
     }
     return best;
@@ -303,12 +305,13 @@ static tacet_status put_cycle(reader *r, tacet_engine *en, bool fires, unsigned 
     bool after_fire = fires ? run == 0 : run == 1 && !forever;
     const trace *before = after_fire ? find(r, true, load, rpm, 0, fires)
                                      : find(r, false, load, rpm, previous, fires);
+    const trace *first = find(r, fires, load, rpm, asked, ANY_NEXT);
+    if (first && before)
+        put(en, first, before, fires ? halves_up_fire(h, run) : halves_up_skip(h, run), s, c);
     for (int next = 0; next < 2; next++) {
         const trace *t = find(r, fires, load, rpm, asked, next);
         if (!t) return missing(r, fires, load, rpm, run, next);
         if (!before) return missing(r, after_fire, load, rpm, after_fire ? 0 : previous, fires);
-        unsigned up = fires ? halves_up_fire(h, run) : halves_up_skip(h, run);
-        if (next == fires) put(en, t, before, up, s, c);
         put(en, t, before, fires ? halves_down_fire(h, run, next) : halves_down_skip(h, run, next),
             s, c);
     }

@@ -12,15 +12,21 @@ static void show(const tacet_problems *problems)
     }
 }
 
-static void assemble(demo *d, tacet_problems *problems)
+static tacet_status assemble(demo *d, tacet_problems *problems, tacet_error *e)
 {
-    tacet_error e = {0};
     show(problems);
     assert_non_null(d->study);
     tacet_problems_destroy(problems);
-    tacet_status status = tacet_model_create(d->study, &d->model, &e);
-    if (status == TACET_OK) status = tacet_model_prepare(d->model, &e);
+    tacet_status status = tacet_model_create(d->study, &d->model, e);
+    if (status == TACET_OK) status = tacet_model_prepare(d->model, e);
     if (status == TACET_OK) status = tacet_workspace_create(d->model, &d->work);
+    return status;
+}
+
+static void assemble_well(demo *d, tacet_problems *problems)
+{
+    tacet_error e = {0};
+    tacet_status status = assemble(d, problems, &e);
     if (status != TACET_OK) print_error("%s\n", e.text);
     assert_int_equal(status, TACET_OK);
 }
@@ -28,11 +34,16 @@ static void assemble(demo *d, tacet_problems *problems)
 void demo_open(demo *d, const char *study_name)
 {
     char path[512];
-    *d = (demo){0};
     snprintf(path, sizeof path, "%s/patterns/%s", TEST_ROOT, study_name);
+    demo_open_path(d, path);
+}
+
+void demo_open_path(demo *d, const char *path)
+{
+    *d = (demo){0};
     tacet_problems *problems = tacet_problems_create();
     (void)!tacet_study_read(path, problems, &d->study);
-    assemble(d, problems);
+    assemble_well(d, problems);
 }
 
 void demo_open_text(demo *d, const char *text)
@@ -40,7 +51,25 @@ void demo_open_text(demo *d, const char *text)
     *d = (demo){0};
     tacet_problems *problems = tacet_problems_create();
     (void)!tacet_study_read_text(text, strlen(text), "text.yaml", problems, &d->study);
-    assemble(d, problems);
+    assemble_well(d, problems);
+}
+
+tacet_status demo_try_text(demo *d, const char *text, tacet_error *e)
+{
+    *d = (demo){0};
+    *e = (tacet_error){0};
+    tacet_problems *problems = tacet_problems_create();
+    (void)!tacet_study_read_text(text, strlen(text), "text.yaml", problems, &d->study);
+    return assemble(d, problems, e);
+}
+
+void demo_replace(char *text, const char *what, const char *with)
+{
+    char *at = strstr(text, what);
+    if (!at) fail_msg("no '%s' in the study", what);
+    size_t from = strlen(what), to = strlen(with);
+    memmove(at + to, at + from, strlen(at + from) + 1);
+    memcpy(at, with, to);
 }
 
 char *demo_text(const char *study_name)

@@ -11,7 +11,12 @@ typedef struct {
 } demo;
 void demo_open(demo *d, const char *study_name); // a file of patterns/; fails the test on a problem
 void demo_open_text(demo *d, const char *text);  // a study from memory
-char *demo_text(const char *study_name);         // the file's text; free it
+void demo_open_path(demo *d, const char *path);  // a study from a file anywhere
+// A study from memory that must read well; what create or prepare says of it.
+tacet_status demo_try_text(demo *d, const char *text, tacet_error *e);
+char *demo_text(const char *study_name); // the file's text; free it
+// Puts `with` in place of the first `what`, which must be there; the text has room for it.
+void demo_replace(char *text, const char *what, const char *with);
 void demo_close(demo *d);
 tacet_roll *demo_roll(const demo *d, const char *word);
 tacet_condition demo_condition(const demo *d, const tacet_roll *roll, double speed_rpm);
