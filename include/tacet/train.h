@@ -156,7 +156,7 @@ typedef struct {
     unsigned revolutions; // of the repeat
     size_t n_lines;       // of the result
     bool frozen;          // steady: torque at W t and mean inertia instead of the throw's own angle
-    double tolerance;     // relative: closure (steady; 0: 1e-6), pass difference (ripple; 0: 1e-6)
+    double tolerance;     // relative: closure (steady; 0: 1e-6), error left over (ripple; 0: 1e-6)
     unsigned most_passes; // on all samples (ripple), repeats (steady); 8
 } tacet_periodic;
 tacet_periodic tacet_periodic_default(void);

@@ -150,6 +150,7 @@ void harmonic_factors(tacet_train_work *w, double speed, unsigned revolutions, s
 typedef struct {
     tacet_train_work *w;
     size_t first, n;     // lines first + 1 .. first + n
+    bool driven_only;    // leave out nodes that no torque passes, and all links
     double doubt[CHUNK]; // 0 while all is finite
 } chunk;
 
@@ -250,10 +251,12 @@ static bool solve_chunk(chunk *c, size_t n_throws, const size_t *throw_node,
     turn_root(c, out);
     for (size_t k = t->n_links; k-- > 0;) {
         size_t node = t->leaf[k], link = t->up[node];
+        if (c->driven_only && !w->driven[node]) continue; // nor does any node beyond it
         backward(c, k, node, t->parent[node]);
         const double *tr = w->force.re + node * CHUNK, *ti = w->force.im + node * CHUNK;
         store(c, w->angle.re + node * CHUNK, w->angle.im + node * CHUNK, t->ratio[node],
               &out->angle_rad[node]);
+        if (c->driven_only) continue;
         store(c, tr, ti, t->sign[node] / t->ratio[t->link[link].to], &out->link_torque_Nm[link]);
     }
     double doubt = 0;
@@ -311,23 +314,31 @@ static tacet_status check(const tacet_train_work *w, double speed, size_t n_thro
     return TACET_OK;
 }
 
-tacet_status tacet_train_harmonic(const tacet_train *t, double speed, size_t n_throws,
-                                  const size_t *throw_node, const tacet_spectrum *torque,
-                                  tacet_train_work *w, tacet_train_motion *out)
+tacet_status harmonic_solve(tacet_train_work *w, double speed, size_t n_throws,
+                            const size_t *throw_node, const tacet_spectrum *torque,
+                            bool driven_only, tacet_train_motion *out)
 {
-    if (w->t != t) return TACET_BAD_INPUT;
     tacet_status status = check(w, speed, n_throws, throw_node, torque);
     if (status != TACET_OK) return status;
     size_t n_lines = torque[0].n_lines;
     harmonic_factors(w, speed, torque[0].revolutions, n_lines);
     mark_driven(w, n_throws, throw_node);
-    spectra_shape(out->angle_rad, t->n, torque[0].revolutions, n_lines);
-    spectra_shape(out->link_torque_Nm, t->n_links, torque[0].revolutions, n_lines);
+    spectra_shape(out->angle_rad, w->t->n, torque[0].revolutions, n_lines);
+    spectra_shape(out->link_torque_Nm, w->t->n_links, torque[0].revolutions, n_lines);
     carry_means(w, n_throws, throw_node, torque, out);
     bool finite = true;
     for (size_t first = 0; first < n_lines; first += CHUNK) {
-        chunk c = {.w = w, .first = first, .n = n_lines - first < CHUNK ? n_lines - first : CHUNK};
+        chunk c = {.w = w, .first = first, .driven_only = driven_only};
+        c.n = n_lines - first < CHUNK ? n_lines - first : CHUNK;
         finite = solve_chunk(&c, n_throws, throw_node, torque, out) && finite;
     }
     return finite ? TACET_OK : TACET_NOT_FINITE;
+}
+
+tacet_status tacet_train_harmonic(const tacet_train *t, double speed, size_t n_throws,
+                                  const size_t *throw_node, const tacet_spectrum *torque,
+                                  tacet_train_work *w, tacet_train_motion *out)
+{
+    if (w->t != t) return TACET_BAD_INPUT;
+    return harmonic_solve(w, speed, n_throws, throw_node, torque, false, out);
 }

@@ -16,7 +16,7 @@
 // resolve; only passes on all samples decide whether the result stands. A pass that changed things
 // by c, the one before by c / rho, leaves an error of about c rho / (1 - rho); passes take turns in
 // contracting well and badly, so a few times that is reckoned with.
-#include "train/work.h"
+#include "train/ripple.h"
 #include <math.h>
 #include <string.h>
 
@@ -30,87 +30,47 @@
 #define TOLERANCE      1e-6 // where none is asked for
 #define SLOW           0.5  // above, what is left cannot be told from the last changes
 #define CAUTION        4    // times the error that steady contraction would leave
-#define DIVERGED       1e3  // change over size of the torque lines
-
-typedef struct {
-    tacet_train_work *w;
-    double speed;
-    size_t n_throws;
-    const size_t *node;
-    tacet_drive *drive;
-    const void *who;
-    const tacet_periodic *how;
-    tacet_train_motion *out;
-    tacet_solver_note *note;
-    const tacet_transform *grid; // of this pass
-    size_t n_lines;              // of this pass
-} ripple;
+#define FIRST          0.5  // of a first pass's change that is left, at most, where passes contract
+#define MOVE           100 // times what is enough: moving samples by so much is right to a hundredth of it
+#define DIVERGED       1e3 // change over size of the torque lines
 
 // ---- torque -----------------------------------------------------------------------------------
 
-// factor^power times the lines of a throw's angle, as samples; power counts derivatives.
-static void angle_samples(ripple *r, size_t i, int power, double *out)
+// Sizes of the largest change and of the largest line so far, squared.
+typedef struct {
+    double moved, largest;
+} changes;
+
+static void look_at(changes *c, double weight, double complex before, double complex after)
 {
-    ripple_work *m = &r->w->ripple;
-    double base = r->speed / r->how->revolutions;
-    const double complex *line = m->angle[i].line;
-    m->signal.n_lines = r->n_lines;
-    m->signal.mean = 0;
-    for (size_t h = 1; h <= r->n_lines; h++) {
-        double w = base * (double)h;
-        double complex factor = power == 0 ? 1 : power == 1 ? I * w : -w * w;
-        m->signal.line[h] = factor * line[h];
-    }
-    tacet_transform_samples_of(r->grid, &m->signal, out);
+    double re = creal(after) - creal(before), im = cimag(after) - cimag(before);
+    double moved = weight * (re * re + im * im);
+    double size = weight * (creal(after) * creal(after) + cimag(after) * cimag(after));
+    if (moved > c->moved) c->moved = moved;
+    if (size > c->largest) c->largest = size;
 }
 
-// Spectrum of F of throw i into w->ripple.fresh.
-static tacet_status sample_torque(ripple *r, size_t i)
+static double relative(const changes *c)
 {
-    tacet_train_work *w = r->w;
-    size_t n = tacet_transform_samples(r->grid);
-    double *F = w->buffer[0], *rate = w->buffer[1], *bend = w->buffer[2];
-    double turn = 2 * M_PI * r->how->revolutions / (double)n;
-    double offset = w->ripple.offset[r->node[i]], mean = w->t->added[r->node[i]];
-    angle_samples(r, i, 0, F);
-    angle_samples(r, i, 1, rate);
-    angle_samples(r, i, 2, bend);
-    for (size_t k = 0; k < n; k++)
-        w->at_angle[k] = turn * (double)k + offset + F[k];
-    tacet_status status =
-        r->drive(r->who, i, n, w->at_angle, w->at_torque, w->at_inertia, w->at_slope);
-    if (status != TACET_OK) return status;
-    for (size_t k = 0; k < n; k++) {
-        double speed = r->speed + rate[k];
-        F[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * speed * speed -
-               (w->at_inertia[k] - mean) * bend[k];
-    }
-    w->ripple.fresh.n_lines = r->n_lines;
-    tacet_transform_lines(r->grid, F, &w->ripple.fresh);
-    r->note->evaluations += (unsigned)n;
-    return TACET_OK;
+    return c->largest > 0 ? sqrt(c->moved / c->largest) : 0;
 }
 
 // New torque of all throws; the largest change of a line over the largest line.
 static tacet_status renew_torque(ripple *r, double *change)
 {
     ripple_work *m = &r->w->ripple;
-    double largest = 0, moved = 0;
+    changes all = {0, 0};
     for (size_t i = 0; i < r->n_throws; i++) {
-        tacet_status status = sample_torque(r, i);
+        tacet_status status = ripple_torque(r, i);
         if (status != TACET_OK) return status;
         tacet_spectrum *old = &m->torque[i];
+        for (size_t h = 1; h <= r->n_lines; h++)
+            look_at(&all, 1, old->line[h], m->fresh.line[h]);
         old->n_lines = r->n_lines;
         old->mean = m->fresh.mean;
-        for (size_t h = 1; h <= r->n_lines; h++) {
-            double complex d = m->fresh.line[h] - old->line[h];
-            old->line[h] = m->fresh.line[h];
-            moved = fmax(moved, creal(d) * creal(d) + cimag(d) * cimag(d));
-            largest = fmax(largest, creal(old->line[h]) * creal(old->line[h]) +
-                                        cimag(old->line[h]) * cimag(old->line[h]));
-        }
+        memcpy(old->line + 1, m->fresh.line + 1, r->n_lines * sizeof *old->line);
     }
-    *change = largest > 0 ? sqrt(moved / largest) : 0;
+    *change = relative(&all);
     return TACET_OK;
 }
 
@@ -136,7 +96,7 @@ static bool renew_angle(ripple *r, double *change)
 {
     ripple_work *m = &r->w->ripple;
     size_t low = (size_t)LOW_ORDER * r->how->revolutions;
-    double largest = 0, moved = 0;
+    changes all = {0, 0};
     if (low > r->n_lines) low = r->n_lines;
     for (size_t h = 1; h <= low; h++) {
         m->rest[h] = 0;
@@ -148,17 +108,14 @@ static bool renew_angle(ripple *r, double *change)
     for (size_t i = 0; i < r->n_throws; i++) {
         const double complex *found = r->out->angle_rad[r->node[i]].line;
         double complex *line = m->angle[i].line;
+        for (size_t h = 1; h <= r->n_lines; h++)
+            look_at(&all, (double)h * (double)h, line[h], found[h]);
         m->angle[i].n_lines = r->n_lines;
-        for (size_t h = 1; h <= r->n_lines; h++) {
-            double complex d = found[h] - line[h];
-            double square = (double)h * (double)h;
-            moved = fmax(moved, square * (creal(d) * creal(d) + cimag(d) * cimag(d)));
-            largest = fmax(largest, square * (creal(found[h]) * creal(found[h]) +
-                                              cimag(found[h]) * cimag(found[h])));
-            line[h] = h <= low ? found[h] + (m->step[h] - m->rest[h]) : found[h];
-        }
+        memcpy(line + 1, found + 1, r->n_lines * sizeof *line);
+        for (size_t h = 1; h <= low; h++)
+            line[h] += m->step[h] - m->rest[h];
     }
-    *change = largest > 0 ? sqrt(moved / largest) : 0;
+    *change = relative(&all);
     return true;
 }
 
@@ -176,7 +133,7 @@ static tacet_status find_transfer(ripple *r, size_t n)
             m->torque[i].line[h] = share;
     }
     tacet_status status =
-        tacet_train_harmonic(r->w->t, r->speed, r->n_throws, r->node, m->torque, r->w, r->out);
+        harmonic_solve(r->w, r->speed, r->n_throws, r->node, m->torque, true, r->out);
     for (size_t h = 1; h <= n; h++) {
         m->transfer[h] = 0;
         for (size_t i = 0; i < r->n_throws; i++)
@@ -209,8 +166,8 @@ static tacet_status pass(ripple *r, double *change)
     double torque = 0, angle = 0;
     tacet_status status = renew_torque(r, &torque);
     if (status != TACET_OK) return status;
-    status = tacet_train_harmonic(r->w->t, r->speed, r->n_throws, r->node, r->w->ripple.torque,
-                                  r->w, r->out);
+    status =
+        harmonic_solve(r->w, r->speed, r->n_throws, r->node, r->w->ripple.torque, true, r->out);
     if (status != TACET_OK) return status;
     twist_statically(r->w);
     if (!renew_angle(r, &angle)) return TACET_NOT_CONVERGED;
@@ -219,20 +176,25 @@ static tacet_status pass(ripple *r, double *change)
     return *change < DIVERGED ? TACET_OK : TACET_NOT_CONVERGED;
 }
 
-// Passes on one grid until `enough` or `most` of them; the last one's remaining error.
+// Passes on one grid until `enough` or `most` of them; the last one's remaining error. `error`
+// comes in as what the coarser grid left: where that was little, passes contract, and the first one
+// on this grid need not be followed by another to see it. Torque is sampled anew as long as moving
+// its samples could matter.
 static tacet_status passes(ripple *r, size_t samples, unsigned most, double enough, double *error)
 {
     tacet_status status = TACET_OK;
     size_t resolved = samples / FEWER;
-    double change = INFINITY;
+    double change = INFINITY, first = *error <= HALF_ENOUGH ? FIRST : 1;
     *error = INFINITY;
     r->grid = work_transform(r->w, samples);
     r->n_lines = resolved < r->how->n_lines ? resolved : r->how->n_lines;
     for (unsigned i = 0; i < most && status == TACET_OK && *error > enough; i++) {
         double before = change;
+        r->again = i > 0 && change <= MOVE * enough;
         status = pass(r, &change);
-        double rho = change / before; // 0 in the first pass
-        *error = i > 0 && rho < SLOW ? fmin(change, CAUTION * change * rho / (1 - rho)) : change;
+        double rho = change / before;
+        *error = i == 0 ? first * change : change;
+        if (i > 0 && rho < SLOW) *error = fmin(change, CAUTION * change * rho / (1 - rho));
     }
     return status;
 }
@@ -243,7 +205,7 @@ static tacet_status converge(ripple *r)
     size_t all = tacet_transform_length(r->how->n_lines, OVERSAMPLING);
     while (all < SAMPLES_A_TURN * turns && all < r->w->most_samples)
         all *= 2;
-    double error, tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
+    double error = INFINITY, tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
     tacet_status status = start(r);
     if (status == TACET_OK && all / 4 >= FEWER * LOW_ORDER * turns)
         status = passes(r, all / 4, QUARTER_PASSES, 0, &error);
@@ -268,7 +230,10 @@ tacet_status ripple_solve(tacet_train_work *w, double speed, size_t n_throws,
                 .how = how,
                 .out = out,
                 .note = note};
-    return converge(&r);
+    tacet_status status = converge(&r);
+    if (status == TACET_OK) // now all nodes and links
+        status = harmonic_solve(w, speed, n_throws, throw_node, w->ripple.torque, false, out);
+    return status;
 }
 
 tacet_status tacet_train_ripple(const tacet_train *t, double speed, size_t n_throws,

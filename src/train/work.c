@@ -77,7 +77,8 @@ static bool reserve_transforms(tacet_train_work *w)
     w->at_torque = numbers(w, w->most_samples);
     w->at_inertia = numbers(w, w->most_samples);
     w->at_slope = numbers(w, w->most_samples);
-    return w->at_angle && w->at_torque && w->at_inertia && w->at_slope;
+    w->ripple.kept = malloc(w->n_throws * ripple_kept_bytes(w->most_samples));
+    return w->at_angle && w->at_torque && w->at_inertia && w->at_slope && w->ripple.kept;
 }
 
 const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples)
@@ -146,6 +147,7 @@ void tacet_train_work_destroy(tacet_train_work *w)
 {
     if (!w) return;
     steady_release(w);
+    free(w->ripple.kept);
     for (size_t i = 0; i < TRANSFORM_KINDS; i++)
         tacet_transform_destroy(w->transform[i]);
     for (size_t i = 0; i < sizeof w->buffer / sizeof *w->buffer; i++)

@@ -37,6 +37,7 @@ typedef struct {
     double complex *transfer;       // angle common to the throws per torque shared by them
     double complex *rest, *step;    // right-hand side and solution
     double complex *basis[KRYLOV_MOST + 1];
+    double *kept; // samples of the drive, ripple_torque.c; untouched memory until then
 } ripple_work;
 
 // Of steady. Matrices and samples are memory that stays untouched, and so costs nothing, until the
@@ -81,6 +82,11 @@ struct tacet_train_work {
 // Makes the factors of this grid unless they are at hand.
 void harmonic_factors(tacet_train_work *w, double speed_rad_per_s, unsigned revolutions,
                       size_t n_lines);
+// tacet_train_harmonic; with `driven_only` just the angles of nodes that torque passes on its way
+// to the flywheel.
+TACET_USE tacet_status harmonic_solve(tacet_train_work *w, double speed_rad_per_s, size_t n_throws,
+                                      const size_t *throw_node, const tacet_spectrum *torque,
+                                      bool driven_only, tacet_train_motion *out);
 // The transform of that length, or the longest that there is.
 const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples);
 void spectra_shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_lines);
@@ -93,6 +99,7 @@ TACET_USE tacet_status ripple_solve(tacet_train_work *w, double speed_rad_per_s,
                                     const size_t *throw_node, tacet_drive *drive, const void *who,
                                     const tacet_periodic *how, tacet_train_motion *out,
                                     tacet_solver_note *note);
+size_t ripple_kept_bytes(size_t most_samples); // for one throw
 bool steady_reserve(tacet_train_work *w);
 void steady_release(tacet_train_work *w);
 
