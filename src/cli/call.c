@@ -194,8 +194,7 @@ int cli_number(const cli_call *call, const char *option, double low, double high
     bool digits = *text >= '0' && *text <= '9' && !tacet_number_parse(text, &value);
     return cli_wrong("--%s '%s': a number from %s to %s%s%s is allowed%s", option, text,
                      tacet_number_format_short(low, 4, a), tacet_number_format_short(high, 4, b),
-                     *unit ? " " : "", unit,
-                     digits ? ", with a decimal point, without comma or unit" : "");
+                     *unit ? " " : "", unit, digits ? ", digits alone without comma or unit" : "");
 }
 
 int cli_choice(const cli_call *call, const char *option, const char *const *choices, int *out)
