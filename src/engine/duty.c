@@ -114,6 +114,7 @@ static double charge_at(const problem *p, double (*f)(const problem *, double), 
 {
     double at_low = f(p, low) - value, at_high = f(p, high) - value, x = high;
     int side = 0;
+    if (at_low == at_high) return low; // nothing fires: whatever the charge
     for (int i = 0; i < 200 && high - low > 1e-14 * high; i++) {
         x = low + (high - low) * at_low / (at_low - at_high);
         double y = f(p, x) - value;

@@ -1,4 +1,5 @@
 #include "demo.h"
+#include <complex.h>
 #include <math.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -89,6 +90,51 @@ void demo_close(demo *d)
     tacet_workspace_destroy(d->work);
     tacet_model_destroy(d->model);
     tacet_study_destroy(d->study);
+}
+
+// Own inertia of a node: the reciprocating share is in the piston torque.
+static double own_inertia(const demo *d, size_t node)
+{
+    const tacet_engine *en = tacet_model_engine(d->model);
+    const tacet_train *t = tacet_model_train(d->model);
+    double inertia = tacet_train_node_inertia(t, node);
+    for (unsigned slot = 0; slot < tacet_engine_cylinders(en); slot++)
+        if (strcmp(tacet_engine_node(en, slot), tacet_train_node_name(t, node)) == 0)
+            inertia -= tacet_engine_mean_inertia(en);
+    return inertia;
+}
+
+static double complex from_momentum(const demo *d, const tacet_response *r, size_t h)
+{
+    const tacet_train *t = r->train;
+    double w = r->speed_rad_per_s / r->revolutions * (double)h;
+    double complex sum = 0;
+    for (size_t j = 0; j < tacet_train_nodes(t); j++)
+        if (tacet_train_node_housed(t, j))
+            sum += own_inertia(d, j) * w * w * r->motion->angle_rad[j].line[h];
+    for (size_t l = 0; l < tacet_train_links(t); l++) {
+        tacet_link_info info = tacet_train_link_info(t, l);
+        bool from = tacet_train_node_housed(t, info.from), to = tacet_train_node_housed(t, info.to);
+        double complex torque = r->motion->link_torque_Nm[l].line[h];
+        if (from && !to) sum -= torque / info.gear_ratio;
+        if (to && !from) sum += torque;
+    }
+    return sum;
+}
+
+double demo_roll_mismatch(const demo *d)
+{
+    const tacet_spectrum *roll;
+    tacet_quantity_ref of = {.what = tacet_quantity_find("roll-torque")};
+    assert_int_equal(tacet_workspace_quantity(d->work, of, &roll, NULL), TACET_OK);
+    double largest = 0, off = 0;
+    for (size_t h = 1; h <= roll->n_lines; h++) {
+        largest = fmax(largest, cabs(roll->line[h]));
+        off =
+            fmax(off, cabs(roll->line[h] - from_momentum(d, tacet_workspace_response(d->work), h)));
+    }
+    assert_true(largest > 10);
+    return off / largest;
 }
 
 tacet_roll *demo_roll(const demo *d, const char *word)

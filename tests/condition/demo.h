@@ -18,6 +18,9 @@ char *demo_text(const char *study_name); // the file's text; free it
 // Puts `with` in place of the first `what`, which must be there; the text has room for it.
 void demo_replace(char *text, const char *what, const char *with);
 void demo_close(demo *d);
+// Roll torque of the workspace's response as judged against -d/dt of what the housed bodies hold of
+// momentum, less the torque that leaves: largest difference of a line over the largest line.
+double demo_roll_mismatch(const demo *d);
 tacet_roll *demo_roll(const demo *d, const char *word);
 tacet_condition demo_condition(const demo *d, const tacet_roll *roll, double speed_rpm);
 #endif

@@ -172,6 +172,23 @@ static void test_double_torque_double_amplitude(void **state)
     tacet_arena_destroy(a);
 }
 
+// What the pistons do to the housing is what the moving parts lose of momentum and do not hand on.
+// (A node without ground damping: neither study has any.)
+static void test_roll_torque_is_loss_of_momentum(void **state)
+{
+    (void)state;
+    tacet_roll *roll = demo_roll(&six, "..x.x.x");
+    for (tacet_level level = TACET_LEVEL_CONSTANT; level <= TACET_LEVEL_RIPPLE; level++) {
+        (void)solve(&six, roll, 900, level);
+        assert_near(demo_roll_mismatch(&six), 0, 1e-9, 0);
+    }
+    tacet_roll_destroy(roll);
+    roll = demo_roll(&eight, "..x.x.x");
+    (void)solve(&eight, roll, 1000, TACET_LEVEL_RIPPLE);
+    assert_near(demo_roll_mismatch(&eight), 0, 1e-9, 0);
+    tacet_roll_destroy(roll);
+}
+
 static bool same_row(const tacet_row *a, const tacet_row *b)
 {
     bool same = a->outcome == b->outcome && a->worst == b->worst &&
@@ -211,6 +228,21 @@ static void test_same_bits_in_any_order_and_with_a_fresh_workspace(void **state)
         assert_true(same_row(&row[i], &again));
         tacet_workspace_destroy(fresh.work);
     }
+    // whatever the workspace did before: a march, a comparison, what cannot be reached
+    tacet_condition c = demo_condition(&six, roll[1], 950);
+    tacet_agreement agreement;
+    (void)solve(&six, roll[2], 950, TACET_LEVEL_STEADY);
+    again = solve(&six, roll[1], 950, TACET_LEVEL_RIPPLE);
+    assert_true(same_row(&row[1], &again));
+    assert_int_equal(tacet_solve_referee(six.model, &c, six.work, &agreement), TACET_OK);
+    c.demand_Nm = 1e5;
+    assert_int_equal(tacet_solve(six.model, &c, TACET_LEVEL_RIPPLE, six.work, &again), TACET_OK);
+    assert_int_equal(again.outcome, TACET_UNREACHABLE);
+    again = solve(&six, roll[2], 950, TACET_LEVEL_RIPPLE);
+    assert_true(same_row(&row[2], &again));
+    again = solve(&six, roll[1], 950, TACET_LEVEL_CONSTANT);
+    again = solve(&six, roll[1], 950, TACET_LEVEL_RIPPLE);
+    assert_true(same_row(&row[1], &again));
     for (int i = 0; i < 6; i++)
         tacet_roll_destroy(roll[i]);
 }
@@ -287,6 +319,7 @@ int main(void)
         cmocka_unit_test(test_word_and_its_double_are_one),
         cmocka_unit_test(test_placements_share_roll_torque_and_load_the_crank_differently),
         cmocka_unit_test(test_double_torque_double_amplitude),
+        cmocka_unit_test(test_roll_torque_is_loss_of_momentum),
         cmocka_unit_test(test_same_bits_in_any_order_and_with_a_fresh_workspace),
         cmocka_unit_test(test_all_fire_needs_the_fuel_of_all_fire),
         cmocka_unit_test(test_half_density_saves_fuel),
