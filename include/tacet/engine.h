@@ -14,11 +14,13 @@
 #define TACET_ENGINE_RUN_MOST       63 // skipped cycles in a row of one cylinder
 
 typedef struct {
-    unsigned number;      // cylinder number, 1..n
-    const char *node;     // node of the train it drives; NULL: throw<number>
-    double bank_rad;      // from vertical, positive towards +y (against a clockwise rotation)
-    double at_m;          // along the crank from the free end
-    double charge_factor; // share of the common charge
+    unsigned number;  // cylinder number, 1..n
+    const char *node; // node of the train it drives; NULL: throw<number>
+    double bank_rad;  // from vertical, positive towards +y (against a clockwise rotation)
+    double at_m;      // along the crank from the free end
+    // Share of the common charge. Above 1 its cylinder passes `highest` (load_by fuel: the lowest
+    // air/fuel ratio) when the common charge is there.
+    double charge_factor;
 } tacet_cylinder_def;
 
 typedef struct {

@@ -97,7 +97,8 @@ static void test_duty_limits(void **state)
     q = duty_of(&p, "x......", 1500, 100); // each cylinder skips 6 in a row
     assert_true(!q.reachable && q.reach == TACET_REACH_RUN);
     q = duty_of(&p, "x.....", 1500, 100); // one cylinder fires always, five never
-    assert_true(q.reachable || q.reach == TACET_REACH_TOO_HIGH);
+    // with the friction of six some 1.7 MPa of imep from its 1.19 L: boosted to 1.85 bar it can
+    assert_true(q.reachable && q.charge_ratio > 0.5);
     q = duty_of(&p, "x1", 1500, 300); // a tenth of 185 kPa lies below the lowest charge
     assert_true(!q.reachable && q.reach == TACET_REACH_TOO_LOW);
     q = duty_of(&p, "x2", 1500, 450);
