@@ -107,69 +107,100 @@ static void derivatives(const rig *r, size_t i, size_t k, size_t samples, double
 }
 
 // x' = A x + sum_i B_i T_i(t), T_i within an interval by its Taylor polynomial, whose derivatives
-// are further states: one matrix exponential an interval, the same for all. The periodic start
-// solves (1 - E^n) x0 = what one repeat from rest gives; the angle of the whole is free, so least
-// squares.
-static void by_exponential(rig *r, double speed, size_t samples, tacet_train_motion *out)
+// are further states: one matrix exponential an interval, the same for all.
+typedef struct {
+    rig *r;
+    reference *f;
+    size_t samples, N, big; // states; with the torques' derivatives
+    double *step;           // exp over one interval, [big * big]
+    double *state;          // [(samples + 1) * N]
+} stepper;
+
+static void make_step(stepper *s, double interval_s)
 {
-    double mean[RIG_THROWS] = {0}, step = 2 * M_PI * r->how.revolutions / speed / (double)samples;
-    reference *f = reference_new(r->t, speed, r->n, r->node, mean, nothing, NULL, true);
-    size_t N = f->size, extra = r->n * (DEGREE + 1), big = N + extra;
-    double *a = calloc(big * big, sizeof *a), *e = calloc(big * big, sizeof *e);
-    double *unit = calloc(N, sizeof *unit), *column = calloc(N, sizeof *column);
-    for (size_t j = 0; j < N; j++) {
+    double *a = calloc(s->big * s->big, sizeof *a), *unit = calloc(s->N, sizeof *unit);
+    double *column = calloc(s->N, sizeof *column);
+    for (size_t j = 0; j < s->N; j++) {
         unit[j] = 1;
-        reference_rate(f, 0, unit, column);
+        reference_rate(s->f, 0, unit, column);
         unit[j] = 0;
-        for (size_t i = 0; i < N; i++)
-            a[i * big + j] = column[i] * step;
+        for (size_t i = 0; i < s->N; i++)
+            a[i * s->big + j] = column[i] * interval_s;
     }
-    for (size_t i = 0; i < r->n; i++) {
-        size_t first = N + i * (DEGREE + 1);
-        a[(f->n + r->node[i]) * big + first] = step / tacet_train_node_inertia(r->t, r->node[i]);
+    for (size_t i = 0; i < s->r->n; i++) {
+        size_t first = s->N + i * (DEGREE + 1), node = s->r->node[i];
+        a[(s->f->n + node) * s->big + first] = interval_s / tacet_train_node_inertia(s->r->t, node);
         for (size_t p = 0; p < DEGREE; p++) // d(derivative p)/dt = derivative p + 1, in steps
-            a[(first + p) * big + first + p + 1] = 1;
+            a[(first + p) * s->big + first + p + 1] = 1;
     }
-    exponential(big, a, e);
-    double *z = calloc(big, sizeof *z), *next = calloc(big, sizeof *next);
-    double *state = calloc((samples + 1) * N, sizeof *state);
+    exponential(s->big, a, s->step);
+    free(a);
+    free(unit);
+    free(column);
+}
+
+// From state[0] through a repeat.
+static void step_through(stepper *s)
+{
+    double *z = calloc(s->big, sizeof *z);
+    for (size_t k = 0; k < s->samples; k++) {
+        double *next = s->state + (k + 1) * s->N;
+        memcpy(z, s->state + k * s->N, s->N * sizeof *z);
+        for (size_t i = 0; i < s->r->n; i++)
+            derivatives(s->r, i, k, s->samples, z + s->N + i * (DEGREE + 1));
+        for (size_t i = 0; i < s->N; i++) {
+            next[i] = 0;
+            for (size_t j = 0; j < s->big; j++)
+                next[i] += s->step[i * s->big + j] * z[j];
+        }
+    }
+    free(z);
+}
+
+// The periodic start solves (1 - E^n) x0 = where a repeat from rest ends; the angle of the whole is
+// free, so least squares.
+static void start_periodically(stepper *s)
+{
+    size_t N = s->N;
     double *power = calloc(N * N, sizeof *power), *square = calloc(N * N, sizeof *square);
+    double *right = calloc(N, sizeof *right), *singular = calloc(N, sizeof *singular);
+    lapack_int rank;
     for (size_t i = 0; i < N; i++)
-        memcpy(power + i * N, e + i * big, N * sizeof *power);
-    for (size_t k = samples; k > 1; k /= 2) { // samples is a power of two
+        memcpy(power + i * N, s->step + i * s->big, N * sizeof *power);
+    for (size_t k = s->samples; k > 1; k /= 2) { // samples is a power of two
         product(N, power, power, square);
         memcpy(power, square, N * N * sizeof *power);
     }
-    for (int pass = 0; pass < 2; pass++) {
-        if (pass == 1) { // the start from where a repeat from rest ended
-            double *right = calloc(N, sizeof *right), *s = calloc(N, sizeof *s);
-            lapack_int rank;
-            for (size_t i = 0; i < N * N; i++)
-                square[i] = (i % (N + 1) == 0) - power[i];
-            memcpy(right, state + samples * N, N * sizeof *right);
-            assert_int_equal(LAPACKE_dgelsd(LAPACK_ROW_MAJOR, (int)N, (int)N, 1, square, (int)N,
-                                            right, 1, s, 1e-13, &rank),
-                             0);
-            memcpy(state, right, N * sizeof *right);
-            free(right);
-            free(s);
-        }
-        for (size_t k = 0; k < samples; k++) {
-            memcpy(z, state + k * N, N * sizeof *z);
-            for (size_t i = 0; i < r->n; i++)
-                derivatives(r, i, k, samples, z + N + i * (DEGREE + 1));
-            for (size_t i = 0; i < N; i++) {
-                next[i] = 0;
-                for (size_t j = 0; j < big; j++)
-                    next[i] += e[i * big + j] * z[j];
-            }
-            memcpy(state + (k + 1) * N, next, N * sizeof *next);
-        }
-    }
-    reference_lines(f, state, samples, r->how.revolutions, out);
-    free(a), free(e), free(unit), free(column), free(z), free(next), free(state), free(power);
+    for (size_t i = 0; i < N * N; i++)
+        square[i] = (i % (N + 1) == 0) - power[i];
+    memcpy(right, s->state + s->samples * N, N * sizeof *right);
+    assert_int_equal(LAPACKE_dgelsd(LAPACK_ROW_MAJOR, (int)N, (int)N, 1, square, (int)N, right, 1,
+                                    singular, 1e-13, &rank),
+                     0);
+    memcpy(s->state, right, N * sizeof *right);
+    free(power);
     free(square);
-    reference_free(f);
+    free(right);
+    free(singular);
+}
+
+static void by_exponential(rig *r, double speed, size_t samples, tacet_train_motion *out)
+{
+    double mean[RIG_THROWS] = {0};
+    stepper s = {.r = r, .samples = samples};
+    s.f = reference_new(r->t, speed, r->n, r->node, mean, nothing, NULL, true);
+    s.N = s.f->size;
+    s.big = s.N + r->n * (DEGREE + 1);
+    s.step = calloc(s.big * s.big, sizeof *s.step);
+    s.state = calloc((samples + 1) * s.N, sizeof *s.state);
+    make_step(&s, 2 * M_PI * r->how.revolutions / speed / (double)samples);
+    step_through(&s);
+    start_periodically(&s);
+    step_through(&s);
+    reference_lines(s.f, s.state, samples, r->how.revolutions, out);
+    free(s.step);
+    free(s.state);
+    reference_free(s.f);
 }
 
 // ---- the four -----------------------------------------------------------------------------------
