@@ -17,13 +17,24 @@
 
 // ---- factors ----------------------------------------------------------------------------------
 
+// Lines first + 1 .. first + n.
+typedef struct {
+    double base;
+    size_t first, n;
+} band;
+
+static double frequency(band b, size_t h)
+{
+    return b.base * (double)(b.first + h + 1);
+}
+
 static double square(double x)
 {
     return x * x;
 }
 
 // K of link e on lines 1..n, referred to the crank, into w->stiffness.
-static void stiffness_lines(tacet_train_work *w, size_t e, double base, size_t n)
+static void stiffness_lines(tacet_train_work *w, size_t e, band b)
 {
     const tacet_train *t = w->t;
     const link_law *law = &t->law[e];
@@ -31,54 +42,54 @@ static void stiffness_lines(tacet_train_work *w, size_t e, double base, size_t n
     double referred = square(t->ratio[t->link[e].to]);
     if (t->constant_loss[e]) {
         double k = t->link[e].stiffness_Nm_per_rad * referred;
-        for (size_t h = 0; h < n; h++) {
+        for (size_t h = 0; h < b.n; h++) {
             re[h] = k;
             im[h] = k * t->link[e].loss_factor;
         }
         return;
     }
-    for (size_t h = 0; h < n; h++) {
+    for (size_t h = 0; h < b.n; h++) {
         re[h] = law->rest;
-        im[h] = law->viscous * base * (double)(h + 1);
+        im[h] = law->viscous * frequency(b, h);
     }
     for (size_t a = 0; law->weight && a < t->n_arms; a++) {
         const double *restrict arm_re = w->arm_re + a * w->stride;
         const double *restrict arm_im = w->arm_im + a * w->stride;
         double weight = law->weight[a];
-        for (size_t h = 0; h < n; h++) {
+        for (size_t h = 0; h < b.n; h++) {
             re[h] += weight * arm_re[h];
             im[h] += weight * arm_im[h];
         }
     }
-    for (size_t h = 0; h < n; h++) {
+    for (size_t h = 0; h < b.n; h++) {
         re[h] *= referred;
         im[h] *= referred;
     }
 }
 
 // i w / (r + i w) of each arm on the lines.
-static void arm_lines(tacet_train_work *w, double base, size_t n)
+static void arm_lines(tacet_train_work *w, band b)
 {
     for (size_t a = 0; a < w->t->n_arms; a++) {
         double *restrict re = w->arm_re + a * w->stride, *restrict im = w->arm_im + a * w->stride;
         double r = w->t->rate[a], r2 = square(r);
-        for (size_t h = 0; h < n; h++) {
-            double x = base * (double)(h + 1), share = x / (r2 + x * x);
+        for (size_t h = 0; h < b.n; h++) {
+            double x = frequency(b, h), share = x / (r2 + x * x);
             re[h] = share * x;
             im[h] = share * r;
         }
     }
 }
 
-static void node_lines(tacet_train_work *w, size_t j, double base, size_t n)
+static void node_lines(tacet_train_work *w, size_t j, band b)
 {
     const tacet_train *t = w->t;
     double *restrict re = w->dynamic.re + j * w->stride, *restrict im =
                                                              w->dynamic.im + j * w->stride;
     double referred = square(t->ratio[j]);
     double J = t->inertia[j] * referred, c = t->damping[j] * referred;
-    for (size_t h = 0; h < n; h++) {
-        double x = base * (double)(h + 1);
+    for (size_t h = 0; h < b.n; h++) {
+        double x = frequency(b, h);
         re[h] = -x * x * J;
         im[h] = x * c;
     }
@@ -124,21 +135,25 @@ static void invert_root(tacet_train_work *w, size_t n)
     }
 }
 
+static void make_factors(tacet_train_work *w, band b)
+{
+    arm_lines(w, b);
+    for (size_t j = 0; j < w->t->n; j++)
+        node_lines(w, j, b);
+    for (size_t k = 0; k < w->t->n_links; k++) {
+        stiffness_lines(w, w->t->up[w->t->leaf[k]], b);
+        eliminate(w, k, b.n);
+    }
+    invert_root(w, b.n);
+}
+
 void harmonic_factors(tacet_train_work *w, double speed, unsigned revolutions, size_t n_lines)
 {
     factor_memo *f = &w->factor;
     if (f->valid && f->speed_rad_per_s == speed && f->revolutions == revolutions &&
         n_lines <= f->n_lines)
         return; // lines are independent of one another: a part of them is the same
-    double base = speed / revolutions;
-    arm_lines(w, base, n_lines);
-    for (size_t j = 0; j < w->t->n; j++)
-        node_lines(w, j, base, n_lines);
-    for (size_t k = 0; k < w->t->n_links; k++) {
-        stiffness_lines(w, w->t->up[w->t->leaf[k]], base, n_lines);
-        eliminate(w, k, n_lines);
-    }
-    invert_root(w, n_lines);
+    make_factors(w, (band){.base = speed / revolutions, .n = n_lines});
     f->valid = true;
     f->speed_rad_per_s = speed;
     f->revolutions = revolutions;
@@ -314,25 +329,44 @@ static tacet_status check(const tacet_train_work *w, double speed, size_t n_thro
     return TACET_OK;
 }
 
+// All lines by the factors at hand.
+static tacet_status solve_lines(tacet_train_work *w, size_t n_throws, const size_t *throw_node,
+                                const tacet_spectrum *torque, bool driven_only,
+                                tacet_train_motion *out)
+{
+    bool finite = true;
+    size_t n = torque[0].n_lines;
+    mark_driven(w, n_throws, throw_node);
+    spectra_shape(out->angle_rad, w->t->n, torque[0].revolutions, n);
+    spectra_shape(out->link_torque_Nm, w->t->n_links, torque[0].revolutions, n);
+    carry_means(w, n_throws, throw_node, torque, out);
+    for (size_t first = 0; first < n; first += CHUNK) {
+        chunk c = {.w = w, .first = first, .driven_only = driven_only};
+        c.n = n - first < CHUNK ? n - first : CHUNK;
+        finite = solve_chunk(&c, n_throws, throw_node, torque, out) && finite;
+    }
+    return finite ? TACET_OK : TACET_NOT_FINITE;
+}
+
 tacet_status harmonic_solve(tacet_train_work *w, double speed, size_t n_throws,
                             const size_t *throw_node, const tacet_spectrum *torque,
                             bool driven_only, tacet_train_motion *out)
 {
     tacet_status status = check(w, speed, n_throws, throw_node, torque);
     if (status != TACET_OK) return status;
-    size_t n_lines = torque[0].n_lines;
-    harmonic_factors(w, speed, torque[0].revolutions, n_lines);
-    mark_driven(w, n_throws, throw_node);
-    spectra_shape(out->angle_rad, w->t->n, torque[0].revolutions, n_lines);
-    spectra_shape(out->link_torque_Nm, w->t->n_links, torque[0].revolutions, n_lines);
-    carry_means(w, n_throws, throw_node, torque, out);
-    bool finite = true;
-    for (size_t first = 0; first < n_lines; first += CHUNK) {
-        chunk c = {.w = w, .first = first, .driven_only = driven_only};
-        c.n = n_lines - first < CHUNK ? n_lines - first : CHUNK;
-        finite = solve_chunk(&c, n_throws, throw_node, torque, out) && finite;
-    }
-    return finite ? TACET_OK : TACET_NOT_FINITE;
+    harmonic_factors(w, speed, torque[0].revolutions, torque[0].n_lines);
+    return solve_lines(w, n_throws, throw_node, torque, driven_only, out);
+}
+
+tacet_status harmonic_solve_beyond(tacet_train_work *w, double speed, size_t first, size_t n_throws,
+                                   const size_t *throw_node, const tacet_spectrum *torque,
+                                   tacet_train_motion *out)
+{
+    tacet_status status = check(w, speed, n_throws, throw_node, torque);
+    if (status != TACET_OK) return status;
+    w->factor.valid = false;
+    make_factors(w, (band){.base = speed / torque[0].revolutions, first, torque[0].n_lines});
+    return solve_lines(w, n_throws, throw_node, torque, false, out);
 }
 
 tacet_status tacet_train_harmonic(const tacet_train *t, double speed, size_t n_throws,

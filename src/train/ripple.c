@@ -61,7 +61,8 @@ static tacet_status renew_torque(ripple *r, double *change)
     ripple_work *m = &r->w->ripple;
     changes all = {0, 0};
     for (size_t i = 0; i < r->n_throws; i++) {
-        tacet_status status = ripple_torque(r, i);
+        m->fresh.n_lines = r->n_lines;
+        tacet_status status = ripple_torque(r, i, &m->fresh);
         if (status != TACET_OK) return status;
         tacet_spectrum *old = &m->torque[i];
         for (size_t h = 1; h <= r->n_lines; h++)

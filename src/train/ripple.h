@@ -18,7 +18,7 @@ typedef struct {
     bool again;                  // torque was sampled on this grid before, at angles close by
 } ripple;
 
-// Spectrum of F of throw i at the angles found so far, into w->ripple.fresh.
-TACET_USE tacet_status ripple_torque(ripple *r, size_t i);
+// Spectrum of F of throw i at the angles found so far, with as many lines as `out` has.
+TACET_USE tacet_status ripple_torque(ripple *r, size_t i, tacet_spectrum *out);
 
 #endif

@@ -98,7 +98,7 @@ static tacet_status sample(ripple *r, size_t i, const double *speed)
     return status;
 }
 
-tacet_status ripple_torque(ripple *r, size_t i)
+tacet_status ripple_torque(ripple *r, size_t i, tacet_spectrum *out)
 {
     tacet_train_work *w = r->w;
     size_t n = tacet_transform_samples(r->grid);
@@ -118,7 +118,6 @@ tacet_status ripple_torque(ripple *r, size_t i)
     for (size_t k = 0; k < n; k++)
         F[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * speed[k] * speed[k] -
                (w->at_inertia[k] - mean) * bend[k];
-    w->ripple.fresh.n_lines = r->n_lines;
-    tacet_transform_lines(r->grid, F, &w->ripple.fresh);
+    tacet_transform_lines(r->grid, F, out);
     return status;
 }

@@ -17,7 +17,7 @@
 // In the full equations time may begin anywhere; the result is turned so that the flywheel's mean
 // angle is W t, as in ripple.
 #include "train/expm.h"
-#include "train/work.h"
+#include "train/ripple.h"
 #include <gsl/gsl_errno.h>
 #include <math.h>
 #include <stdlib.h>
@@ -29,6 +29,7 @@
 #define SAMPLES_A_PERIOD 8    // of the highest line
 #define STEPS_A_SAMPLE   1000 // more: the march is stuck
 #define START_TOLERANCE  1e-5 // of ripple
+#define START_BLOCKS     12   // of as many lines as the result has, for the start
 #define FLOOR            1e-9 // least scale of a state over the largest of its kind
 
 typedef struct {
@@ -92,45 +93,78 @@ void steady_release(tacet_train_work *w)
 
 // ---- start ------------------------------------------------------------------------------------
 
-// Torque at W t on the mean inertia, as spectra in w->ripple.torque, and its harmonic solution.
-static tacet_status constant_speed(steady *s)
+// Where the lines of throw i's torque on all samples are kept until the march.
+static tacet_spectrum start_lines(const steady *s, size_t i)
+{
+    return (tacet_spectrum){
+        .revolutions = s->how->revolutions,
+        .n_lines = s->samples / 2 - 1,
+        .mean = 0,
+        .line = (double complex *)(void *)(s->s->sample + i * s->samples),
+    };
+}
+
+// Torque of throw i at W t on the mean inertia.
+static tacet_status constant_torque(steady *s, size_t i, tacet_spectrum *out)
 {
     tacet_train_work *w = s->w;
     double W = s->drive.speed_rad_per_s, turn = 2 * M_PI * s->how->revolutions / (double)s->samples;
     double *torque = w->buffer[0];
     for (size_t k = 0; k < s->samples; k++)
         w->at_angle[k] = turn * (double)k;
-    spectra_shape(w->ripple.torque, s->drive.n_throws, s->how->revolutions, s->how->n_lines);
-    for (size_t i = 0; i < s->drive.n_throws; i++) {
-        tacet_status status = s->drive.drive(s->drive.who, i, s->samples, w->at_angle, w->at_torque,
-                                             w->at_inertia, w->at_slope);
-        if (status != TACET_OK) return status;
-        for (size_t k = 0; k < s->samples; k++)
-            torque[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * W * W;
-        tacet_transform_lines(s->grid, torque, &w->ripple.torque[i]);
-    }
-    memset(w->ripple.offset, 0, w->t->n * sizeof *w->ripple.offset);
-    return tacet_train_harmonic(w->t, W, s->drive.n_throws, s->drive.node, w->ripple.torque, w,
-                                s->out);
-}
-
-static tacet_status solve_start(steady *s)
-{
-    tacet_status status = TACET_NOT_CONVERGED;
-    if (!s->drive.frozen) {
-        tacet_periodic how = *s->how;
-        tacet_solver_note note;
-        how.tolerance = START_TOLERANCE;
-        status = ripple_solve(s->w, s->drive.speed_rad_per_s, s->drive.n_throws, s->drive.node,
-                              s->drive.drive, s->drive.who, &how, s->out, &note);
-    }
-    if (status == TACET_NOT_CONVERGED) status = constant_speed(s);
-    for (size_t i = 0; i < s->drive.n_throws && status == TACET_OK; i++)
-        s->s->mean[i] = s->w->ripple.torque[i].mean;
+    tacet_status status = s->drive.drive(s->drive.who, i, s->samples, w->at_angle, w->at_torque,
+                                         w->at_inertia, w->at_slope);
+    for (size_t k = 0; k < s->samples; k++)
+        torque[k] = w->at_torque[k] - 0.5 * w->at_slope[k] * W * W;
+    tacet_transform_lines(s->grid, torque, out);
     return status;
 }
 
-// Value at t = 0 and sum of amplitudes of `factor` times a spectrum's lines.
+// Torque of throw i at the angles that ripple found.
+static tacet_status torque_of_ripple(steady *s, size_t i, tacet_spectrum *out)
+{
+    tacet_solver_note note = {0};
+    ripple r = {.w = s->w,
+                .speed = s->drive.speed_rad_per_s,
+                .n_throws = s->drive.n_throws,
+                .node = s->drive.node,
+                .drive = s->drive.drive,
+                .who = s->drive.who,
+                .how = s->how,
+                .note = &note,
+                .grid = s->grid,
+                .n_lines = s->how->n_lines};
+    return ripple_torque(&r, i, out);
+}
+
+// Torques of the throws on all samples, with lines far beyond the result's, in memory that the
+// march takes later; from ripple, or at constant speed where the model is that or ripple fails.
+static tacet_status start_torque(steady *s)
+{
+    tacet_train_work *w = s->w;
+    bool follows = !s->drive.frozen;
+    if (follows) {
+        tacet_periodic how = *s->how;
+        tacet_solver_note note;
+        how.tolerance = START_TOLERANCE;
+        tacet_status status =
+            ripple_solve(w, s->drive.speed_rad_per_s, s->drive.n_throws, s->drive.node,
+                         s->drive.drive, s->drive.who, &how, s->out, &note);
+        if (status != TACET_OK && status != TACET_NOT_CONVERGED) return status;
+        follows = status == TACET_OK;
+    }
+    if (!follows) memset(w->ripple.offset, 0, w->t->n * sizeof *w->ripple.offset);
+    for (size_t i = 0; i < s->drive.n_throws; i++) {
+        tacet_spectrum fine = start_lines(s, i);
+        tacet_status status =
+            follows ? torque_of_ripple(s, i, &fine) : constant_torque(s, i, &fine);
+        if (status != TACET_OK) return status;
+        s->s->mean[i] = fine.mean;
+    }
+    return TACET_OK;
+}
+
+// Value at t = 0 and sum of amplitudes of a signal's lines.
 typedef struct {
     double value, scale;
 } first;
@@ -142,7 +176,7 @@ static void add_line(first *f, double complex line)
 }
 
 // Twist of link k and of its arms at t = 0, from its torque, which is exact where angles are not.
-static void start_link(steady *s, size_t k)
+static void add_link(steady *s, size_t k, size_t beyond)
 {
     const march_model *m = &s->s->model;
     const tacet_train *t = m->t;
@@ -152,19 +186,41 @@ static void start_link(steady *s, size_t k)
     double referred = t->sign[node] / t->ratio[t->link[link].to];
     first twist = {0, 0};
     double *arm = s->s->start + m->arms;
-    for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
-        arm[a * m->lossy + k] = 0;
     for (size_t h = 1; h <= torque->n_lines; h++) {
-        double w = base * (double)h;
+        double w = base * (double)(beyond + h);
         double complex u = referred * torque->line[h] / tacet_train_link_impedance(t, link, w);
         add_line(&twist, u);
         for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
             arm[a * m->lossy + k] += creal(u * (I * w / (t->rate[a] + I * w)));
     }
-    s->s->start[m->n + k] = twist.value;
-    s->s->scale[m->n + k] = twist.scale;
+    s->s->start[m->n + k] += twist.value;
+    s->s->scale[m->n + k] += twist.scale;
     for (size_t a = 0; k < m->lossy && a < t->n_arms; a++)
-        s->s->scale[m->arms + a * m->lossy + k] = twist.scale;
+        s->s->scale[m->arms + a * m->lossy + k] += twist.scale;
+}
+
+// Adds what lines beyond + 1 .. of the motion in s->out are at t = 0.
+static void add_lines(steady *s, size_t beyond)
+{
+    const march_model *m = &s->s->model;
+    double base = s->drive.speed_rad_per_s / s->how->revolutions;
+    double *start = s->s->start, *scale = s->s->scale;
+    first angle = {0, 0};
+    for (size_t j = 0; j < m->n; j++) {
+        first speed = {0, 0};
+        const tacet_spectrum *x = &s->out->angle_rad[j];
+        for (size_t h = 1; h <= x->n_lines; h++) {
+            double complex y = x->line[h] / m->t->ratio[j];
+            add_line(&speed, I * (base * (double)(beyond + h)) * y);
+            if (j == m->t->flywheel) add_line(&angle, y);
+        }
+        start[j] += speed.value;
+        scale[j] += speed.scale;
+    }
+    start[m->root_angle] += angle.value;
+    scale[m->root_angle] += angle.scale;
+    for (size_t k = 0; k < m->links; k++)
+        add_link(s, k, beyond);
 }
 
 // Scales of states first..first + n not below a share of their largest.
@@ -177,31 +233,32 @@ static void lift(double *scale, size_t n)
         scale[i] = fmax(scale[i], largest > 0 ? FLOOR * largest : 1);
 }
 
-static void start_state(steady *s)
+// State at t = 0 of the harmonic solution, block after block of lines, the result's own last.
+static tacet_status start_state(steady *s)
 {
     const march_model *m = &s->s->model;
-    double base = s->drive.speed_rad_per_s / s->how->revolutions;
-    double *start = s->s->start, *scale = s->s->scale;
-    first angle = {0, 0};
-    for (size_t j = 0; j < m->n; j++) {
-        first speed = {0, 0};
-        const tacet_spectrum *x = &s->out->angle_rad[j];
-        for (size_t h = 1; h <= x->n_lines; h++) {
-            double complex y = x->line[h] / m->t->ratio[j];
-            add_line(&speed, I * (base * (double)h) * y);
-            if (j == m->t->flywheel) add_line(&angle, y);
+    size_t n = s->how->n_lines, blocks = (s->samples / 2 - 1) / n;
+    tacet_spectrum *torque = s->w->ripple.torque;
+    memset(s->s->start, 0, m->size * sizeof(double));
+    memset(s->s->scale, 0, m->size * sizeof(double));
+    spectra_shape(torque, s->drive.n_throws, s->how->revolutions, n);
+    for (size_t b = blocks < START_BLOCKS ? blocks : START_BLOCKS; b-- > 0;) {
+        for (size_t i = 0; i < s->drive.n_throws; i++) {
+            tacet_spectrum fine = start_lines(s, i);
+            torque[i].mean = s->s->mean[i];
+            memcpy(torque[i].line + 1, fine.line + 1 + b * n, n * sizeof *fine.line);
         }
-        start[j] = speed.value;
-        scale[j] = speed.scale;
+        tacet_status status =
+            harmonic_solve_beyond(s->w, s->drive.speed_rad_per_s, b * n, s->drive.n_throws,
+                                  s->drive.node, torque, s->out);
+        if (status != TACET_OK) return status;
+        add_lines(s, b * n);
     }
-    start[m->root_angle] = angle.value;
-    scale[m->root_angle] = angle.scale;
-    for (size_t k = 0; k < m->links; k++)
-        start_link(s, k);
-    lift(scale, m->n);
-    lift(scale + m->n, m->links);
-    lift(scale + m->root_angle, 1);
-    lift(scale + m->arms, m->size - m->arms);
+    lift(s->s->scale, m->n);
+    lift(s->s->scale + m->n, m->links);
+    lift(s->s->scale + m->root_angle, 1);
+    lift(s->s->scale + m->arms, m->size - m->arms);
+    return TACET_OK;
 }
 
 // ---- march ------------------------------------------------------------------------------------
@@ -429,9 +486,9 @@ tacet_status tacet_train_steady(const tacet_train *t, double speed, size_t n_thr
                             .offset = w->ripple.offset,
                             .mean = w->steady.mean};
     status = choose_samples(&s);
-    if (status == TACET_OK) status = solve_start(&s);
+    if (status == TACET_OK) status = start_torque(&s);
+    if (status == TACET_OK) status = start_state(&s);
     if (status != TACET_OK) return status;
-    start_state(&s);
     status = shoot(&s);
     note->evaluations = s.drive.evaluations;
     if (status == TACET_OK) take_lines(&s);

@@ -87,6 +87,11 @@ void harmonic_factors(tacet_train_work *w, double speed_rad_per_s, unsigned revo
 TACET_USE tacet_status harmonic_solve(tacet_train_work *w, double speed_rad_per_s, size_t n_throws,
                                       const size_t *throw_node, const tacet_spectrum *torque,
                                       bool driven_only, tacet_train_motion *out);
+// The same with lines 1..n of the spectra standing for first + 1 .. first + n.
+TACET_USE tacet_status harmonic_solve_beyond(tacet_train_work *w, double speed_rad_per_s,
+                                             size_t first, size_t n_throws,
+                                             const size_t *throw_node, const tacet_spectrum *torque,
+                                             tacet_train_motion *out);
 // The transform of that length, or the longest that there is.
 const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples);
 void spectra_shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_lines);

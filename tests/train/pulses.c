@@ -70,6 +70,20 @@ static void fill(pulses *p, double work_J)
     }
 }
 
+// J = m x'^2 and its slope per step, over a turn.
+static void fill_inertia(pulses *p)
+{
+    double m = p->mass_kg, r = p->crank_m, l = p->rod_m;
+    for (int i = 0; i <= PULSES_STEPS; i++) {
+        double a = 2 * M_PI * i / PULSES_STEPS, sn = sin(a), cs = cos(a);
+        double q = sqrt(l * l - r * r * sn * sn), v = r * sn * (1 + r * cs / q);
+        double dv = r * cs + r * r * (cs * cs - sn * sn) / q +
+                    r * r * r * r * sn * sn * cs * cs / (q * q * q);
+        p->inertia[i] = m * v * v;
+        p->rise[i] = 2 * m * v * dv * (2 * M_PI / PULSES_STEPS);
+    }
+}
+
 static void lay_out(pulses *p, const char *word, const unsigned *slot_throw)
 {
     p->word = word;
@@ -90,6 +104,7 @@ void pulses_six(pulses *p, const char *word, double work_J)
         (pulses){.cylinders = 6, .crank_m = 0.065, .rod_m = 0.215, .mass_kg = 2.7, .bore_m = 0.108};
     lay_out(p, word, slot_throw);
     fill(p, work_J);
+    fill_inertia(p);
 }
 
 void pulses_eight(pulses *p, const char *word, double work_J)
@@ -99,6 +114,7 @@ void pulses_eight(pulses *p, const char *word, double work_J)
         .cylinders = 8, .crank_m = 0.046, .rod_m = 0.155, .mass_kg = 0.62, .bore_m = 0.100};
     lay_out(p, word, slot_throw);
     fill(p, work_J);
+    fill_inertia(p);
 }
 
 double pulses_mean_inertia(const pulses *p)
@@ -112,6 +128,14 @@ double pulses_mean_inertia(const pulses *p)
     return p->massless ? 0 : sum;
 }
 
+// Cubic between two values and their slopes per step, at u = 0..1; its slope per step.
+static double between(const double *y, const double *d, double u, double *slope)
+{
+    double bend = 3 * (y[1] - y[0]) - 2 * d[0] - d[1], twist = 2 * (y[0] - y[1]) + d[0] + d[1];
+    *slope = d[0] + u * (2 * bend + u * 3 * twist);
+    return y[0] + u * (d[0] + u * (bend + u * twist));
+}
+
 static double gas_torque(const pulses *p, unsigned slot, double angle)
 {
     double at = angle * (PULSES_STEPS / (4 * M_PI)) - slot * ((double)PULSES_STEPS / p->cylinders) +
@@ -121,29 +145,32 @@ static double gas_torque(const pulses *p, unsigned slot, double angle)
     if (opportunity < 0) opportunity += p->length;
     at -= turn * PULSES_STEPS;
     int i = (int)at, fired = p->word[opportunity] == 'x';
-    double u = at - i;
-    const double *T = &p->torque[fired][i], *d = &p->slope[fired][i];
-    double bend = 3 * (T[1] - T[0]) - 2 * d[0] - d[1], twist = 2 * (T[0] - T[1]) + d[0] + d[1];
-    return T[0] + u * (d[0] + u * (bend + u * twist));
+    double slope;
+    return between(&p->torque[fired][i], &p->slope[fired][i], at - i, &slope);
+}
+
+// Adds a piston's inertia and its slope; the slope is that of what interpolates the inertia.
+static void add_inertia(const pulses *p, double angle, double *inertia, double *slope)
+{
+    double at = angle * (PULSES_STEPS / (2 * M_PI)), per_step;
+    at -= PULSES_STEPS * floor(at / PULSES_STEPS);
+    int i = at < PULSES_STEPS ? (int)at : 0;
+    *inertia += between(&p->inertia[i], &p->rise[i], at - i, &per_step);
+    *slope += per_step * (PULSES_STEPS / (2 * M_PI));
 }
 
 tacet_status pulses_drive(const void *who, size_t throw_index, size_t n, const double *angle_rad,
                           double *torque_Nm, double *inertia_kgm2, double *slope_kgm2_per_rad)
 {
     const pulses *p = who;
-    double m = p->mass_kg, r = p->crank_m, l2 = p->rod_m * p->rod_m;
     for (size_t k = 0; k < n; k++) {
         torque_Nm[k] = inertia_kgm2[k] = slope_kgm2_per_rad[k] = 0;
         for (unsigned i = 0; i < p->throw_slots[throw_index]; i++) {
             unsigned slot = p->throw_slot[throw_index][i];
             torque_Nm[k] += gas_torque(p, slot, angle_rad[k]);
             if (p->massless) continue;
-            double a = angle_rad[k] - slot * (4 * M_PI / p->cylinders), sn = sin(a), cs = cos(a);
-            double q2 = l2 - r * r * sn * sn, q = sqrt(q2), v = r * sn * (1 + r * cs / q);
-            double dv = r * cs + r * r * (cs * cs - sn * sn) / q +
-                        r * r * r * r * sn * sn * cs * cs / (q * q2);
-            inertia_kgm2[k] += m * v * v;
-            slope_kgm2_per_rad[k] += 2 * m * v * dv;
+            double a = angle_rad[k] - slot * (4 * M_PI / p->cylinders);
+            add_inertia(p, a, &inertia_kgm2[k], &slope_kgm2_per_rad[k]);
         }
     }
     return TACET_OK;

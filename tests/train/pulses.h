@@ -1,5 +1,5 @@
 // Engines with invented gas pulses, for tests of ripple, march and steady. The drive is a table of
-// torque over angle for a fired and a skipped window of 720 degrees, and the exact slider-crank.
+// torque over angle for a fired and a skipped window of 720 degrees, and of the exact slider-crank.
 #ifndef TEST_PULSES_H
 #define TEST_PULSES_H
 #include "tacet/train.h"
@@ -13,7 +13,8 @@ typedef struct {
     unsigned slot_throw[8], throw_slot[8][2], throw_slots[8]; // slots in firing sequence
     double crank_m, rod_m, mass_kg, bore_m;
     double torque[2][PULSES_STEPS + 1], slope[2][PULSES_STEPS + 1]; // skipped, fired; per step
-    bool massless;                                                  // pistons
+    double inertia[PULSES_STEPS + 1], rise[PULSES_STEPS + 1]; // of a piston over a turn; per step
+    bool massless;                                            // pistons
 } pulses;
 
 // Straight six, 7.15 L, 1-5-3-6-2-4, and cross-plane V8, 5.78 L, two cylinders a throw,
