@@ -111,17 +111,21 @@ double complex tacet_train_link_impedance(const tacet_train *t, size_t link, dou
 // scaled to largest |element| 1 and positive there.
 TACET_USE tacet_status tacet_train_modes(const tacet_train *t, double *frequency_hz, double *shape);
 
-// ---- solutions
-// ----------------------------------------------------------------------------------------------
+// ---- solutions --------------------------------------------------------------------------------
+// All work on memory that is made once (tacet_train_work) and write spectra of a motion, of which n
+// lines must have room; revolutions and n_lines of its spectra are set. After a status other than
+// TACET_OK the motion holds nothing of use. The same call gives the same bits, whatever the memory
+// was used for before.
 typedef struct {
-    tacet_spectrum *angle_rad,
-        *link_torque_Nm; // [n_nodes], [n_links]; means: 0, and the carried torque
+    tacet_spectrum *angle_rad;      // [n_nodes], means 0
+    tacet_spectrum *link_torque_Nm; // [n_links], means: the carried torque
     size_t n_nodes, n_links;
 } tacet_train_motion;
 TACET_USE tacet_status tacet_train_motion_init(tacet_train_motion *m, const tacet_train *t,
                                                size_t n_lines, tacet_arena *a);
 
-// most_lines: largest n_lines of any call; most_samples: transform length for ripple and steady.
+// most_lines: largest n_lines of any call, and 24 times the most revolutions of a repeat that
+// steady is asked for. n_throws: most throws of any call.
 TACET_USE tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines,
                                                size_t n_throws, tacet_train_work **out);
 void tacet_train_work_destroy(tacet_train_work *w);
@@ -129,7 +133,8 @@ void tacet_train_work_destroy(tacet_train_work *w);
 // Response to torques on the throws (nodes throw_node[n_throws]), constant speed: one line at a
 // time, tree elimination in the impedance form. torque[i].revolutions and n_lines give the grid;
 // speed the base frequency. Means: link torques that carry the mean torques to the load node, which
-// balances. No speed hold: the rigid mode is -w^2 J.
+// balances. No speed hold: the rigid mode is -w^2 J. TACET_NOT_FINITE: a torque is, or an undamped
+// branch is driven exactly at its own frequency.
 TACET_USE tacet_status tacet_train_harmonic(const tacet_train *t, double speed_rad_per_s,
                                             size_t n_throws, const size_t *throw_node,
                                             const tacet_spectrum *torque, tacet_train_work *w,
@@ -147,7 +152,7 @@ typedef tacet_status tacet_drive(const void *who, size_t throw_index, size_t n,
 typedef struct {
     const char *method; // "constant", "ripple", "steady"
     double closure;     // end defect of the repeat, relative to the motion; 0 for harmonic
-    double difference;  // of the last two passes, relative
+    double difference;  // ripple: what the last pass changed; steady: the last correction; relative
     unsigned repeats, evaluations; // repeats marched, right-hand sides; ripple: passes, samples
 } tacet_solver_note;
 
@@ -161,17 +166,22 @@ typedef struct {
 } tacet_periodic;
 tacet_periodic tacet_periodic_default(void);
 
-// Harmonic with the throw's own angle: iterates F = T(W t + d) - J'/2 a'^2 - (J - <J>) a''. Also
-// gives the effective torque spectrum on the left-hand mean inertia (`torque`, may be NULL) of each
-// throw. TACET_NOT_CONVERGED: not contracting; steady decides.
+// Harmonic with the throws' own angles: iterates F = T(W t + d) - J'/2 a'^2 - (J - <J>) a'', d with
+// the static twist of the mean torques against the flywheel, whose mean angle is W t. Also gives
+// the effective torque spectrum on the left-hand mean inertia (`torque`, may be NULL) of each
+// throw. Throws turn with the crank, one drive a node. TACET_NOT_CONVERGED: not contracting; steady
+// decides.
 TACET_USE tacet_status tacet_train_ripple(const tacet_train *t, double speed_rad_per_s,
                                           size_t n_throws, const size_t *throw_node,
                                           tacet_drive *drive, const void *who,
                                           const tacet_periodic *how, tacet_train_work *w,
                                           tacet_train_motion *out, tacet_spectrum *torque,
                                           tacet_solver_note *note);
-// Periodic steady state of the full equations by march (GSL odeiv2) and shooting.
-// TACET_HARMONIC_ONLY: a link has loss_law constant.
+// Periodic steady state of the full equations by march (GSL odeiv2) and shooting. `frozen`: torque
+// less J'/2 W^2 at W t, mean inertia: what harmonic solves at constant speed.
+// TACET_HARMONIC_ONLY: a link has loss_law constant. TACET_NOT_CONVERGED: not settled;
+// note->closure says how near. TACET_BAD_INPUT also for more revolutions than the memory is made
+// for.
 TACET_USE tacet_status tacet_train_steady(const tacet_train *t, double speed_rad_per_s,
                                           size_t n_throws, const size_t *throw_node,
                                           tacet_drive *drive, const void *who,
