@@ -77,9 +77,7 @@ static tacet_status renew_torque(ripple *r, double *change)
 
 // ---- angle ------------------------------------------------------------------------------------
 
-// Static twist of every node against the flywheel from the mean torques that the harmonic solution
-// left in w->mean; order 0 uses the stated stiffness.
-static void twist_statically(tacet_train_work *w)
+void twist_statically(tacet_train_work *w)
 {
     const tacet_train *t = w->t;
     w->ripple.offset[t->flywheel] = 0;

@@ -153,7 +153,6 @@ static tacet_status start_torque(steady *s)
         if (status != TACET_OK && status != TACET_NOT_CONVERGED) return status;
         follows = status == TACET_OK;
     }
-    if (!follows) memset(w->ripple.offset, 0, w->t->n * sizeof *w->ripple.offset);
     for (size_t i = 0; i < s->drive.n_throws; i++) {
         tacet_spectrum fine = start_lines(s, i);
         tacet_status status =
@@ -254,6 +253,7 @@ static tacet_status start_state(steady *s)
         if (status != TACET_OK) return status;
         add_lines(s, b * n);
     }
+    twist_statically(s->w); // of the means that the march is told
     lift(s->s->scale, m->n);
     lift(s->s->scale + m->n, m->links);
     lift(s->s->scale + m->root_angle, 1);

@@ -99,6 +99,9 @@ TACET_USE tacet_status periodic_check(const tacet_train *t, double speed_rad_per
                                       const size_t *throw_node, const tacet_periodic *how,
                                       const tacet_train_work *w);
 
+// Static twist of every node against the flywheel, referred, from the mean torques that the
+// harmonic solution left in w->mean, into w->ripple.offset; order 0 uses the stated stiffness.
+void twist_statically(tacet_train_work *w);
 // Ripple from constant speed; w->ripple.torque and offset are left as the last pass had them.
 TACET_USE tacet_status ripple_solve(tacet_train_work *w, double speed_rad_per_s, size_t n_throws,
                                     const size_t *throw_node, tacet_drive *drive, const void *who,
