@@ -201,9 +201,9 @@ static tacet_status passes(ripple *r, size_t samples, unsigned most, double enou
 static tacet_status converge(ripple *r)
 {
     size_t turns = r->how->revolutions;
-    size_t all = tacet_transform_length(r->how->n_lines, OVERSAMPLING);
-    while (all < SAMPLES_A_TURN * turns && all < r->w->most_samples)
-        all *= 2;
+    size_t least = OVERSAMPLING * r->how->n_lines;
+    if (least < SAMPLES_A_TURN * turns) least = SAMPLES_A_TURN * turns;
+    size_t all = tacet_transform_samples(work_transform(r->w, least));
     double error = INFINITY, tolerance = r->how->tolerance > 0 ? r->how->tolerance : TOLERANCE;
     tacet_status status = start(r);
     if (status == TACET_OK && all / 4 >= FEWER * LOW_ORDER * turns)

@@ -60,12 +60,17 @@ static bool reserve_ripple(tacet_train_work *w)
            spectra(w, &r->fresh, 1) && spectra(w, &r->signal, 1);
 }
 
+static size_t transform_samples(size_t kind)
+{
+    return (size_t)(kind % 2 ? 24 : 16) << kind / 2;
+}
+
 // Transforms up to the length that steady needs, and buffers of the longest.
 static bool reserve_transforms(tacet_train_work *w)
 {
     w->most_samples = tacet_transform_length(w->most_lines, MOST_OVERSAMPLING);
     for (size_t i = 0; i < TRANSFORM_KINDS; i++) {
-        size_t n = (size_t)1 << (TRANSFORM_FIRST + i);
+        size_t n = transform_samples(i);
         if (n > w->most_samples) break;
         if (tacet_transform_create(n, &w->transform[i]) != TACET_OK) return false;
     }
@@ -84,8 +89,7 @@ static bool reserve_transforms(tacet_train_work *w)
 const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples)
 {
     size_t i = 0;
-    while (((size_t)1 << (TRANSFORM_FIRST + i)) < n_samples && i + 1 < TRANSFORM_KINDS &&
-           w->transform[i + 1])
+    while (transform_samples(i) < n_samples && i + 1 < TRANSFORM_KINDS && w->transform[i + 1])
         i++;
     return w->transform[i];
 }

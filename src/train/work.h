@@ -24,8 +24,7 @@ typedef struct {
     split root;     // 1 / Z of the flywheel, [stride]
 } factor_memo;
 
-#define TRANSFORM_FIRST 4  // log2 of the shortest transform
-#define TRANSFORM_KINDS 20 // up to 2^23 samples
+#define TRANSFORM_KINDS 40 // 16, 24, 32, 48, .. samples: powers of two, and one between each two
 #define KRYLOV_MOST     12
 #define SLOW_MODES_MOST 6
 
@@ -68,8 +67,7 @@ struct tacet_train_work {
     split force, angle;       // [n * CHUNK], referred
     double *mean;             // [n] mean torque that each node hands to the one above, referred
     bool *driven;             // [n] by node: a throw hangs from it or is it
-    tacet_transform
-        *transform[TRANSFORM_KINDS]; // 2^(TRANSFORM_FIRST + i) samples, up to the longest
+    tacet_transform *transform[TRANSFORM_KINDS]; // up to the longest
     size_t most_samples;
     double *buffer[3];                                    // of the longest transform
     double *at_angle, *at_torque, *at_inertia, *at_slope; // [most_samples] of a drive
@@ -92,7 +90,7 @@ TACET_USE tacet_status harmonic_solve_beyond(tacet_train_work *w, double speed_r
                                              size_t first, size_t n_throws,
                                              const size_t *throw_node, const tacet_spectrum *torque,
                                              tacet_train_motion *out);
-// The transform of that length, or the longest that there is.
+// The shortest transform of at least that length, or the longest that there is.
 const tacet_transform *work_transform(const tacet_train_work *w, size_t n_samples);
 void spectra_shape(tacet_spectrum *s, size_t n, unsigned revolutions, size_t n_lines);
 TACET_USE tacet_status periodic_check(const tacet_train *t, double speed_rad_per_s, size_t n_throws,
