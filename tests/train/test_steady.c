@@ -204,8 +204,8 @@ static tacet_status balky_drive(const void *who, size_t i, size_t n, const doubl
     return pulses_drive(b->p, i, n, angle_rad, torque_Nm, inertia_kgm2, slope_kgm2_per_rad);
 }
 
-// A crank so soft that the mean torque twists it by a third of a degree: the march must find the same motion
-// from ripple and from constant speed, where ripple gives up.
+// A crank so soft that the mean torque twists it by a third of a degree: the march must find the
+// same motion from ripple and from constant speed, where ripple gives up.
 static void test_static_twist_whatever_the_start(void **state)
 {
     (void)state;
