@@ -13,13 +13,13 @@ tacet=$(realpath "$2")
 root=$(realpath "$3")
 scratch=$(mktemp -d)
 trap 'chmod -R u+w "$scratch"; rm -rf "$scratch"' EXIT
-mkdir "$scratch/bin" "$scratch/work"
+mkdir "$scratch/bin" "$scratch/desk"
 ln -s "$tacet" "$scratch/bin/tacet"
 [ $# -lt 4 ] || ln -s "$(realpath "$4")" "$scratch/bin/json-paths"
-cp "$root"/tests/cli/studies/* "$scratch/work/"
-ln -s "$root/patterns" "$scratch/work/patterns"
-ln -s "$root/tests/cli/json" "$scratch/work/json"
-cd "$scratch/work"
+cp "$root"/tests/cli/studies/* "$scratch/desk/"
+ln -s "$root/patterns" "$scratch/desk/patterns"
+ln -s "$root/tests/cli/json" "$scratch/desk/json"
+cd "$scratch/desk"
 TACET=$tacet
 PATH="$scratch/bin:$PATH"
 TERM=dumb
