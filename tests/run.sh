@@ -1,6 +1,6 @@
 #!/bin/sh
 # usage: sh tests/run.sh [what meson test takes]   installs what is missing, builds in ./build, runs every test
-# last line: N passed, N failed (test programs)
+# prints the ten slowest tests; last line: N passed, N failed (test programs)
 set -eu
 cd "$(dirname "$0")/.."
 sh tests/setup.sh test
@@ -23,5 +23,7 @@ log=build/meson-logs/testlog.json
 passed=$(grep -c '"result": "OK"' "$log" || true)
 failed=$(grep -vc '"result": "OK"' "$log" || true)
 [ "$passed" -gt 0 ] || status=1
+echo "the ten slowest tests, s:"
+awk -f tests/slowest.awk "$log" | sort -rn | sed 10q
 echo "$passed passed, $failed failed"
 exit "$status"
