@@ -88,7 +88,10 @@ static char *next_cell(char **rest)
 static tacet_status read_header(reader *r, tacet_arena *a, tacet_csv *out)
 {
     char *line = next_line(r);
-    if (!line) return refuse(r, 0, "the file is empty; it needs a header line and rows of numbers");
+    if (!line) {
+        if (r->line == 0) r->line = 1; // a file of no bytes: its place is its beginning
+        return refuse(r, 0, "the file is empty; it needs a header line and rows of numbers");
+    }
     if (!strchr(line, ',') && strchr(line, ';'))
         return refuse(r, strcspn(line, ";"),
                       "';' between columns; put ',' between them and write "
@@ -134,6 +137,15 @@ static tacet_status read_row(const reader *r, char *line, tacet_csv *out)
     return TACET_OK;
 }
 
+static tacet_status refuse_zero_byte(reader *r, const char *text)
+{
+    const char *line = text;
+    r->line = 1;
+    for (const char *end; (end = strchr(line, '\n')); line = end + 1)
+        r->line++;
+    return refuse(r, strlen(line), "a zero byte; this is no text file");
+}
+
 tacet_status tacet_csv_read(const char *path, tacet_arena *a, tacet_csv *out, tacet_error *e)
 {
     char *text;
@@ -141,10 +153,7 @@ tacet_status tacet_csv_read(const char *path, tacet_arena *a, tacet_csv *out, ta
     tacet_status status = tacet_file_read(path, MOST_BYTES, a, &text, &n, e);
     if (status) return status;
     reader r = {.path = path, .at = text, .e = e};
-    if (strlen(text) != n) {
-        r.line = 1;
-        return refuse(&r, strlen(text), "a zero byte; this is no text file");
-    }
+    if (strlen(text) != n) return refuse_zero_byte(&r, text);
     if (strncmp(text, "\xEF\xBB\xBF", 3) == 0) r.at += 3;
     tacet_csv csv = {0};
     status = read_header(&r, a, &csv);

@@ -55,8 +55,8 @@ static tacet_status put(list *l, const char *at, double value)
 
 static tacet_status put_range(list *l, const char *at, const double r[3])
 {
-    double from = r[0], to = r[1], step = r[2], steps = (to - from) / step;
-    if (step == 0 || !isfinite(steps) || steps < 0)
+    double from = r[0], to = r[1], step = r[2], steps = step == 0 ? NAN : (to - from) / step;
+    if (!(isfinite(steps) && steps >= 0))
         return refuse(l, at,
                       "this range never ends; the step of from:to:step leads from the "
                       "first value to the second");

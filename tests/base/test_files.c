@@ -91,7 +91,7 @@ static void test_csv_bad(void **state)
         const char *text, *part;
         int line, column;
     } bad[] = {
-        {"", "empty", 0, 1},
+        {"", "empty", 1, 1},
         {"# only words\n", "empty", 1, 1},
         {"a,b\n", "no rows", 1, 1},
         {"a;b\n1;2\n", "';' between columns", 1, 2},
@@ -118,6 +118,8 @@ static void test_csv_bad(void **state)
     tacet_error e;
     assert_int_equal(tacet_csv_read(write_file("a\n1\0\n", 5), a, &c, &e), TACET_BAD_INPUT);
     assert_non_null(strstr(e.text, "zero byte"));
+    assert_int_equal(e.line, 2);
+    assert_int_equal(e.column, 2);
     tacet_arena_destroy(a);
 }
 
