@@ -10,6 +10,8 @@
 // End defect of the marched repeat over the motion: a thousandth of the 0.1 dB that is asked for,
 // and what linear shooting reaches in two to four repeats of the full equations.
 #define STEADY_CLOSURE 1e-5
+// Where the speed swings by half its mean and more: a dozen.
+#define STEADY_REPEATS 24
 
 // Applied torque, reciprocating inertia and its slope of one throw at n angles: all cylinders on
 // it, less an equal share of the mean friction.
@@ -188,7 +190,7 @@ tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_le
         piston_from_torque(w, W, revolutions, n_lines);
     } else if (status == TACET_NOT_CONVERGED) { // steady decides
         how.tolerance = STEADY_CLOSURE;
-        how.most_passes = tacet_periodic_default().most_passes;
+        how.most_passes = STEADY_REPEATS;
         status = tacet_train_steady(m->train, W, m->n_throws, m->throw_node, workspace_drive, w,
                                     &how, w->train, &w->motion, note);
         if (status == TACET_HARMONIC_ONLY && level == TACET_LEVEL_RIPPLE)

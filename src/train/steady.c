@@ -10,6 +10,11 @@
 // so that meeting the start means turning by 2 pi N ratio. The start comes from the harmonic
 // solution.
 //
+// Where the crank's speed swings widely the linear monodromy is a poor one. What each correction
+// left over tells more about it, at no cost: Broyden's good update of the inverse (Broyden 1965;
+// kept as the steps alone, Kelley 1995, Iterative Methods for Linear and Nonlinear Equations, sec.
+// 7.3), from memory.
+//
 // Full equations at the throws' own angles (deviation, static twist) with the inertia J0 + J(a); or
 // `frozen`: torque at W t less J'/2 W^2 on the mean inertia, which is the harmonic solution's model
 // at constant speed, so that the two must agree.
@@ -18,6 +23,7 @@
 // angle is W t, as in ripple.
 #include "train/expm.h"
 #include "train/ripple.h"
+#include <gsl/gsl_blas.h>
 #include <gsl/gsl_errno.h>
 #include <math.h>
 #include <stdlib.h>
@@ -28,6 +34,7 @@
 #define SAMPLES_A_TURN   512
 #define SAMPLES_A_PERIOD 8    // of the highest line
 #define STEPS_A_SAMPLE   1000 // more: the march is stuck
+#define STEPS_KEPT       24   // corrections that Broyden's update remembers
 #define START_TOLERANCE  1e-5 // of ripple
 #define START_BLOCKS     12   // of as many lines as the result has, for the start
 #define FLOOR            1e-9 // least scale of a state over the largest of its kind
@@ -67,12 +74,13 @@ bool steady_reserve(tacet_train_work *w)
     s->pivots = gsl_permutation_alloc(n);
     s->right = gsl_vector_alloc(n);
     s->solution = gsl_vector_alloc(n);
+    s->steps = tacet_arena_alloc(w->arena, STEPS_KEPT * n * sizeof(double));
     s->sample = malloc(channels * w->most_samples * sizeof(double));
     s->coupling =
         malloc(SLOW_MODES_MOST * (SLOW_MODES_MOST + 1) / 2 * w->most_samples * sizeof(double));
     return s->step && s->evolve && s->state && s->start && s->defect && s->scale && s->mean &&
            s->monodromy && s->matrix && s->scratch && s->newton && s->pivots && s->right &&
-           s->solution && s->sample && s->coupling;
+           s->solution && s->steps && s->sample && s->coupling;
 }
 
 void steady_release(tacet_train_work *w)
@@ -352,12 +360,16 @@ static tacet_status make_newton(steady *s)
     if (!s->drive.frozen)
         slow_correct(s->w, s->drive.speed_rad_per_s, s->how->revolutions, s->drive.n_throws,
                      s->drive.node, s->out, q->matrix);
+    // in units of the scales; the load's is one that turns the crank by its own in a repeat
+    double turns = fabs(q->matrix[root * (n + 1) + n]);
+    q->load_unit = turns > 0 ? q->scale[root] / turns : 1;
+    q->n_steps = 0;
     for (size_t i = 0; i < n; i++)
         for (size_t k = 0; k < n; k++) {
             size_t from = k == root ? n : k;
             double x = q->matrix[i * (n + 1) + from] - (k == i && k != root);
-            // in units of the scales; the load's is one that would turn the crank by its own
-            gsl_matrix_set(q->newton, i, k, x * (k == root ? 1 : q->scale[k]) / q->scale[i]);
+            gsl_matrix_set(q->newton, i, k,
+                           x * (k == root ? q->load_unit : q->scale[k]) / q->scale[i]);
         }
     int sign;
     if (gsl_linalg_LU_decomp(q->newton, q->pivots, &sign)) return TACET_NOT_CONVERGED;
@@ -367,6 +379,25 @@ static tacet_status make_newton(steady *s)
         if (pivot == 0) return TACET_NOT_CONVERGED;
     }
     return TACET_OK;
+}
+
+// Turns a step by the first Newton matrix into the one by its update from the steps taken so far.
+static void learn(steady_work *q, gsl_vector *step)
+{
+    size_t n = q->model.size;
+    for (size_t j = 0; j < q->n_steps; j++) {
+        gsl_vector_view now = gsl_vector_view_array(q->steps + j * n, n);
+        gsl_vector_view next = gsl_vector_view_array(q->steps + (j + 1) * n, n);
+        bool last = j + 1 == q->n_steps;
+        double along, square;
+        gsl_blas_ddot(&now.vector, step, &along);
+        gsl_blas_ddot(&now.vector, &now.vector, &square);
+        if (square == 0) continue;
+        if (last)
+            gsl_vector_scale(step, 1 / (1 - along / square));
+        else
+            gsl_blas_daxpy(along / square, &next.vector, step);
+    }
 }
 
 // Corrects start and load torque; the largest step over the scales.
@@ -379,16 +410,20 @@ static tacet_status correct(steady *s)
         gsl_vector_set(q->right, i, -q->defect[i] / q->scale[i]);
     if (gsl_linalg_LU_solve(q->newton, q->pivots, q->right, q->solution))
         return TACET_NOT_CONVERGED;
+    learn(q, q->solution);
+    if (q->n_steps == STEPS_KEPT) q->n_steps = 0;
     for (size_t i = 0; i < n; i++) {
         double x = gsl_vector_get(q->solution, i);
         if (!isfinite(x)) return TACET_NOT_FINITE;
+        q->steps[q->n_steps * n + i] = x;
         if (i == root) {
-            s->drive.load_Nm += x;
+            s->drive.load_Nm += x * q->load_unit;
             continue;
         }
         q->start[i] += x * q->scale[i];
         largest = fmax(largest, fabs(x));
     }
+    q->n_steps++;
     s->note->difference = largest;
     return TACET_OK;
 }

@@ -55,6 +55,9 @@ typedef struct {
     gsl_vector *right, *solution;
     double *coupling; // of slow modes, [SLOW_MODES_MOST (SLOW_MODES_MOST + 1) / 2 * most_samples]
     double *sample;   // [(n + links + 1) * most_samples]: speeds, link torques, flywheel's angle
+    double *steps;    // [STEPS_KEPT * size] corrections taken, over the scales
+    size_t n_steps;
+    double load_unit; // N m
 } steady_work;
 
 struct tacet_train_work {

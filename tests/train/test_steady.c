@@ -155,6 +155,40 @@ static void test_rigid_is_exact(void **state)
     rig_free(r);
 }
 
+// The same at a speed that swings threefold: J w^2/2 = E + T 7/3 sin(3 theta/7), E = 1.25 T 7/3.
+// dt = dtheta/w gives the period; line h of the angle is the integral of exp(-i h w0 t) dtheta over
+// i h w0, times 2 over the period (by parts).
+static void test_rigid_swings_threefold(void **state)
+{
+    (void)state;
+    enum { STEPS = 40000 };
+    static double time[STEPS];
+    bench_train *b = bench_new();
+    const size_t only[] = {bench_node(b, 2)};
+    double T = 500, amplitude = T * 7 / 3, period = 0, step = 14 * M_PI / STEPS;
+    for (int k = 0; k < STEPS; k++) { // midpoints of a periodic integrand
+        double took = step / sqrt(1.25 * amplitude + amplitude * sin(3 * (k + 0.5) * step / 7));
+        time[k] = period + 0.5 * took;
+        period += took;
+    }
+    rig *r = rig_new(b, 1, only, 7, 90);
+    r->how.most_passes = 24;
+    tacet_train_motion ripple = rig_motion(r);
+    assert_int_equal(rig_ripple(r, 7 * 60 / period, seventh, &T, &ripple), TACET_OK);
+    r->how.tolerance = 1e-8;
+    assert_int_equal(rig_steady(r, 7 * 60 / period, seventh, &T, &r->m), TACET_OK);
+    double base = 2 * M_PI / period;
+    for (int h = 3; h <= 12; h += 3) {
+        double complex line = 0;
+        for (int k = 0; k < STEPS; k++)
+            line += cexp(-I * h * base * time[k]) * step;
+        double exact = cabs(line) * 2 / period / (h * base);
+        assert_near(cabs(r->m.angle_rad[0].line[h]), exact, 0, 1e-6);
+        assert_near(cabs(ripple.angle_rad[0].line[h]), exact, 0, 1e-3); // lines past 90 left out
+    }
+    rig_free(r);
+}
+
 // Ripple against the full march: lines within 40 dB of the largest to 0.1 dB; phases too.
 static void check_full_model(rig *r, double rpm, const pulses *p)
 {
@@ -308,6 +342,7 @@ static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_shooting_from_a_poor_start),
     cmocka_unit_test(test_two_inertias),
     cmocka_unit_test(test_rigid_is_exact),
+    cmocka_unit_test(test_rigid_swings_threefold),
     cmocka_unit_test(test_static_twist_whatever_the_start),
     cmocka_unit_test(test_full_model),
     cmocka_unit_test(test_few_lines_asked_for),
