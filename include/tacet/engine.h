@@ -107,6 +107,8 @@ unsigned tacet_engine_number(const tacet_engine *en, unsigned slot); // cylinder
 double tacet_engine_firing_angle(const tacet_engine *en,
                                  unsigned slot);                      // rad in [0, 2 pi strokes/2)
 const char *tacet_engine_node(const tacet_engine *en, unsigned slot); // train node it drives
+// As stated, or its defaults: bank, place along the crank.
+tacet_cylinder_def tacet_engine_cylinder(const tacet_engine *en, unsigned slot);
 bool tacet_engine_may_skip(const tacet_engine *en, unsigned slot);
 const tacet_slider *tacet_engine_slider(const tacet_engine *en);
 double tacet_engine_mean_inertia(const tacet_engine *en); // <m x'^2> of one cylinder, kg m2

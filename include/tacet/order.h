@@ -59,5 +59,18 @@ void tacet_spectrum_peaks(const tacet_spectrum *s, const tacet_transform *t, dou
                           tacet_peaks *out);
 double tacet_spectrum_at(const tacet_spectrum *s, double angle_rad); // value at a crank angle
 
+// ---- weightings -------------------------------------------------------------------------------
+// How people feel or hear a frequency, as a factor on a line.
+typedef enum {
+    TACET_WEIGHTING_NONE,
+    TACET_WEIGHTING_VERTICAL,   // Wk of ISO 2631-1: seat, along the spine
+    TACET_WEIGHTING_HORIZONTAL, // Wd of ISO 2631-1: seat, across it
+    TACET_WEIGHTING_HEARING     // A of IEC 61672-1; hides a boom of 50 Hz by 30 dB
+} tacet_weighting;
+extern const char *const tacet_weighting_names[]; // "none", "wk", "wd", "a"; ends with NULL
+// Wk, Wd: their analogue filters with phase (ISO 2631-1:1997 annex A; parameters as quoted in
+// public code); A: its magnitude, no phase (IEC 61672-1, from memory), 1 at 1000 Hz. f >= 0.
+double complex tacet_weighting_at(int weighting, double f_hz);
+
 #pragma GCC visibility pop
 #endif

@@ -32,6 +32,8 @@ static const struct {
     {"kg", 1},
     {"g", 1e-3},
     {"kg m2", 1},
+    {"kg m", 1},
+    {"kg mm", 1e-3},
     {"kg/m3", 1},
     // force, torque, stiffness, damping
     {"N", 1},

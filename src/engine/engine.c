@@ -97,6 +97,11 @@ double tacet_engine_firing_angle(const tacet_engine *en, unsigned slot)
     return en->slot[slot].firing_rad;
 }
 
+tacet_cylinder_def tacet_engine_cylinder(const tacet_engine *en, unsigned slot)
+{
+    return engine_cylinder(&en->def, en->slot[slot].number);
+}
+
 const char *tacet_engine_node(const tacet_engine *en, unsigned slot)
 {
     return en->slot[slot].node;
