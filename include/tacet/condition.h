@@ -20,6 +20,7 @@ void tacet_model_destroy(tacet_model *m); // accepts NULL
 const tacet_study *tacet_model_study(const tacet_model *m);
 const tacet_engine *tacet_model_engine(const tacet_model *m);
 const tacet_train *tacet_model_train(const tacet_model *m);
+const tacet_body *tacet_model_body(const tacet_model *m); // NULL: the study has none
 size_t tacet_model_bands(const tacet_model *m);
 const tacet_band *tacet_model_band(const tacet_model *m, size_t i);
 size_t tacet_model_limits(const tacet_model *m);
@@ -31,6 +32,9 @@ double tacet_model_highest_order(const tacet_model *m, bool *limited);
 // All-fire reference level of a band at its worst screened speed; NAN: unreachable at every one.
 double tacet_model_reference(const tacet_model *m, size_t band);
 size_t tacet_model_lines(const tacet_model *m, unsigned revolutions); // lines of a repeat
+const char *tacet_model_quantity_text(const tacet_model *m, tacet_quantity_ref q,
+                                      char out[TACET_QUANTITY_TEXT]);
+const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q);
 double tacet_model_demand(const tacet_model *m,
                           double speed_rad_per_s); // of the study at a speed, N m
 size_t tacet_model_throws(const tacet_model *m);   // driven nodes

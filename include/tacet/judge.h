@@ -2,6 +2,7 @@
 #ifndef TACET_JUDGE_H
 #define TACET_JUDGE_H
 #include "tacet/base.h"
+#include "tacet/body.h"
 #include "tacet/engine.h"
 #include "tacet/order.h"
 #include "tacet/pattern.h"
@@ -23,9 +24,21 @@ typedef struct {
     unsigned revolutions;
     size_t n_lines;
     double peak_pressure_Pa;
+    const tacet_body *body;            // NULL: none
+    const tacet_body_response *mounts; // of this speed and grid, as many lines or more
+    bool shaken;                       // the shaking loads act as well
 } tacet_response;
 
-enum { TACET_TARGET_NONE, TACET_TARGET_NODE, TACET_TARGET_LINK };
+// What stands behind the ':' of a quantity; mounts and places with an axis: "front-left:z".
+enum {
+    TACET_TARGET_NONE,
+    TACET_TARGET_NODE,
+    TACET_TARGET_LINK,
+    TACET_TARGET_MOUNT, // 3 mount + axis
+    TACET_TARGET_PLACE, // 3 place + axis
+    TACET_TARGET_POINT,
+    TACET_TARGET_MEMBER // of a load: x, y, z, roll, pitch, yaw
+};
 // A quantity's numbers are in its own `unit`, the one in which a study states limits of it (stress
 // and pressure: MPa).
 typedef struct tacet_quantity {
@@ -39,16 +52,32 @@ typedef struct tacet_quantity {
     tacet_status (*value)(const tacet_response *r, size_t target, double *out);
 } tacet_quantity;
 // Ends with name == NULL: roll-torque, link-torque, link-stress, node-angle, node-speed,
-// node-acceleration, irregularity, damper-heat, peak-pressure.
+// node-acceleration, irregularity, mount-force, place-acceleration, cab, shaking, damper-heat,
+// peak-pressure.
 const tacet_quantity *tacet_quantities(void);
 const tacet_quantity *tacet_quantity_find(const char *name); // without target; NULL: none
 typedef struct {
     const tacet_quantity *what;
     size_t target;
 } tacet_quantity_ref;
-// "link-torque:coupling" against a train; on failure e says what is allowed, with a near name.
+// "link-torque:coupling" against a train and a body (may be NULL); on failure e says what is
+// allowed, with a near name.
 TACET_USE tacet_status tacet_quantity_parse(const char *text, const tacet_train *t,
-                                            tacet_quantity_ref *out, tacet_error *e);
+                                            const tacet_body_def *body, tacet_quantity_ref *out,
+                                            tacet_error *e);
+#define TACET_QUANTITY_TEXT 192
+// "link-torque:coupling" again.
+const char *tacet_quantity_text(tacet_quantity_ref q, const tacet_train *t,
+                                const tacet_body_def *body, char out[TACET_QUANTITY_TEXT]);
+// Of cab and shaking it depends on the target.
+const char *tacet_quantity_unit(tacet_quantity_ref q, const tacet_body_def *body);
+// Targets of a kind (TACET_TARGET_..) and their names; nodes and links need the train, the others
+// the body.
+size_t tacet_target_count(int target, const tacet_train *t, const tacet_body_def *body);
+const char *tacet_target_text(int target, size_t i, const tacet_train *t,
+                              const tacet_body_def *body, char out[TACET_QUANTITY_TEXT]);
+const char *tacet_target_kind(int target); // "node", "link", "mount and axis", ..
+const char *tacet_target_form(int target); // "", ":NODE", ":LINK", ":MOUNT:AXIS", ..
 
 // ---- definition (lists bands and limits of a study) --------------------------------------------
 typedef enum {
@@ -105,7 +134,8 @@ typedef struct tacet_band {
     double reserve_db;
 } tacet_band;
 TACET_USE tacet_status tacet_band_create(const tacet_band_def *d, double reserve_db,
-                                         const tacet_train *t, tacet_band *out, tacet_error *e);
+                                         const tacet_train *t, const tacet_body_def *body,
+                                         tacet_band *out, tacet_error *e);
 
 // Level of a spectrum inside the counted band, edges inclusive, order 0 excluded. Lines past the
 // end of the spectrum are not in it: its owner chooses n_lines so that bands lie inside.
@@ -174,7 +204,8 @@ typedef struct {
     tacet_why why;
 } tacet_limit_result;
 TACET_USE tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t,
-                                          tacet_limit *out, tacet_error *e);
+                                          const tacet_body_def *body, tacet_limit *out,
+                                          tacet_error *e);
 // spectrum: scratch that holds r->n_lines lines; transform and buffer for peaks (oversampled >= 6).
 TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r,
                                          double reserve_db, tacet_spectrum *spectrum,

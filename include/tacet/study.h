@@ -2,6 +2,7 @@
 #ifndef TACET_STUDY_H
 #define TACET_STUDY_H
 #include "tacet/base.h"
+#include "tacet/body.h"
 #include "tacet/engine.h"
 #include "tacet/judge.h"
 #include "tacet/train.h"
@@ -31,6 +32,7 @@ typedef struct tacet_study { // open, immutable after reading
     const char *title, *path, *folder;
     tacet_engine_def engine;
     tacet_train_def train;
+    tacet_body_def body; // mass NAN: none
     tacet_band_def *bands;
     size_t n_bands;
     tacet_limit_def *limits;

@@ -57,12 +57,11 @@ static void tell(void *who, const cli_key *k)
 
 static const tacet_table *quantities(tacet_arena *a, cli_rows *rows)
 {
-    static const char *const target[] = {"", ":NODE", ":LINK"};
     const tacet_quantity *q = tacet_quantities();
     *rows = cli_rows_start(a, "quantities", "What a band or a limit may judge", quantity_columns,
                            N(quantity_columns), 32);
     for (; q->name; q++) {
-        cli_put_text(rows, cli_text(a, "%s%s", q->name, target[q->target]));
+        cli_put_text(rows, cli_text(a, "%s%s", q->name, tacet_target_form(q->target)));
         cli_put_text(rows, q->unit ? q->unit : "");
         cli_put_text(rows, q->doc);
     }

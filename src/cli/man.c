@@ -81,7 +81,6 @@ static void page_key(void *who, const cli_key *k)
 
 static void page(void)
 {
-    static const char *const target[] = {"", ":NODE", ":LINK"};
     printf(".TH TACET 1 \"\" \"tacet %s\" \"User commands\"\n", tacet_version());
     printf(".SH NAME\ntacet \\- screen skip\\-fire patterns on a crank\\-train\n");
     printf(".SH SYNOPSIS\n.B tacet\n.I COMMAND\n[\\fIoperands and options, in any order\\fR]\n");
@@ -102,7 +101,7 @@ static void page(void)
     for (const tacet_quantity *q = tacet_quantities(); q->name; q++) {
         printf(".TP\n.B ");
         roff(q->name);
-        roff(target[q->target]);
+        roff(tacet_target_form(q->target));
         printf("\n");
         roff(q->doc);
         if (q->unit && strcmp(q->unit, "1") != 0) {

@@ -27,7 +27,7 @@ static void put_quantities(tacet_json *j, const point *p)
         const point_quantity *q = &p->quantity[k];
         tacet_json_key(j, q->name);
         tacet_json_begin_object(j);
-        tacet_json_put_text(j, "unit", q->of.what->unit);
+        tacet_json_put_text(j, "unit", tacet_model_quantity_unit(p->s->model, q->of));
         tacet_json_put_number(j, "mean", q->mean);
         tacet_json_put_number(j, "pp", q->pp);
         tacet_json_put_number(j, "all_fire_pp", q->reference ? q->reference_pp : NAN);

@@ -4,11 +4,8 @@
 
 static const char *quantity_name(const point *p, tacet_quantity_ref q)
 {
-    const tacet_train *t = tacet_model_train(p->s->model);
-    if (q.what->target == TACET_TARGET_NONE) return q.what->name;
-    return cli_text(p->s->arena, "%s:%s", q.what->name,
-                    q.what->target == TACET_TARGET_LINK ? tacet_train_link_name(t, q.target)
-                                                        : tacet_train_node_name(t, q.target));
+    char text[TACET_QUANTITY_TEXT];
+    return cli_text(p->s->arena, "%s", tacet_model_quantity_text(p->s->model, q, text));
 }
 
 static void add_quantity(point *p, tacet_quantity_ref q)

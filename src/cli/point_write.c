@@ -118,7 +118,7 @@ static int write_bands(const point *p)
         cli_put(&rows, b->margin_db);
         cli_put(&rows, b->level.dispersed);
         cli_put(&rows, b->limit);
-        cli_put_text(&rows, band->of.what->unit);
+        cli_put_text(&rows, tacet_model_quantity_unit(p->s->model, band->of));
         cli_put_text(&rows, isfinite(order) ? order_text(p, b->level.leading_line) : NULL);
         cli_put(&rows, isfinite(order) ? tacet_order_hz(order, p->row.speed_rad_per_s) : NAN);
         cli_put_text(&rows, name_of(p, band->of));
@@ -143,7 +143,7 @@ static int write_limits(const point *p)
         cli_put(&rows, l->margin_db);
         cli_put(&rows, l->value);
         cli_put(&rows, limit->value);
-        cli_put_text(&rows, limit->of.what->unit);
+        cli_put_text(&rows, tacet_model_quantity_unit(p->s->model, limit->of));
         cli_put_text(&rows, name_of(p, limit->of));
     }
     const tacet_table *t = cli_rows_end(&rows);
@@ -179,7 +179,7 @@ const tacet_table *point_lines(const point *p, size_t most, cli_rows *rows)
         for (size_t i = 0; i < q->n; i++) {
             if (!is_shown(q, i, most)) continue;
             cli_put_text(rows, q->name);
-            cli_put_text(rows, q->of.what->unit);
+            cli_put_text(rows, tacet_model_quantity_unit(p->s->model, q->of));
             if (most)
                 cli_put_text(rows, order_text(p, i + 1));
             else

@@ -43,8 +43,13 @@ static tacet_status unit_response(tacet_workspace *w, size_t throw_index, double
             p->line[h] = (i == throw_index) + m->throw_inertia[i] * omega * omega * angle->line[h];
         }
     }
+    const tacet_body_response *mounts;
+    status = workspace_mounts(w, speed, revolutions, n_lines, &mounts);
+    if (status != TACET_OK) return status;
     *r = (tacet_response){
         .train = m->train,
+        .body = m->body,
+        .mounts = mounts,
         .motion = &w->unit_motion,
         .piston_torque_Nm = w->unit_piston,
         .throw_node = m->throw_node,

@@ -23,6 +23,7 @@ struct tacet_model {
     tacet_arena *arena;
     tacet_engine *engine;
     tacet_train *train;
+    tacet_body *body; // NULL: none
     size_t n_throws;
     size_t *throw_node;      // [n_throws] node of the train
     unsigned *slot_throw;    // [cylinders] throw that a slot drives
@@ -76,9 +77,10 @@ struct tacet_workspace {
     double *samples, *angle, *torque_at, *inertia_at, *slope_at; // [longest transform (+ 2)]
     double *order;                                               // [most of any grid]
     double complex *pulse;                                       // the same
-    double *twist;          // [nodes] mean angle against the flywheel's, referred to the crank
-    double friction_Nm;     // mean total of the loaded condition
-    const tacet_roll *roll; // of the loaded condition
+    double *twist; // [nodes] mean angle against the flywheel's, referred to the crank
+    tacet_body_response mounts, one_line; // the second for single frequencies
+    double friction_Nm;                   // mean total of the loaded condition
+    const tacet_roll *roll;               // of the loaded condition
     tacet_response response;
     bool has_response;
     all_fire_memo all_fire;
@@ -92,6 +94,10 @@ const tacet_transform *model_torque_transform(const tacet_model *m, unsigned rev
 // Readies the workspace's spectra for a repeat.
 void workspace_shape(tacet_workspace *w, unsigned revolutions, size_t n_lines);
 tacet_drive workspace_drive; // who = the workspace, loaded
+
+// The body's answer on these lines, from memory where it is at hand; NULL in *out: no body.
+tacet_status workspace_mounts(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions,
+                              size_t n_lines, const tacet_body_response **out);
 
 // Motion of the loaded condition into w->motion, w->piston, w->response.
 tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_level level,

@@ -165,12 +165,13 @@ static tacet_status assemble_judgement(tacet_model *m, tacet_error *e)
     if (!m->bands || !m->limits || !m->reference || !m->cyclic)
         return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
     for (size_t i = 0; i < s->n_bands; i++) {
-        tacet_status status =
-            tacet_band_create(&s->bands[i], s->screen.reserve_db, m->train, &m->bands[i], e);
+        tacet_status status = tacet_band_create(&s->bands[i], s->screen.reserve_db, m->train,
+                                                &s->body, &m->bands[i], e);
         if (status != TACET_OK) return status;
     }
     for (size_t i = 0; i < s->n_limits; i++) {
-        tacet_status status = tacet_limit_create(&s->limits[i], m->train, &m->limits[i], e);
+        tacet_status status =
+            tacet_limit_create(&s->limits[i], m->train, &s->body, &m->limits[i], e);
         if (status != TACET_OK) return status;
     }
     m->n_bands = s->n_bands;
@@ -229,6 +230,8 @@ tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_e
     m->study = s;
     status = tacet_engine_create(&s->engine, &m->engine, e);
     if (status == TACET_OK) status = assemble_train(m, e);
+    if (status == TACET_OK && tacet_body_def_given(&s->body))
+        status = tacet_body_create(&s->body, m->engine, &m->body, e);
     if (status == TACET_OK) status = assemble_judgement(m, e);
     if (status == TACET_OK) status = assemble_lines(m, e);
     if (status != TACET_OK) goto failed;
@@ -289,6 +292,7 @@ void tacet_model_destroy(tacet_model *m)
     for (size_t i = 0; i < EVEN_CYCLES; i++)
         tacet_transform_destroy(m->even[i]);
     tacet_roll_destroy(m->all_fire);
+    tacet_body_destroy(m->body);
     tacet_train_destroy(m->train);
     tacet_engine_destroy(m->engine);
     tacet_arena_destroy(m->arena);
@@ -313,6 +317,11 @@ const tacet_transform *model_torque_transform(const tacet_model *m, unsigned rev
 const tacet_study *tacet_model_study(const tacet_model *m)
 {
     return m->study;
+}
+
+const tacet_body *tacet_model_body(const tacet_model *m)
+{
+    return m->body;
 }
 
 const tacet_engine *tacet_model_engine(const tacet_model *m)

@@ -148,9 +148,13 @@ tacet_status motion_piston(tacet_workspace *w, double W, unsigned revolutions, s
     return TACET_OK;
 }
 
-static void respond(tacet_workspace *w, const tacet_condition *c, size_t n_lines)
+static tacet_status respond(tacet_workspace *w, const tacet_condition *c, size_t n_lines)
 {
     const tacet_model *m = w->m;
+    const tacet_body_response *mounts;
+    tacet_status status =
+        workspace_mounts(w, c->speed_rad_per_s, c->roll->revolutions, n_lines, &mounts);
+    if (status != TACET_OK) return status;
     w->response = (tacet_response){
         .train = m->train,
         .motion = &w->motion,
@@ -161,8 +165,12 @@ static void respond(tacet_workspace *w, const tacet_condition *c, size_t n_lines
         .speed_rad_per_s = c->speed_rad_per_s,
         .revolutions = c->roll->revolutions,
         .n_lines = n_lines,
+        .body = m->body,
+        .mounts = mounts,
+        .shaken = true,
     };
     w->has_response = true;
+    return TACET_OK;
 }
 
 tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_level level,
@@ -197,6 +205,5 @@ tacet_status motion_solve(tacet_workspace *w, const tacet_condition *c, tacet_le
             status = TACET_NOT_CONVERGED; // as ripple said
         if (status == TACET_OK) status = motion_piston(w, W, revolutions, n_lines);
     }
-    if (status == TACET_OK) respond(w, c, n_lines);
-    return status;
+    return status == TACET_OK ? respond(w, c, n_lines) : status;
 }

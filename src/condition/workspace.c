@@ -28,6 +28,9 @@ static tacet_status create_spectra(tacet_workspace *w)
     if (status == TACET_OK)
         status =
             spectra_create(&w->transfers.transfer, (m->n_bands + 1) * m->n_throws, lines, w->arena);
+    if (status == TACET_OK && m->body)
+        status = tacet_body_response_init(&w->mounts, lines, w->arena);
+    if (status == TACET_OK && m->body) status = tacet_body_response_init(&w->one_line, 1, w->arena);
     if (status == TACET_OK) status = tacet_spectrum_init(&w->unit, lines, w->arena);
     if (status == TACET_OK) status = tacet_spectrum_init(&w->quantity, lines, w->arena);
     return status;
@@ -115,6 +118,24 @@ void workspace_shape(tacet_workspace *w, unsigned revolutions, size_t n_lines)
     shape(w->torque, w->m->n_throws, revolutions, n_lines);
     shape(w->piston, w->m->n_throws, revolutions, n_lines);
     shape(&w->quantity, 1, revolutions, n_lines);
+}
+
+tacet_status workspace_mounts(tacet_workspace *w, double speed, unsigned revolutions,
+                              size_t n_lines, const tacet_body_response **out)
+{
+    tacet_body_response *memo = n_lines == 1 ? &w->one_line : &w->mounts;
+    *out = NULL;
+    if (!w->m->body) return TACET_OK;
+    if (memo->speed_rad_per_s != speed || memo->revolutions != revolutions ||
+        memo->n_lines < n_lines) {
+        tacet_status status = tacet_body_respond(w->m->body, speed, revolutions, n_lines, memo);
+        if (status != TACET_OK) {
+            memo->n_lines = 0;
+            return status;
+        }
+    }
+    *out = memo;
+    return TACET_OK;
 }
 
 const tacet_response *tacet_workspace_response(const tacet_workspace *w)

@@ -22,10 +22,10 @@ tacet_verdict verdict_of(double margin_db, double reserve_db)
 }
 
 tacet_status tacet_band_create(const tacet_band_def *d, double reserve_db, const tacet_train *t,
-                               tacet_band *out, tacet_error *e)
+                               const tacet_body_def *body, tacet_band *out, tacet_error *e)
 {
     tacet_quantity_ref of;
-    tacet_status status = tacet_quantity_parse(d->quantity, t, &of, e);
+    tacet_status status = tacet_quantity_parse(d->quantity, t, body, &of, e);
     if (status != TACET_OK) return status;
     if (of.what->scalar)
         return tacet_fail(e, TACET_BAD_INPUT,

@@ -5,11 +5,11 @@
 static const char *const statistic_text[] = {"pp", "half_range", "rms", "mean", "max"};
 #define STATISTICS (int)(sizeof statistic_text / sizeof *statistic_text)
 
-tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t, tacet_limit *out,
-                                tacet_error *e)
+tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t,
+                                const tacet_body_def *body, tacet_limit *out, tacet_error *e)
 {
     tacet_quantity_ref of;
-    tacet_status status = tacet_quantity_parse(d->quantity, t, &of, e);
+    tacet_status status = tacet_quantity_parse(d->quantity, t, body, &of, e);
     if (status != TACET_OK) return status;
     int only = of.what->statistic, statistic = d->statistic;
     if (statistic < 0) statistic = only;

@@ -21,6 +21,11 @@ tacet_status irregularity(const tacet_response *r, size_t none, tacet_spectrum *
 tacet_status link_torque(const tacet_response *r, size_t link, tacet_spectrum *out);
 tacet_status link_stress(const tacet_response *r, size_t link, tacet_spectrum *out);
 tacet_status damper_heat(const tacet_response *r, size_t link, double *out);
+// mounts.c
+tacet_status mount_force(const tacet_response *r, size_t target, tacet_spectrum *out);
+tacet_status place_acceleration(const tacet_response *r, size_t target, tacet_spectrum *out);
+tacet_status cab(const tacet_response *r, size_t point, tacet_spectrum *out);
+tacet_status shaking(const tacet_response *r, size_t member, tacet_spectrum *out);
 // gas.c
 tacet_status peak_pressure(const tacet_response *r, size_t none, double *out);
 

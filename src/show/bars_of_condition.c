@@ -60,7 +60,7 @@ tacet_status tacet_bars_of_condition(const tacet_figure_source *s, double speed_
     *out = (tacet_figure_bars){.title = screen_title(s->model),
                                .subtitle = figure_at_text(s, pattern, speed_rad_per_s, demand_Nm),
                                .quantity = quantity,
-                               .unit = s->of.what->unit,
+                               .unit = tacet_model_quantity_unit(s->model, s->of),
                                .name = pattern,
                                .reference_name = reached ? "all cylinders firing"
                                                          : "all cylinders: not reachable",

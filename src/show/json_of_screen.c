@@ -54,7 +54,8 @@ static void put_bands(tacet_json *j, source s)
     for (size_t b = 0; b < s.r->n_bands; b++) {
         tacet_json_begin_object(j);
         tacet_json_put_text(j, "name", tacet_model_band(s.m, b)->name);
-        tacet_json_put_text(j, "unit", tacet_model_band(s.m, b)->of.what->unit);
+        tacet_json_put_text(j, "unit",
+                            tacet_model_quantity_unit(s.m, tacet_model_band(s.m, b)->of));
         for (size_t i = 0; i < n; i++) {
             if (column[i].type == TACET_COLUMN_TEXT)
                 tacet_json_put_text(j, column[i].name, column[i].text(&s.r->bands[b]));
@@ -76,7 +77,7 @@ static void put_limits(tacet_json *j, source s)
         bool known = result->verdict != TACET_NO_VERDICT;
         tacet_json_begin_object(j);
         tacet_json_put_text(j, "name", limit->name);
-        tacet_json_put_text(j, "unit", limit->of.what->unit);
+        tacet_json_put_text(j, "unit", tacet_model_quantity_unit(s.m, limit->of));
         tacet_json_put_number(j, "limit", limit->value);
         tacet_json_put_number(j, "value", known ? result->value : NAN);
         tacet_json_put_number(j, "margin_db", known ? result->margin_db : NAN);

@@ -111,7 +111,7 @@ tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_
     tacet_figure_mode *mode;
     if (!level || !order || !drawn || !rpm || !pattern) return figure_no_memory(e);
     *out = (tacet_figure_orders){.title = screen_title(s->model),
-                                 .unit = s->of.what->unit,
+                                 .unit = tacet_model_quantity_unit(s->model, s->of),
                                  .speed_rpm = rpm,
                                  .n_speeds = n,
                                  .order = order,

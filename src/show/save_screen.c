@@ -126,7 +126,7 @@ static bool pick_shaft(const job *b, tacet_quantity_ref *shaft)
         char name[160];
         if (tacet_train_link_info(t, i).from != tacet_train_flywheel(t)) continue;
         snprintf(name, sizeof name, "link-torque:%s", tacet_train_link_name(t, i));
-        if (tacet_quantity_parse(name, t, shaft, NULL) == TACET_OK) return true;
+        if (tacet_quantity_parse(name, t, NULL, shaft, NULL) == TACET_OK) return true;
     }
     return false;
 }

@@ -54,11 +54,8 @@ double screen_limiting_order(const tacet_row *r)
 
 const char *screen_quantity_name(const tacet_model *m, tacet_quantity_ref q, tacet_arena *a)
 {
-    const tacet_train *t = tacet_model_train(m);
-    if (q.what->target == TACET_TARGET_NONE) return q.what->name;
-    return screen_text(a, "%s:%s", q.what->name,
-                       q.what->target == TACET_TARGET_LINK ? tacet_train_link_name(t, q.target)
-                                                           : tacet_train_node_name(t, q.target));
+    char text[TACET_QUANTITY_TEXT];
+    return screen_text(a, "%s", tacet_model_quantity_text(m, q, text));
 }
 
 const char *screen_why_text(tacet_why why)

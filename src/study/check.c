@@ -60,6 +60,7 @@ void check_rooms(checker *c)
                   !fill_is_wrong(c->f, "skip");
     if (engine) tacet_engine_def_check(&s->engine, &reporter);
     if (s->train.n_nodes) tacet_train_def_check(&s->train, &reporter);
+    if (!fill_is_wrong(c->f, "body")) tacet_body_def_check(&s->body, &reporter);
     for (size_t i = 0; i < s->n_bands; i++) {
         char path[32];
         tacet_text(path, sizeof path, "bands[%zu]", i);

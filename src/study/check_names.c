@@ -131,10 +131,43 @@ static void check_section(checker *c, const char *path, const tacet_quantity *q,
                       target);
 }
 
+// Mounts, places, points: of the body alone.
+static void check_body_target(checker *c, const char *path, const tacet_quantity *q,
+                              const char *target)
+{
+    const tacet_body_def *body = &c->study->body;
+    size_t n = tacet_target_count(q->target, NULL, body);
+    if (fill_is_wrong(c->f, "body")) return;
+    if (!tacet_body_def_given(body)) {
+        check_say(c, false, path,
+                  "quantity: %s needs the powertrain's body, and the study has no "
+                  "section body",
+                  q->name);
+        return;
+    }
+    const char **names = tacet_arena_alloc(c->f->arena, (n + 1) * sizeof *names);
+    char(*text)[TACET_QUANTITY_TEXT] = tacet_arena_alloc(c->f->arena, (n + 1) * sizeof *text);
+    if (!names || !text) {
+        c->f->no_memory = true;
+        return;
+    }
+    for (size_t i = 0; i < n; i++)
+        names[i] = tacet_target_text(q->target, i, NULL, body, text[i]);
+    if (holds(names, n, target)) return;
+    char shown[SHOWN_TEXT], list[200];
+    const char *near = tacet_near_name(target, names, n);
+    check_say(c, false, path, "quantity: there is no %s %s in the body; %s %s",
+              tacet_target_kind(q->target), shown_text(target, shown),
+              near ? "did you mean"
+              : n  ? "it has"
+                   : "it has none",
+              near ? near : joined(names, n, list, sizeof list));
+}
+
 static void check_target(checker *c, const char *path, const tacet_quantity *q, const char *target)
 {
-    bool node = q->target == TACET_TARGET_NODE;
-    const char *kind = node ? "node" : "link", *list = node ? "train.nodes" : "train.links";
+    bool node = q->target == TACET_TARGET_NODE, train = node || q->target == TACET_TARGET_LINK;
+    const char *kind = tacet_target_kind(q->target), *list = node ? "train.nodes" : "train.links";
     size_t n;
     if (q->target == TACET_TARGET_NONE) {
         if (target)
@@ -144,6 +177,10 @@ static void check_target(checker *c, const char *path, const tacet_quantity *q, 
     if (!target || !*target) {
         check_say(c, false, path, "quantity: %s needs the name of a %s behind ':', as %s:NAME",
                   q->name, kind, q->name);
+        return;
+    }
+    if (!train) {
+        check_body_target(c, path, q, target);
         return;
     }
     if (fill_is_wrong(c->f, list) || fill_is_wrong(c->f, "train.dampers")) return;

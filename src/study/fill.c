@@ -183,8 +183,20 @@ static void fill_missing(filler *f, const tacet_field *field, const tree_node *s
              field->key, field->doc ? field->doc : "", number ? ", in" : "", number ? unit : "");
 }
 
+static bool asks_for_keys(const tacet_section *s)
+{
+    for (const tacet_field *field = s->fields; field->key; field++)
+        if (!field->fallback) return true;
+    return false;
+}
+
+// A section that asks for keys and may be left out is absent as a whole.
 static void fill_default(filler *f, const tacet_field *field, place at, void *into)
 {
+    if (field->kind == TACET_FIELD_SECTION && asks_for_keys(field->section)) {
+        fill_absent(field, into);
+        return;
+    }
     if (field->kind == TACET_FIELD_SECTION) {
         fill_section(f, field->section, NULL, at, (char *)into + field->offset);
         return;

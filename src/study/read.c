@@ -22,6 +22,7 @@ static tacet_study *create(const char *path)
     s->folder = folder;
     s->engine = tacet_engine_default();
     s->train = tacet_train_default();
+    s->body = tacet_body_default();
     return s;
 }
 
@@ -58,6 +59,10 @@ static tacet_status hash_files(tacet_study *s, tacet_problems *problems)
     tacet_status status = TACET_OK;
     for (size_t i = 0; i < 2 && d->kind == TACET_CYCLE_TRACES && !status; i++)
         if (traces[i]) status = hash_file(s, traces[i], strlen(traces[i]), problems);
+    for (size_t i = 0; i < s->body.n_paths && !status; i++) {
+        const char *table = s->body.paths[i].table;
+        if (table) status = hash_file(s, table, strlen(table), problems);
+    }
     for (size_t i = 0; i < s->screen.n_patterns && !status; i++) {
         static const char ending[] = ".words";
         const char *text = s->screen.patterns[i], *end = strstr(text, ending);
@@ -89,7 +94,7 @@ static tacet_status read_study(tacet_study *s, const char *bytes, size_t n, cons
     filler f = {.arena = s->arena, .problems = problems, .file = file, .root = tacet_study_keys()};
     size_t errors = tacet_problems_errors(problems);
     fill_section(&f, f.root, s->tree->root, (place){1, 1}, s);
-    s->engine.folder = s->folder;
+    s->engine.folder = s->body.folder = s->folder;
     if (s->tree->root->kind == TREE_MAP) {
         checker c = {s, s->tree, &f, f.n_wrong};
         check_study(&c);

@@ -68,10 +68,11 @@ double tacet_band_guard(const tacet_band_def *d)
 {
     return d->guard;
 }
-tacet_status tacet_quantity_parse(const char *text, const tacet_train *t, tacet_quantity_ref *out,
+tacet_status tacet_quantity_parse(const char *text, const tacet_train *t,
+                                  const tacet_body_def *body, tacet_quantity_ref *out,
                                   tacet_error *e)
 {
-    (void)text, (void)t, (void)out;
+    (void)text, (void)t, (void)body, (void)out;
     return tacet_fail(e, TACET_BAD_INPUT, "not used");
 }
 

@@ -27,7 +27,7 @@ static tacet_band band_of(tacet_band_def d)
 {
     tacet_band b;
     tacet_error e = {.text = ""};
-    if (tacet_band_create(&d, 3, &train, &b, &e) != TACET_OK) fail_msg("%s", e.text);
+    if (tacet_band_create(&d, 3, &train, NULL, &b, &e) != TACET_OK) fail_msg("%s", e.text);
     return b;
 }
 
@@ -53,7 +53,7 @@ static void refused(tacet_band_def d, const char *part)
 {
     tacet_band b = {.kind = 42};
     tacet_error e = {.text = ""};
-    assert_int_equal(tacet_band_create(&d, 3, &train, &b, &e), TACET_BAD_INPUT);
+    assert_int_equal(tacet_band_create(&d, 3, &train, NULL, &b, &e), TACET_BAD_INPUT);
     if (!strstr(e.text, part)) fail_msg("'%s' does not say '%s'", e.text, part);
     assert_int_equal(b.kind, 42);
 }

@@ -52,7 +52,7 @@ static tacet_limit limit_of(const char *quantity, int statistic, double value)
     tacet_limit l;
     tacet_error e = {.text = ""};
     tacet_limit_def d = {.name = "l", .quantity = quantity, .statistic = statistic, .value = value};
-    if (tacet_limit_create(&d, &train, &l, &e) != TACET_OK) fail_msg("%s", e.text);
+    if (tacet_limit_create(&d, &train, NULL, &l, &e) != TACET_OK) fail_msg("%s", e.text);
     return l;
 }
 
@@ -178,7 +178,7 @@ static void refused(const char *quantity, int statistic, double value, const cha
     tacet_limit l = {.statistic = 42};
     tacet_error e = {.text = ""};
     tacet_limit_def d = {.quantity = quantity, .statistic = statistic, .value = value};
-    assert_int_equal(tacet_limit_create(&d, &train, &l, &e), TACET_BAD_INPUT);
+    assert_int_equal(tacet_limit_create(&d, &train, NULL, &l, &e), TACET_BAD_INPUT);
     if (!strstr(e.text, part)) fail_msg("'%s' does not say '%s'", e.text, part);
     assert_int_equal(l.statistic, 42);
 }

@@ -45,7 +45,7 @@ static void ask(bench *b, const char *text)
 {
     tacet_quantity_ref q;
     tacet_error e = {.text = ""};
-    if (tacet_quantity_parse(text, &b->train, &q, &e) != TACET_OK) fail_msg("%s", e.text);
+    if (tacet_quantity_parse(text, &b->train, NULL, &q, &e) != TACET_OK) fail_msg("%s", e.text);
     assert_false(q.what->scalar);
     b->out.line[LINES] = 99; // whatever stood there before
     b->out.mean = 77;
@@ -57,7 +57,7 @@ static double number(bench *b, const char *text)
 {
     tacet_quantity_ref q;
     tacet_error e = {.text = ""};
-    if (tacet_quantity_parse(text, &b->train, &q, &e) != TACET_OK) fail_msg("%s", e.text);
+    if (tacet_quantity_parse(text, &b->train, NULL, &q, &e) != TACET_OK) fail_msg("%s", e.text);
     assert_true(q.what->scalar);
     double value = NAN;
     assert_int_equal(q.what->value(&b->r, q.target, &value), TACET_OK);
@@ -219,7 +219,7 @@ static void test_short_output(void **state)
     b.out.n_lines = 3;
     b.out.line[4] = 7;
     tacet_quantity_ref q;
-    assert_int_equal(tacet_quantity_parse("node-angle:hub", &b.train, &q, NULL), TACET_OK);
+    assert_int_equal(tacet_quantity_parse("node-angle:hub", &b.train, NULL, &q, NULL), TACET_OK);
     assert_int_equal(q.what->spectrum(&b.r, q.target, &b.out), TACET_OK);
     assert_near(creal(b.out.line[3]), 3, 0, 0);
     assert_near(creal(b.out.line[4]), 7, 0, 0);
@@ -252,10 +252,10 @@ static void refused(bench *b, const char *text, const char *part)
 {
     tacet_quantity_ref q = {.target = 42};
     tacet_error e = {.text = ""};
-    assert_int_equal(tacet_quantity_parse(text, &b->train, &q, &e), TACET_BAD_INPUT);
+    assert_int_equal(tacet_quantity_parse(text, &b->train, NULL, &q, &e), TACET_BAD_INPUT);
     if (!strstr(e.text, part)) fail_msg("'%s' does not say '%s'", e.text, part);
     assert_int_equal(q.target, 42); // untouched
-    assert_int_equal(tacet_quantity_parse(text, &b->train, &q, NULL), TACET_BAD_INPUT);
+    assert_int_equal(tacet_quantity_parse(text, &b->train, NULL, &q, NULL), TACET_BAD_INPUT);
 }
 
 static void test_parse_refuses_and_says_what_is_allowed(void **state)
@@ -289,10 +289,12 @@ static void test_parse_finds_the_target(void **state)
     bench b;
     bench_init(&b);
     tacet_quantity_ref q;
-    assert_int_equal(tacet_quantity_parse("link-stress:crank end", &b.train, &q, NULL), TACET_OK);
+    assert_int_equal(tacet_quantity_parse("link-stress:crank end", &b.train, NULL, &q, NULL),
+                     TACET_OK);
     assert_string_equal(q.what->name, "link-stress");
     assert_int_equal(q.target, 1);
-    assert_int_equal(tacet_quantity_parse("node-acceleration:back", &b.train, &q, NULL), TACET_OK);
+    assert_int_equal(tacet_quantity_parse("node-acceleration:back", &b.train, NULL, &q, NULL),
+                     TACET_OK);
     assert_string_equal(q.what->name, "node-acceleration");
     assert_int_equal(q.target, 2);
     tacet_arena_destroy(b.arena);

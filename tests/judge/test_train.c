@@ -246,12 +246,12 @@ static void test_link_stress_from_the_shaft(void **state)
     solve(&b);
     tacet_quantity_ref q;
     tacet_error e = {.text = ""};
-    if (tacet_quantity_parse("link-stress:pin shaft", b.train, &q, &e) != TACET_OK)
+    if (tacet_quantity_parse("link-stress:pin shaft", b.train, NULL, &q, &e) != TACET_OK)
         fail_msg("%s", e.text);
     b.motion.link_torque_Nm[q.target].mean = 10e3;
     assert_int_equal(q.what->spectrum(&b.r, q.target, &b.out), TACET_OK);
     assert_near(b.out.mean, 1.5 * 6.366198, 1e-6, 0);
-    assert_int_equal(tacet_quantity_parse("link-stress:crank end", b.train, &q, NULL),
+    assert_int_equal(tacet_quantity_parse("link-stress:crank end", b.train, NULL, &q, NULL),
                      TACET_BAD_INPUT); // no section stated
     clear(&b);
 }
