@@ -34,6 +34,7 @@ double tacet_model_reference(const tacet_model *m, size_t band);
 size_t tacet_model_lines(const tacet_model *m, unsigned revolutions); // lines of a repeat
 const char *tacet_model_quantity_text(const tacet_model *m, tacet_quantity_ref q,
                                       char out[TACET_QUANTITY_TEXT]);
+const char *tacet_model_limit_unit(const tacet_model *m, size_t limit);
 const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q);
 double tacet_model_demand(const tacet_model *m,
                           double speed_rad_per_s); // of the study at a speed, N m

@@ -99,9 +99,11 @@ typedef struct {
 typedef enum {
     TACET_STAT_PP,
     TACET_STAT_HALF_RANGE,
-    TACET_STAT_RMS,  // of the lines, order 0 excluded
-    TACET_STAT_MEAN, // its magnitude: the sign of a torque depends on the sense of its shaft
-    TACET_STAT_MAX   // largest magnitude of the signal, mean included
+    TACET_STAT_RMS,      // of the lines, order 0 excluded
+    TACET_STAT_MEAN,     // its magnitude: the sign of a torque depends on the sense of its shaft
+    TACET_STAT_MAX,      // largest magnitude of the signal, mean included
+    TACET_STAT_REVERSED, // of a stress: largest rainflow cycle as a fully reversed amplitude
+    TACET_STAT_DAMAGE    // of a stress: Miner sum per hour
 } tacet_statistic;
 typedef struct {
     const char *name, *quantity;
@@ -206,12 +208,37 @@ typedef struct {
 TACET_USE tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t,
                                           const tacet_body_def *body, tacet_limit *out,
                                           tacet_error *e);
-// spectrum: scratch that holds r->n_lines lines; transform and buffer for peaks (oversampled >= 6).
+const char *tacet_limit_unit(const tacet_limit *l, const tacet_body_def *body); // damage: 1/h
+bool tacet_limit_counts_cycles(const tacet_limit *l); // reversed, damage: by rainflow
+typedef struct {
+    tacet_spectrum *spectrum;         // holds r->n_lines lines
+    const tacet_transform *transform; // oversampled >= 6
+    double *buffer;                   // of the transform
+    double *cycles; // TACET_RAIN_SCRATCH numbers a sample and one; NULL: no limit counts cycles
+} tacet_limit_scratch;
+#define TACET_RAIN_SCRATCH 5
 TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r,
-                                         double reserve_db, tacet_spectrum *spectrum,
-                                         const tacet_transform *transform, double *buffer,
+                                         double reserve_db, const tacet_limit_scratch *scratch,
                                          tacet_limit_result *out);
 void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
+
+// ---- strength ----------------------------------------------------------------------------------
+// Rainflow counting of ASTM E1049-85 5.4.4: series[n] -> cycles with range, mean and count (0.5 or
+// 1) in the order in which they close; points between reversals and repeated ones do not count.
+// Returns how many (fewer than n). `stack` and `out` hold n.
+typedef struct {
+    double range, mean, count;
+} tacet_rain;
+size_t tacet_rainflow(size_t n, const double *series, double *stack, tacet_rain *out);
+// A closed repeat, samples[n] of one period: counted from its largest value on around to it again,
+// so that every cycle is whole (5.4.5). `series`, `stack` and `out` hold n + 1.
+size_t tacet_rainflow_repeat(size_t n, const double *samples, double *series, double *stack,
+                             tacet_rain *out);
+// Amplitude fully reversed that does the same: Goodman a / (1 - m / S), Gerber a / (1 - (m / S)^2);
+// tension only (m <= 0: a itself), for shear the magnitude of m counts. INFINITY: m reaches S.
+double tacet_reversed_amplitude(const tacet_fatigue_def *f, double amplitude, double mean);
+// Miner sum of one pass, N = at_cycles (a / amplitude)^-exponent, no endurance limit.
+double tacet_miner_sum(const tacet_fatigue_def *f, size_t n, const tacet_rain *cycles);
 
 // ---- order windows -----------------------------------------------------------------------------
 // Exact speeds (rad/s) at which an order lies in the band, bare or counted.

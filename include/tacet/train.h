@@ -28,6 +28,13 @@ typedef struct { // stiffness of a crank throw by Carter's or Ker Wilson's formu
         pin_inner_m, throw_m, web_thickness_m, web_width_m;
 } tacet_throw_def;
 
+typedef enum { TACET_MEAN_GOODMAN, TACET_MEAN_GERBER, TACET_MEAN_NONE } tacet_mean_rule;
+typedef struct { // shear stress against cycles, a straight line in log-log; NAN: not stated
+    double amplitude_MPa, at_cycles, exponent; // fully reversed amplitude that lasts so long
+    double ultimate_MPa;                       // shear strength, for the mean
+    int mean_rule;                             // tacet_mean_rule
+} tacet_fatigue_def;
+
 // causal: constant-Q law, |K| grows with w^alpha, alpha = (2/pi) atan(loss factor) (Kjartansson,
 // J. Geophys. Res. 84, 1979); constant: k (1 + i loss), which no system in time can have, so
 // harmonic only.
@@ -41,6 +48,7 @@ typedef struct {
     double shear_modulus_Pa;
     double outer_m, inner_m; // also the section for stress; NAN: no stress
     double stress_concentration;
+    tacet_fatigue_def fatigue;
     tacet_throw_def throw_; // key "throw"
     // at most one way to state the damping
     double damping_Nms_per_rad, damping_ratio, loss_factor;
@@ -100,7 +108,8 @@ typedef struct {
     size_t from, to;
     double stiffness_Nm_per_rad, gear_ratio;
     double section_modulus_m3, stress_concentration; // NAN: none stated
-    double loss_factor, damping_Nms_per_rad;         // resolved; the other is 0
+    tacet_fatigue_def fatigue;
+    double loss_factor, damping_Nms_per_rad; // resolved; the other is 0
     double main_mode_hz;
 } tacet_link_info;
 tacet_link_info tacet_train_link_info(const tacet_train *t, size_t link);

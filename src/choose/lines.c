@@ -86,7 +86,9 @@ static tacet_status take_limit(line_marks *k, const tacet_model *m, size_t i, ta
     if (limit->of.what->scalar || limit->statistic == TACET_STAT_MEAN) return TACET_OK;
     tacet_status status = tacet_workspace_quantity(w, limit->of, &s, NULL);
     if (status != TACET_OK || s->n_lines > k->n_lines) return status;
-    mark_lines(s, LINE_SHARE_OF_SCALAR * limit->value, k->of_limit + i * (k->n_lines + 1));
+    double least = limit->statistic == TACET_STAT_DAMAGE ? LINE_SHARE_OF_LARGEST * largest_line(s)
+                                                         : LINE_SHARE_OF_SCALAR * limit->value;
+    mark_lines(s, least, k->of_limit + i * (k->n_lines + 1));
     return TACET_OK;
 }
 

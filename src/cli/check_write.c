@@ -146,7 +146,7 @@ static void write_judging(const check_model *m)
         const tacet_limit *limit = tacet_model_limit(model, i);
         printf(LABEL, i ? "" : "limits");
         tacet_write_clean(stdout, limit->name);
-        const char *unit = tacet_model_quantity_unit(model, limit->of);
+        const char *unit = tacet_model_limit_unit(model, i);
         bool plain = !unit || strcmp(unit, "1") == 0;
         printf(" %s%s", number(limit->value, 5, a), plain ? "" : " ");
         tacet_write_clean(stdout, plain ? "" : unit);
@@ -251,7 +251,7 @@ static void put_judging(tacet_json *j, const check_model *m)
         tacet_json_put_text(j, "name", limit->name);
         tacet_json_put_text(j, "quantity", m->s->study->limits[i].quantity);
         tacet_json_put_number(j, "value", limit->value);
-        tacet_json_put_text(j, "unit", tacet_model_quantity_unit(model, limit->of));
+        tacet_json_put_text(j, "unit", tacet_model_limit_unit(model, i));
         tacet_json_end_object(j);
     }
     tacet_json_end_array(j);

@@ -143,7 +143,7 @@ static int write_limits(const point *p)
         cli_put(&rows, l->margin_db);
         cli_put(&rows, l->value);
         cli_put(&rows, limit->value);
-        cli_put_text(&rows, tacet_model_quantity_unit(p->s->model, limit->of));
+        cli_put_text(&rows, tacet_model_limit_unit(p->s->model, i));
         cli_put_text(&rows, name_of(p, limit->of));
     }
     const tacet_table *t = cli_rows_end(&rows);

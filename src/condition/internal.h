@@ -75,6 +75,7 @@ struct tacet_workspace {
     tacet_spectrum unit, quantity, *fired;                       // fired: [cylinders]
     const tacet_spectrum **slot_transfer;                        // [cylinders]
     double *samples, *angle, *torque_at, *inertia_at, *slope_at; // [longest transform (+ 2)]
+    double *cycles; // for limits that count cycles; NULL: none does
     double *order;                                               // [most of any grid]
     double complex *pulse;                                       // the same
     double *twist; // [nodes] mean angle against the flywheel's, referred to the crank

@@ -11,3 +11,8 @@ const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q
 {
     return tacet_quantity_unit(q, &tacet_model_study(m)->body);
 }
+
+const char *tacet_model_limit_unit(const tacet_model *m, size_t limit)
+{
+    return tacet_limit_unit(tacet_model_limit(m, limit), &tacet_model_study(m)->body);
+}

@@ -141,12 +141,13 @@ static tacet_status judge_all(tacet_workspace *w, const tacet_band_level *levels
         tacet_band_judge(band, &levels[b], isnan(ref) ? NULL : &ref, &out->bands[b]);
         take_worst(out, out->bands[b].verdict, out->bands[b].margin_db, (int)b, -1);
     }
-    const tacet_transform *t = model_transform(m, w->response.n_lines, PEAK_OVERSAMPLE);
+    const tacet_limit_scratch scratch = {&w->quantity,
+                                         model_transform(m, w->response.n_lines, PEAK_OVERSAMPLE),
+                                         w->samples, w->cycles};
     for (size_t i = 0; i < m->n_limits; i++) {
         workspace_shape(w, w->response.revolutions, w->response.n_lines);
-        tacet_status status =
-            tacet_limit_judge(&m->limits[i], &w->response, m->study->screen.reserve_db,
-                              &w->quantity, t, w->samples, &out->limits[i]);
+        tacet_status status = tacet_limit_judge(
+            &m->limits[i], &w->response, m->study->screen.reserve_db, &scratch, &out->limits[i]);
         if (status != TACET_OK) return status;
         take_worst(out, out->limits[i].verdict, out->limits[i].margin_db, -1, (int)i);
     }

@@ -52,8 +52,13 @@ static tacet_status create_scratch(tacet_workspace *w)
     w->twist = tacet_arena_alloc(w->arena, tacet_train_nodes(m->train) * sizeof(double));
     w->slot_transfer = tacet_arena_alloc(w->arena, tacet_engine_cylinders(m->engine) *
                                                        sizeof(const tacet_spectrum *));
-    return w->samples && w->angle && w->torque_at && w->inertia_at && w->slope_at && w->order &&
-                   w->pulse && w->twist && w->slot_transfer
+    bool counts = false;
+    for (size_t i = 0; i < m->n_limits; i++)
+        counts |= tacet_limit_counts_cycles(&m->limits[i]);
+    if (counts)
+        w->cycles = tacet_arena_alloc(w->arena, TACET_RAIN_SCRATCH * (n + 1) * sizeof(double));
+    return (!counts || w->cycles) && w->samples && w->angle && w->torque_at && w->inertia_at &&
+                   w->slope_at && w->order && w->pulse && w->twist && w->slot_transfer
                ? TACET_OK
                : TACET_NO_MEMORY;
 }

@@ -5,7 +5,8 @@
 
 static const char *const kinds[] = {"cab", "mount", "driveline", "crank", NULL};
 static const char *const references[] = {"worst-speed", "same-speed", NULL};
-static const char *const statistics[] = {"pp", "half_range", "rms", "mean", "max", NULL};
+static const char *const statistics[] = {"pp",  "half_range", "rms",    "mean",
+                                         "max", "reversed",   "damage", NULL};
 
 // Of a band's edges, by kind: how far the modes of what answers are known beforehand. Crank modes
 // come from drawings, mounts and cabs from catalogue stiffness. Common practice, no source.
@@ -105,8 +106,11 @@ static const tacet_field limit_fields[] = {
      LIMIT(statistic),
      .fallback = "",
      .choices = statistics,
-     .doc = "of the signal over a repeat: pp and half_range from its extremes, rms without the "
-            "mean, mean and max as magnitudes; may be left out where a quantity has only one"},
+     .doc =
+         "of the signal over a repeat: pp and half_range from its extremes, rms without the "
+         "mean, mean and max as magnitudes; of a link-stress also reversed, its largest cycle as a "
+         "fully reversed amplitude, and damage, Miner's sum per hour; may be left out where a "
+         "quantity has only one"},
     {.key = "value",
      .kind = TACET_FIELD_NUMBER,
      LIMIT(value),

@@ -73,3 +73,8 @@ const char *tacet_quantity_unit(tacet_quantity_ref q, const tacet_body_def *body
     if (q.what->target == TACET_TARGET_MEMBER) return q.target < 3 ? "N" : "N m";
     return q.what->unit;
 }
+
+const char *tacet_limit_unit(const tacet_limit *l, const tacet_body_def *body)
+{
+    return l->statistic == TACET_STAT_DAMAGE ? "1/h" : tacet_quantity_unit(l->of, body);
+}

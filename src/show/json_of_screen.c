@@ -77,7 +77,7 @@ static void put_limits(tacet_json *j, source s)
         bool known = result->verdict != TACET_NO_VERDICT;
         tacet_json_begin_object(j);
         tacet_json_put_text(j, "name", limit->name);
-        tacet_json_put_text(j, "unit", tacet_model_quantity_unit(s.m, limit->of));
+        tacet_json_put_text(j, "unit", tacet_model_limit_unit(s.m, l));
         tacet_json_put_number(j, "limit", limit->value);
         tacet_json_put_number(j, "value", known ? result->value : NAN);
         tacet_json_put_number(j, "margin_db", known ? result->margin_db : NAN);

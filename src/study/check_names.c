@@ -220,6 +220,25 @@ static void check_statistic(checker *c, const char *path, const tacet_quantity *
                   names[q->statistic]);
 }
 
+// Counting cycles needs a stress and what it does to the shaft.
+static void check_fatigue(checker *c, const char *path, const tacet_limit_def *d)
+{
+    const tacet_train_def *t = &c->study->train;
+    bool counts = d->statistic == TACET_STAT_DAMAGE || d->statistic == TACET_STAT_REVERSED;
+    static const char stress[] = "link-stress:";
+    if (!counts || fill_is_wrong(c->f, path)) return;
+    if (strncmp(d->quantity, stress, sizeof stress - 1) != 0) {
+        check_say(c, false, path, "statistic: reversed and damage are of link-stress alone");
+        return;
+    }
+    for (size_t i = 0; i < t->n_links; i++)
+        if (t->links[i].name && strcmp(t->links[i].name, d->quantity + sizeof stress - 1) == 0 &&
+            isnan(t->links[i].fatigue.amplitude_MPa))
+            check_say(c, false, path,
+                      "statistic: link '%.63s' must state fatigue: {amplitude_mpa, ultimate_mpa}",
+                      t->links[i].name);
+}
+
 void check_quantities(checker *c)
 {
     const tacet_study *s = c->study;
@@ -238,5 +257,6 @@ void check_quantities(checker *c)
         const tacet_quantity *q = check_quantity(c, path, s->limits[i].quantity);
         tacet_text(path, sizeof path, "limits[%zu].statistic", i);
         if (q) check_statistic(c, path, q, s->limits[i].statistic);
+        if (q) check_fatigue(c, path, &s->limits[i]);
     }
 }

@@ -97,7 +97,8 @@ static tacet_status fill_links(tacet_train *t, const tacet_train_def *d, tacet_e
                                   .gear_ratio = l->gear_ratio,
                                   .section_modulus_m3 = section_modulus(l),
                                   .stress_concentration =
-                                      isnan(l->outer_m) ? NAN : l->stress_concentration};
+                                      isnan(l->outer_m) ? NAN : l->stress_concentration,
+                                  .fatigue = l->fatigue};
         tacet_status status = tacet_link_stiffness(l, &info->stiffness_Nm_per_rad, e);
         if (status != TACET_OK) return status;
         t->link_name[i] = tacet_arena_text(t->arena, l->name);
@@ -112,7 +113,8 @@ static tacet_status fill_links(tacet_train *t, const tacet_train_def *d, tacet_e
                                           .stiffness_Nm_per_rad = damper->ring_inertia_kgm2 * w * w,
                                           .gear_ratio = 1,
                                           .section_modulus_m3 = NAN,
-                                          .stress_concentration = NAN};
+                                          .stress_concentration = NAN,
+                                          .fatigue = {.amplitude_MPa = NAN}};
         t->housed[ring] = t->housed[t->link[link].to];
         t->link_name[link] = tacet_arena_text(t->arena, damper->name);
         if (!t->link_name[link]) return TACET_NO_MEMORY;

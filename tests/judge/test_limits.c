@@ -60,7 +60,9 @@ static tacet_limit_result judge(bench *b, tacet_limit l)
 {
     tacet_limit_result r;
     memset(&r, 0xff, sizeof r);
-    assert_int_equal(tacet_limit_judge(&l, &b->r, 3, &b->scratch, b->t, b->x, &r), TACET_OK);
+    assert_int_equal(
+        tacet_limit_judge(&l, &b->r, 3, &(tacet_limit_scratch){&b->scratch, b->t, b->x, NULL}, &r),
+        TACET_OK);
     return r;
 }
 
@@ -162,14 +164,17 @@ static void test_not_finite_is_refused(void **state)
         tacet_limit l = limit_of("link-torque:coupling", statistic, 1);
         tacet_limit_result r = {.value = 42};
         b.torque.mean = b.torque.line[3] = NAN;
-        assert_int_equal(tacet_limit_judge(&l, &b.r, 3, &b.scratch, b.t, b.x, &r),
-                         TACET_NOT_FINITE);
+        assert_int_equal(
+            tacet_limit_judge(&l, &b.r, 3, &(tacet_limit_scratch){&b.scratch, b.t, b.x, NULL}, &r),
+            TACET_NOT_FINITE);
         assert_near(r.value, 42, 0, 0);
     }
     b.r.peak_pressure_Pa = INFINITY;
     tacet_limit l = limit_of("peak-pressure", -1, 1);
     tacet_limit_result r;
-    assert_int_equal(tacet_limit_judge(&l, &b.r, 3, &b.scratch, b.t, b.x, &r), TACET_NOT_FINITE);
+    assert_int_equal(
+        tacet_limit_judge(&l, &b.r, 3, &(tacet_limit_scratch){&b.scratch, b.t, b.x, NULL}, &r),
+        TACET_NOT_FINITE);
     bench_clear(&b);
 }
 
