@@ -210,7 +210,8 @@ static void check_statistic(checker *c, const char *path, const tacet_quantity *
     const char *const *names = field->choices;
     size_t n = 0;
     char list[120];
-    while (names[n])
+    bool stress = strcmp(q->name, "link-stress") == 0; // alone has cycles to count
+    while (names[n] && (stress || n < TACET_STAT_REVERSED))
         n++;
     if (statistic < 0 && q->statistic < 0)
         check_say(c, false, path, "statistic is missing: a limit on %s needs one of %s", q->name,

@@ -334,7 +334,7 @@ tacet_link_def tacet_link_default(void)
         .outer_m = NAN,
         .inner_m = 0,
         .stress_concentration = 1,
-        .fatigue = {.amplitude_MPa = NAN},
+        .fatigue = {.amplitude_MPa = NAN, .at_cycles = 1e6, .exponent = 5, .ultimate_MPa = NAN},
         .throw_ = {.formula = -1,
                    .journal_length_m = NAN,
                    .journal_outer_m = NAN,

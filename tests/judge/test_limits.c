@@ -191,8 +191,9 @@ static void refused(const char *quantity, int statistic, double value, const cha
 static void test_create_refuses(void **state)
 {
     (void)state;
-    refused("link-torque:coupling", -1, 1, "needs a statistic: pp, half_range, rms, mean or max");
-    refused("link-torque:coupling", 5, 1, "needs a statistic");
+    refused("link-torque:coupling", -1, 1, "needs a statistic: pp, half_range, rms, mean, max");
+    refused("link-torque:coupling", 7, 1, "needs a statistic");
+    refused("link-torque:coupling", TACET_STAT_DAMAGE, 1, "damage is a statistic of a link-stress");
     refused("peak-pressure", TACET_STAT_PP, 1, "the statistic of peak-pressure is max; read pp");
     refused("irregularity", TACET_STAT_MAX, 1, "the statistic of irregularity is pp; read max");
     refused("damper-heat:coupling", TACET_STAT_RMS, 1, "damper-heat is mean; read rms");

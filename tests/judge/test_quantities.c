@@ -231,9 +231,10 @@ static void test_short_output(void **state)
 static void test_every_row_is_whole(void **state)
 {
     (void)state;
-    const char *const names[] = {"roll-torque",  "link-torque", "link-stress",
-                                 "node-angle",   "node-speed",  "node-acceleration",
-                                 "irregularity", "damper-heat", "peak-pressure"};
+    const char *const names[] = {
+        "roll-torque",       "link-torque",  "link-stress",  "node-angle",         "node-speed",
+        "node-acceleration", "irregularity", "mount-force",  "place-acceleration", "cab",
+        "shaking",           "damper-heat",  "peak-pressure"};
     size_t n = 0;
     for (const tacet_quantity *q = tacet_quantities(); q->name; q++, n++) {
         assert_true(q->unit && q->unit[0] && q->doc && q->doc[0]);

@@ -37,7 +37,7 @@ static void test_words(void **state)
     check_words(field(train, "nodes")->section, "name inertia_kgm2 damping_nms_per_rad on ");
     check_words(field(train, "links")->section,
                 "name from to stiffness_nm_per_rad stiffness_nm_per_deg length_mm "
-                "shear_modulus_gpa outer_mm inner_mm stress_concentration throw "
+                "shear_modulus_gpa outer_mm inner_mm stress_concentration fatigue throw "
                 "damping_nms_per_rad damping_ratio loss_factor at_hz loss_law gear_ratio ");
     check_words(field(field(train, "links")->section, "throw")->section,
                 "formula journal_length_mm journal_outer_mm journal_inner_mm pin_length_mm "
