@@ -12,6 +12,8 @@ static int solve(const cli_call *call, const cli_session *s)
     if (status != TACET_OK) return cli_failed(status, NULL);
     int code = cli_leading_orders(s, &m.order, &m.n_orders);
     if (code != CLI_DONE) return code;
+    code = modes_find_body(&m);
+    if (code != CLI_DONE) return code;
     if (cli_given(call, "json")) return modes_write_json(&m);
     return cli_given(call, "csv") ? modes_write_csv(call, &m) : modes_write_text(call, &m);
 }
@@ -44,7 +46,7 @@ static const cli_option options[] = {
 const cli_command cli_modes_command = {
     .name = "modes",
     .operands = "STUDY",
-    .doc = "torsional modes of the train, criticals, unit response",
+    .doc = "modes of the train and of the body on its mounts, criticals, unit response",
     .about = "Undamped modes with the mean reciprocating inertia in the throws. Criticals are the "
              "speeds at\nwhich the leading order of a density, or a multiple of the firing order, "
              "meets a mode.\n",

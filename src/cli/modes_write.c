@@ -76,7 +76,7 @@ int modes_write_text(const cli_call *call, const modes *m)
     printf("Criticals are listed from %g to %g rpm; '-' lies outside. An order counts when it is a "
            "line of a pattern, or a\nmultiple of the firing order.\n",
            range[0], range[1]);
-    return code;
+    return code == CLI_DONE ? modes_write_body(call, m) : code;
 }
 
 int modes_write_csv(const cli_call *call, const modes *m)
@@ -137,5 +137,6 @@ int modes_write_json(const modes *m)
         mode_json(&j, m, k);
     tacet_json_end_array(&j);
     tacet_json_end_object(&j);
+    modes_body_json(&j, m);
     return cli_end_json(&j);
 }
