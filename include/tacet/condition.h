@@ -87,6 +87,11 @@ bool tacet_row_worse(const tacet_row *a, const tacet_row *b);
 TACET_USE tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c,
                                    tacet_level level, tacet_workspace *w, tacet_row *out);
 // The response of the last solved condition of this workspace, until the next solve; NULL: none.
+// The same of one path's share, and comfort at a point of acceleration.
+TACET_USE tacet_status tacet_workspace_path(tacet_workspace *w, size_t path,
+                                            const tacet_spectrum **out);
+TACET_USE tacet_status tacet_workspace_comfort(tacet_workspace *w, size_t point,
+                                               tacet_comfort *out);
 const tacet_response *tacet_workspace_response(const tacet_workspace *w);
 // Gas torque and pressure of the last solved condition (engine_work loaded for it).
 const tacet_engine_work *tacet_workspace_engine(const tacet_workspace *w);

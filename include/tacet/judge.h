@@ -222,6 +222,27 @@ TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_respo
                                          tacet_limit_result *out);
 void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
 
+// ---- people -----------------------------------------------------------------------------------
+// One path's share of what arrives at its point (path: index in the body), weighted as the point.
+TACET_USE tacet_status tacet_path_share(const tacet_response *r, size_t path, tacet_spectrum *out);
+
+// Whole-body vibration of one axis at one point, ISO 2631-1 (from memory but for the weightings).
+typedef struct {
+    double weighted_rms;  // a_w of 6.1, m/s2
+    double crest_factor;  // largest |a_w(t)| over a_w
+    double fourth_power;  // fourth root of the mean of a_w(t)^4, m/s2: VDV = it * T^(1/4)
+    bool rms_says_enough; // crest factor up to 9 and fourth power up to 1.75 a_w (6.2.1, 6.3.3)
+} tacet_comfort;
+// s: acceleration, already weighted; no lines: all 0.
+void tacet_comfort_of(const tacet_spectrum *s, const tacet_transform *transform, double *buffer,
+                      tacet_comfort *out);
+double tacet_vibration_dose(const tacet_comfort *c, double seconds); // VDV, m/s^1.75
+// Annex C's words for a total value in m/s2, "not uncomfortable" .. "extremely uncomfortable";
+// its ranges overlap on purpose: up to two apply, `second` may be NULL or gets NULL.
+const char *tacet_comfort_words(double total_m_per_s2, const char **second);
+// a_v = sqrt(sum (k a_w)^2) over x, y, z; comfort of a seated person k = 1, 1, 1.
+double tacet_total_value(const double k[3], const double weighted_rms[3]);
+
 // ---- strength ----------------------------------------------------------------------------------
 // Rainflow counting of ASTM E1049-85 5.4.4: series[n] -> cycles with range, mean and count (0.5 or
 // 1) in the order in which they close; points between reversals and repeated ones do not count.

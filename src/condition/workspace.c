@@ -167,3 +167,22 @@ tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quantity_ref q,
     *out = &w->quantity;
     return TACET_OK;
 }
+
+tacet_status tacet_workspace_path(tacet_workspace *w, size_t path, const tacet_spectrum **out)
+{
+    if (!w->has_response || !w->m->body) return TACET_BAD_INPUT;
+    workspace_shape(w, w->response.revolutions, w->response.n_lines);
+    *out = &w->quantity;
+    return tacet_path_share(&w->response, path, &w->quantity);
+}
+
+tacet_status tacet_workspace_comfort(tacet_workspace *w, size_t point, tacet_comfort *out)
+{
+    const tacet_spectrum *s;
+    tacet_quantity_ref q = {tacet_quantity_find("cab"), point};
+    if (!w->m->body || point >= tacet_body_points(w->m->body)) return TACET_BAD_INPUT;
+    tacet_status status = tacet_workspace_quantity(w, q, &s, NULL);
+    if (status == TACET_OK)
+        tacet_comfort_of(s, model_transform(w->m, s->n_lines, PEAK_OVERSAMPLE), w->samples, out);
+    return status;
+}

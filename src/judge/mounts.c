@@ -76,6 +76,20 @@ tacet_status cab(const tacet_response *r, size_t point, tacet_spectrum *out)
     return TACET_OK;
 }
 
+tacet_status tacet_path_share(const tacet_response *r, size_t path, tacet_spectrum *out)
+{
+    size_t n;
+    tacet_six_complex q;
+    tacet_status status = begin(r, out, &n);
+    if (status != TACET_OK) return status;
+    out->mean = 0;
+    for (size_t h = 1; h <= n; h++) {
+        motion_on(r, h, out->line[h], q);
+        out->line[h] = tacet_body_path_response(r->body, path, quantity_base(r) * (double)h, q);
+    }
+    return TACET_OK;
+}
+
 tacet_status shaking(const tacet_response *r, size_t member, tacet_spectrum *out)
 {
     size_t n = quantity_begin(r, out);
