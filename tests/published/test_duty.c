@@ -80,7 +80,7 @@ static double fired(double deg, double charge)
 {
     if (deg <= -180) return charge;
     if (deg <= 0) return charge * pow(RATIO * small / volume(deg), n_up);
-    if (deg <= 180) return charge * pow(RATIO, n_up) * pow(small / volume(deg), n_down);
+    if (deg < 180) return charge * pow(RATIO, n_up) * pow(small / volume(deg), n_down);
     return exhaust;
 }
 
