@@ -67,6 +67,15 @@ void trial_count(const char *what)
     tally[i].most = NAN;
 }
 
+static const trial *unfinished;
+
+static void print_unfinished(void) // an assertion outside the properties ended the program
+{
+    if (unfinished)
+        printf("---- ended in seed %llu\n%s----\n", (unsigned long long)unfinished->seed,
+               unfinished->text);
+}
+
 static void print_tally(void)
 {
     for (size_t i = 0; i < PROPERTIES_MOST && tally[i].name; i++) {
@@ -83,11 +92,14 @@ int trial_run(int argc, char **argv, uint64_t first, unsigned n, void (*run)(tri
     unsigned broken = 0;
     if (argc > 1) first = strtoull(argv[1], NULL, 10);
     if (argc > 1) n = argc > 2 ? (unsigned)strtoul(argv[2], NULL, 10) : 1;
+    if (atexit(print_unfinished)) return 2;
     setvbuf(stdout, NULL, _IOLBF, 0);
     for (unsigned i = 0; i < n; i++) {
         trial t = {.seed = first + i, .chance = {.state = first + i}};
         trial_write(&t, "# seed %llu\n", (unsigned long long)t.seed);
+        unfinished = &t;
         run(&t);
+        unfinished = NULL;
         if (t.broken) {
             printf("---- what seed %llu is about\n%s----\n", (unsigned long long)t.seed, t.text);
             broken++;
