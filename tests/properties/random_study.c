@@ -202,6 +202,8 @@ void plan_write(const plan *p, trial *t)
                 "  - {name: twist, quantity: \"link-torque:%s\", statistic: half_range, "
                 "value: 1000}\n",
                 p->last_link);
-    trial_write(t, "screen: {speeds_rpm: [%.17g], brake_torque_nm: %.17g, densities: [1]}\n",
+    trial_write(t,
+                "screen: {speeds_rpm: [%.17g], brake_torque_nm: %.17g, densities: {longest: 9, "
+                "lowest: 1/1}}\n",
                 p->rpm, p->demand_Nm);
 }
