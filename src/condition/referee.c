@@ -11,7 +11,7 @@
 #define FROZEN_CLOSURE 1e-9
 // .. but for a link that is stiff far beyond all lines: the march's steps then follow the bound of
 // its stability, and their rounding leaves this much.
-#define STIFF_CLOSURE 1e-7
+#define STIFF_CLOSURE 1e-6
 // Lines this far below the largest are left out of the comparison in dB.
 #define COMPARE_DB 40.0
 
