@@ -1,8 +1,8 @@
 #!/bin/sh
-# usage: sh tests/coverage.sh [FOLDER]   lines and branches of src/ that quick, cross and cli tests run
-# Builds in FOLDER (build-coverage, removed afterwards; a given one is kept), prints totals a room,
-# then each stretch that no test runs and that tests/uncovered gives no reason for. Fails when such a
-# stretch is a whole function.
+# usage: sh tests/coverage.sh [FOLDER]   what quick, cross and cli tests run of src/
+# Builds in FOLDER (build-coverage, removed afterwards; a given one is kept), prints lines and
+# branches a room, then each stretch that no test runs and that tests/uncovered gives no reason
+# for. Fails when such a stretch is a whole function.
 set -eu
 cd "$(dirname "$0")/.."
 sh tests/setup.sh test

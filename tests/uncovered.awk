@@ -84,6 +84,7 @@ END {
     for (key in reason)
         if (!(key in used)) print "tests/uncovered: tests run " key " by now: take its line out"
     for (i = 1; i <= n_texts; i++)
-        if (!(text[i] in used)) print "tests/uncovered: no stretch holds \"" text[i] "\": take its line out"
+        if (!(text[i] in used))
+            print "tests/uncovered: no stretch holds \"" text[i] "\": take its line out"
     exit wrong
 }

@@ -23,7 +23,7 @@ done
 [ $differ = yes ] || stop "every value is as kept"
 
 meson test -C build --no-rebuild --suite quick --suite cross -t 6 --print-errorlogs ||
-    stop "published and cross tests come first: golden values only keep what they have shown to be right"
+    stop "published and cross tests come first: golden values keep what those have shown"
 
 reason=${1-}
 if [ -z "$reason" ] && [ -t 0 ]; then
