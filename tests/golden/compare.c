@@ -135,6 +135,12 @@ static void compare_records(comparison *c, const golden_record *golden, const go
         differs(c, golden, f);
         fprintf(c->to, "golden '%s', now there is no such column\n", f->text);
     }
+    for (size_t i = 0; i < now->n; i++) {
+        const golden_field *f = &now->field[i];
+        if (golden_find_field(now, f->group, f->column) == f) continue;
+        differs(c, now, f);
+        fprintf(c->to, "two columns have this name\n");
+    }
 }
 
 size_t golden_compare(const char *name, const golden_page *golden, const golden_page *now,
