@@ -1,6 +1,7 @@
 #!/bin/sh
-# usage: sh tests/run.sh [what meson test takes]   installs what is missing, builds in ./build, runs every test
-# prints the ten slowest tests; last line: N passed, N failed (test programs)
+# usage: sh tests/run.sh [what meson test takes]
+# Installs what is missing, builds in ./build, runs every test.
+# Prints the ten slowest tests; last line: N passed, N failed (test programs)
 set -eu
 cd "$(dirname "$0")/.."
 sh tests/setup.sh test

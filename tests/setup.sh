@@ -1,5 +1,6 @@
 #!/bin/sh
-# usage: sh tests/setup.sh build|test   installs what is missing of tests/packages.txt (root, or sudo)
+# usage: sh tests/setup.sh build|test
+# Installs what is missing of tests/packages.txt (root, or sudo).
 set -eu
 here=$(dirname "$0")
 wanted=$(awk -v all="$1" '/^#/ || NF < 2 { next } all == "test" || $2 == "build" { print $1 }' \

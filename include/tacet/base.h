@@ -62,16 +62,16 @@ typedef struct {
     char *file, *text;
 } tacet_problem;
 typedef struct tacet_problems tacet_problems;
-tacet_problems *tacet_problems_create(void);
+tacet_problems *tacet_problems_create(void);    // NULL: no memory
 void tacet_problems_destroy(tacet_problems *p); // accepts NULL
 // Adds one problem; keeps the first 20 errors and 20 warnings by place and counts the rest.
 void tacet_problems_add(tacet_problems *p, bool warning, const char *file, int line, int column,
                         const char *format, ...) TACET_PRINTF(6, 7);
-size_t tacet_problems_kept(const tacet_problems *p);
+size_t tacet_problems_kept(const tacet_problems *p); // how many tacet_problems_at can show
 const tacet_problem *tacet_problems_at(const tacet_problems *p,
-                                       size_t i);      // by file as met, then place
-size_t tacet_problems_errors(const tacet_problems *p); // with those not kept
-size_t tacet_problems_warnings(const tacet_problems *p);
+                                       size_t i);        // by file as met, then place
+size_t tacet_problems_errors(const tacet_problems *p);   // with those not kept
+size_t tacet_problems_warnings(const tacet_problems *p); // with those not kept
 
 // ---- numbers, independent of the process's locale ---------------------------------------------
 // Decimal grammar [+-]digits[.digits][e[+-]digits], also .digits; no nan, inf, hex, blanks. False:
@@ -79,7 +79,7 @@ size_t tacet_problems_warnings(const tacet_problems *p);
 TACET_USE bool tacet_number_parse(const char *text, double *out);
 // Shortest of %.15g, %.16g, %.17g that reads back equal; "null" for a non-finite value.
 #define TACET_NUMBER_TEXT 32
-const char *tacet_number_format(double value, char out[TACET_NUMBER_TEXT]);
+const char *tacet_number_format(double value, char out[TACET_NUMBER_TEXT]); // returns `out`
 // For tables: `digits` significant digits without trailing zeros, digits before the point always
 // whole; never exponent form between 1e-3 and 1e7. "null" for a non-finite value.
 const char *tacet_number_format_short(double value, int digits, char out[TACET_NUMBER_TEXT]);
@@ -154,6 +154,7 @@ typedef struct tacet_reporter {
     void (*say)(void *who, bool warning, const char *path, const char *text);
     void *who;
 } tacet_reporter;
+// Formats the text and says it to r.
 void tacet_report(const tacet_reporter *r, bool warning, const char *path, const char *format, ...)
     TACET_PRINTF(4, 5);
 
@@ -165,6 +166,7 @@ typedef struct {
     char **header; // [columns]
     double *value; // [rows * columns], row by row
 } tacet_csv;
+// Reads a file of at most 64 MiB; everything of `out` is in the arena.
 TACET_USE tacet_status tacet_csv_read(const char *path, tacet_arena *a, tacet_csv *out,
                                       tacet_error *e);
 

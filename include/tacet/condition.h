@@ -16,18 +16,18 @@ TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **ou
 // Fills the cycle table and the all-fire reference levels, once, before any workspace is created;
 // the model is frozen afterwards and may be shared by threads.
 TACET_USE tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e);
-void tacet_model_destroy(tacet_model *m); // accepts NULL
-const tacet_study *tacet_model_study(const tacet_model *m);
-const tacet_engine *tacet_model_engine(const tacet_model *m);
-const tacet_train *tacet_model_train(const tacet_model *m);
-const tacet_body *tacet_model_body(const tacet_model *m); // NULL: the study has none
-size_t tacet_model_bands(const tacet_model *m);
-const tacet_band *tacet_model_band(const tacet_model *m, size_t i);
-size_t tacet_model_limits(const tacet_model *m);
-const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i);
+void tacet_model_destroy(tacet_model *m);                             // accepts NULL
+const tacet_study *tacet_model_study(const tacet_model *m);           // borrowed
+const tacet_engine *tacet_model_engine(const tacet_model *m);         // owned by the model
+const tacet_train *tacet_model_train(const tacet_model *m);           // owned by the model
+const tacet_body *tacet_model_body(const tacet_model *m);             // NULL: the study has none
+size_t tacet_model_bands(const tacet_model *m);                       // how many
+const tacet_band *tacet_model_band(const tacet_model *m, size_t i);   // i < tacet_model_bands
+size_t tacet_model_limits(const tacet_model *m);                      // how many
+const tacet_limit *tacet_model_limit(const tacet_model *m, size_t i); // i < tacet_model_limits
+#define TACET_ORDER_MOST 36
 // Highest order of the lines, past every band at every speed that may be asked; `limited` (may be
 // NULL): the mode of interest asked for more than TACET_ORDER_MOST.
-#define TACET_ORDER_MOST 36
 double tacet_model_highest_order(const tacet_model *m, bool *limited);
 // All-fire reference level of a band at its worst screened speed; NAN: unreachable at every one.
 double tacet_model_reference(const tacet_model *m, size_t band);
@@ -39,13 +39,14 @@ const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q
 double tacet_model_demand(const tacet_model *m,
                           double speed_rad_per_s); // of the study at a speed, N m
 size_t tacet_model_throws(const tacet_model *m);   // driven nodes
-size_t tacet_model_throw_node(const tacet_model *m, size_t throw_index);
-const tacet_roll *tacet_model_all_fire(const tacet_model *m);
+size_t tacet_model_throw_node(const tacet_model *m, size_t throw_index); // node index of one
+const tacet_roll *tacet_model_all_fire(const tacet_model *m);            // every cylinder fires
 // Elastic modes, Hz ascending, the rigid one first; n = number of nodes.
 const double *tacet_model_mode_hz(const tacet_model *m);
 
+// Of a prepared model, which must outlive it.
 TACET_USE tacet_status tacet_workspace_create(const tacet_model *m, tacet_workspace **out);
-void tacet_workspace_destroy(tacet_workspace *w);
+void tacet_workspace_destroy(tacet_workspace *w); // accepts NULL
 
 typedef struct {
     uint64_t id;
@@ -53,11 +54,11 @@ typedef struct {
     const tacet_roll *roll;
 } tacet_condition;
 typedef enum { TACET_SOLVED, TACET_UNREACHABLE, TACET_FAILED } tacet_outcome;
-const char *tacet_outcome_text(tacet_outcome o);
-typedef enum {            // level of detail of the motion
-    TACET_LEVEL_CONSTANT, // harmonic at constant speed
-    TACET_LEVEL_RIPPLE,   // harmonic with speed ripple (default)
-    TACET_LEVEL_STEADY    // march + shooting
+const char *tacet_outcome_text(tacet_outcome o); // "solved", "unreachable", "failed"
+typedef enum {                                   // level of detail of the motion
+    TACET_LEVEL_CONSTANT,                        // harmonic at constant speed
+    TACET_LEVEL_RIPPLE,                          // harmonic with speed ripple (default)
+    TACET_LEVEL_STEADY                           // march + shooting
 } tacet_level;
 
 #define TACET_BANDS_MOST  16
@@ -110,6 +111,7 @@ typedef struct {
     unsigned repeats, evaluations; // of the full march
     double closure;
 } tacet_agreement;
+// Solves one condition three ways and compares; a march that does not settle is told in `settled`.
 TACET_USE tacet_status tacet_solve_referee(const tacet_model *m, const tacet_condition *c,
                                            tacet_workspace *w, tacet_agreement *out);
 
@@ -134,7 +136,7 @@ typedef struct {
     double (*number)(const tacet_band_result *b);
     const char *(*text)(const tacet_band_result *b);
 } tacet_band_column;
-const tacet_band_column *tacet_band_columns(size_t *n);
+const tacet_band_column *tacet_band_columns(size_t *n); // of every band of a row
 
 #pragma GCC visibility pop
 #endif

@@ -74,8 +74,8 @@ typedef struct tacet_engine_def {
 // Root sections "engine", "cycle", "skip" as members of tacet_engine_def: offsets are from its
 // start, so a study embeds one tacet_engine_def and points all three at it.
 const tacet_section *tacet_engine_keys(void);
-const tacet_section *tacet_cycle_keys(void);
-const tacet_section *tacet_skip_keys(void);
+const tacet_section *tacet_cycle_keys(void); // section "cycle"
+const tacet_section *tacet_skip_keys(void);  // section "skip"
 // Required members are NAN or absent. Pointers in a definition are borrowed. A curve with n = 0
 // stands for the default of its key.
 tacet_engine_def tacet_engine_default(void);
@@ -99,9 +99,9 @@ typedef struct tacet_engine_work tacet_engine_work; // one a thread
 // first error that the check finds.
 TACET_USE tacet_status tacet_engine_create(const tacet_engine_def *d, tacet_engine **out,
                                            tacet_error *e);
-void tacet_engine_destroy(tacet_engine *en);
-unsigned tacet_engine_cylinders(const tacet_engine *en);
-unsigned tacet_engine_strokes(const tacet_engine *en);
+void tacet_engine_destroy(tacet_engine *en);                         // accepts NULL
+unsigned tacet_engine_cylinders(const tacet_engine *en);             // how many, and so slots
+unsigned tacet_engine_strokes(const tacet_engine *en);               // 4 or 2
 double tacet_engine_displacement(const tacet_engine *en);            // m3, all cylinders
 unsigned tacet_engine_number(const tacet_engine *en, unsigned slot); // cylinder number in a slot
 double tacet_engine_firing_angle(const tacet_engine *en,
@@ -109,10 +109,10 @@ double tacet_engine_firing_angle(const tacet_engine *en,
 const char *tacet_engine_node(const tacet_engine *en, unsigned slot); // train node it drives
 // As stated, or its defaults: bank, place along the crank.
 tacet_cylinder_def tacet_engine_cylinder(const tacet_engine *en, unsigned slot);
-bool tacet_engine_may_skip(const tacet_engine *en, unsigned slot);
-const tacet_slider *tacet_engine_slider(const tacet_engine *en);
+bool tacet_engine_may_skip(const tacet_engine *en, unsigned slot); // by `skip: cylinders`
+const tacet_slider *tacet_engine_slider(const tacet_engine *en);   // common to all cylinders
 double tacet_engine_mean_inertia(const tacet_engine *en); // <m x'^2> of one cylinder, kg m2
-const tacet_engine_def *tacet_engine_def_of(const tacet_engine *en);
+const tacet_engine_def *tacet_engine_def_of(const tacet_engine *en); // its own copy
 
 // Fills the cycle table for skip runs up to `longest_run` (at most TACET_ENGINE_RUN_MOST) between
 // two speeds, once; the engine is frozen afterwards and may be shared by threads. Nodes depend on
@@ -123,7 +123,7 @@ TACET_USE tacet_status tacet_engine_prepare(tacet_engine *en, double lowest_rad_
                                             tacet_error *e);
 // After prepare; TACET_BAD_INPUT before it.
 TACET_USE tacet_status tacet_engine_work_create(const tacet_engine *en, tacet_engine_work **out);
-void tacet_engine_work_destroy(tacet_engine_work *w);
+void tacet_engine_work_destroy(tacet_engine_work *w); // accepts NULL
 
 // ---- duty: what it takes to meet a demand -----------------------------------------------------
 typedef enum {

@@ -110,8 +110,9 @@ typedef struct {
     int statistic; // tacet_statistic; -1: the quantity's only one
     double value;  // in the quantity's unit
 } tacet_limit_def;
-const tacet_section *tacet_band_keys(void);
-const tacet_section *tacet_limit_keys(void);
+const tacet_section *tacet_band_keys(void);  // of one item of `bands`
+const tacet_section *tacet_limit_keys(void); // of one item of `limits`
+// Edges and limits that make sense together; `path` names the band, "bands[0]".
 void tacet_band_def_check(const tacet_band_def *d, const char *path, const tacet_reporter *r);
 double tacet_band_guard(const tacet_band_def *d); // resolved fraction
 
@@ -135,6 +136,7 @@ typedef struct tacet_band {
     int reference;
     double reserve_db;
 } tacet_band;
+// Resolves guard and quantity against a train. Borrows the name of d.
 TACET_USE tacet_status tacet_band_create(const tacet_band_def *d, double reserve_db,
                                          const tacet_train *t, const tacet_body_def *body,
                                          tacet_band *out, tacet_error *e);
@@ -154,16 +156,17 @@ typedef struct {
 // lines; `fired[i]`: spectrum of slot i's fired torque alone on the same lines; NULL: no cylinder
 // dispersion. A cylinder that differs from the others does so in each of its cycles, so it adds to
 // every line of the repeat where its own fired torque has content (all-fire: the half-order comb):
-//   level^2 = sum |S|^2 / 2 + cylinder_sigma^2 sum_i sum |H_i F_i|^2 / 2 + cyclic_ms,
-// sums over the lines inside the counted band. cyclic_ms: mean square from cycle-to-cycle variation
-// inside the band (tacet_cyclic_mean_square), or 0.
+//   level^2 = sum |S|^2 / 2 + cylinder_sigma^2 sum_i sum |H_i F_i|^2 / 2 + cyclic_mean_square,
+// sums over the lines inside the counted band. cyclic_mean_square: from cycle-to-cycle variation
+// inside the band, as tacet_cyclic_mean_square gives it, or 0.
 typedef struct {
     double cylinder_sigma;
     size_t n_slots;
     const tacet_spectrum *const *transfer; // [n_slots]
     const tacet_spectrum *fired;           // [n_slots]
-    double cyclic_ms;
+    double cyclic_mean_square;
 } tacet_dispersion;
+// Level of s at a crank speed; d NULL: no dispersion.
 void tacet_band_level_of(const tacet_band *b, const tacet_spectrum *s, double speed_rad_per_s,
                          const tacet_dispersion *d, tacet_band_level *out);
 // Mean square of a quantity from independent variation of fired cycles, integral over [low, high]
@@ -205,6 +208,7 @@ typedef struct {
     tacet_verdict verdict;   // near inside the reserve
     tacet_why why;
 } tacet_limit_result;
+// Resolves quantity and statistic against a train. Borrows the name of d.
 TACET_USE tacet_status tacet_limit_create(const tacet_limit_def *d, const tacet_train *t,
                                           const tacet_body_def *body, tacet_limit *out,
                                           tacet_error *e);
@@ -220,6 +224,7 @@ typedef struct {
 TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r,
                                          double reserve_db, const tacet_limit_scratch *scratch,
                                          tacet_limit_result *out);
+// The result of a condition that has no response.
 void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
 
 // ---- people -----------------------------------------------------------------------------------

@@ -20,7 +20,7 @@ typedef struct {
 
 // Points s at arena memory for n_lines lines, all zero, of one revolution. Never inside a solve.
 TACET_USE tacet_status tacet_spectrum_init(tacet_spectrum *s, size_t n_lines, tacet_arena *a);
-void tacet_spectrum_zero(tacet_spectrum *s);
+void tacet_spectrum_zero(tacet_spectrum *s); // mean and lines; revolutions and n_lines stay
 // s += factor x on the lines that both have, which are of equal revolutions; the mean takes
 // creal(factor).
 void tacet_spectrum_add(tacet_spectrum *s, double complex factor, const tacet_spectrum *x);
@@ -34,11 +34,11 @@ double tacet_order_speed(double order, double hz);           // rad/s at which t
 typedef struct tacet_transform tacet_transform;
 TACET_USE tacet_status tacet_transform_create(size_t n_samples,
                                               tacet_transform **out); // even, 4 .. 2^28
-void tacet_transform_destroy(tacet_transform *t);
-size_t tacet_transform_samples(const tacet_transform *t);
+void tacet_transform_destroy(tacet_transform *t);                     // accepts NULL
+size_t tacet_transform_samples(const tacet_transform *t);             // its length
 // Buffers from these two functions have the alignment the plans need.
 double *tacet_transform_buffer(const tacet_transform *t); // n_samples + 2 doubles; NULL: no memory
-void tacet_transform_release(double *buffer);
+void tacet_transform_release(double *buffer);             // accepts NULL
 // samples[n] (equally spaced over the repeat, first at angle 0) -> s (lines up to s->n_lines <
 // n/2). `samples` is overwritten. n_lines >= n/2 gives NAN, here and below: no length could tell
 // such lines apart.
@@ -55,6 +55,7 @@ size_t tacet_transform_length(size_t n_lines, unsigned oversample);
 typedef struct {
     double max, min, max_angle_rad, min_angle_rad;
 } tacet_peaks;
+// buffer: of t, overwritten.
 void tacet_spectrum_peaks(const tacet_spectrum *s, const tacet_transform *t, double *buffer,
                           tacet_peaks *out);
 double tacet_spectrum_at(const tacet_spectrum *s, double angle_rad); // value at a crank angle

@@ -18,8 +18,9 @@ typedef struct {
 // Word of 'x', '.', '1'..'9', 1..64 letters; anything else is refused with the position in
 // e->column and leaves `out` alone. Does not reduce.
 TACET_USE tacet_status tacet_pattern_parse(const char *word, tacet_pattern *out, tacet_error *e);
-char *tacet_pattern_format(const tacet_pattern *p, char out[TACET_PATTERN_LONGEST + 1]);
-void tacet_pattern_reduce(tacet_pattern *p); // "x.x." becomes "x."
+char *tacet_pattern_format(const tacet_pattern *p,
+                           char out[TACET_PATTERN_LONGEST + 1]); // as parse reads it
+void tacet_pattern_reduce(tacet_pattern *p);                     // "x.x." becomes "x."
 // Letter i of `out` is letter i + by of p; out may be p.
 void tacet_pattern_rotate(const tacet_pattern *p, unsigned by, tacet_pattern *out);
 unsigned tacet_pattern_fires(const tacet_pattern *p); // letters that fire, at whatever charge
@@ -46,7 +47,7 @@ typedef struct {
     bool primitive;       // leave out repetitions of a shorter word
     const char *path;     // of a book
 } tacet_maker_def;
-tacet_maker_def tacet_maker_default(void);
+tacet_maker_def tacet_maker_default(void); // all-fire, undithered, seed 1
 
 typedef struct tacet_words { // result of a maker or a book; all in the caller's arena
     tacet_pattern *pattern;
@@ -104,6 +105,8 @@ typedef struct tacet_roll {
     unsigned longest_gap;   // skipped opportunities in a row; all of them when nothing fires
     tacet_cycle *cycle;     // [cylinders * cycles], slot by slot
 } tacet_roll;
+// Deals the letters of p, reduced, out to the cylinders. TACET_BAD_INPUT: cylinders or strokes out
+// of range, or an empty word.
 TACET_USE tacet_status tacet_roll_create(const tacet_pattern *p, unsigned cylinders,
                                          unsigned strokes, tacet_roll **out, tacet_error *e);
 void tacet_roll_destroy(tacet_roll *r); // accepts NULL

@@ -16,7 +16,7 @@ const char *tacet_version(void); // of the program, "0.1.0"
 // Screening result, not a release; who confirms it and how; what is not modelled. SHORT is one
 // sentence without line breaks (JSON, table files); LONG is wrapped text of some lines.
 typedef enum { TACET_CAUTION_SHORT, TACET_CAUTION_LONG } tacet_caution_form;
-const char *tacet_caution(tacet_caution_form form);
+const char *tacet_caution(tacet_caution_form form); // never NULL
 
 // ---- streams
 // Flushes and checks a stream that was written to: TACET_OUTSIDE_WORLD with `what` (a path, or
@@ -72,22 +72,22 @@ typedef struct {
     bool started[TACET_JSON_DEPTH + 1]; // holds a value already
     bool broken[TACET_JSON_DEPTH + 1];  // its last value began a line
 } tacet_json;
-tacet_json tacet_json_start(FILE *to);
-void tacet_json_begin_object(tacet_json *j);
-void tacet_json_end_object(tacet_json *j);
-void tacet_json_begin_array(tacet_json *j);
-void tacet_json_end_array(tacet_json *j);
-void tacet_json_key(tacet_json *j, const char *key);
-void tacet_json_number(tacet_json *j, double value); // non-finite: null
-void tacet_json_count(tacet_json *j, uint64_t value);
+tacet_json tacet_json_start(FILE *to);                 // nothing is written yet
+void tacet_json_begin_object(tacet_json *j);           // as a value, or as the root
+void tacet_json_end_object(tacet_json *j);             // of the object begun last
+void tacet_json_begin_array(tacet_json *j);            // as a value
+void tacet_json_end_array(tacet_json *j);              // of the array begun last
+void tacet_json_key(tacet_json *j, const char *key);   // its value comes next
+void tacet_json_number(tacet_json *j, double value);   // non-finite: null
+void tacet_json_count(tacet_json *j, uint64_t value);  // whole, all digits
 void tacet_json_text(tacet_json *j, const char *text); // NULL: null; invalid UTF-8: U+FFFD
-void tacet_json_bool(tacet_json *j, bool value);
-void tacet_json_null(tacet_json *j);
+void tacet_json_bool(tacet_json *j, bool value);       // true or false
+void tacet_json_null(tacet_json *j);                   // absent; a sibling says why
 // A key and its value in one call.
 void tacet_json_put_number(tacet_json *j, const char *key, double value);
-void tacet_json_put_count(tacet_json *j, const char *key, uint64_t value);
-void tacet_json_put_text(tacet_json *j, const char *key, const char *text);
-void tacet_json_put_bool(tacet_json *j, const char *key, bool value);
+void tacet_json_put_count(tacet_json *j, const char *key, uint64_t value);  // whole, all digits
+void tacet_json_put_text(tacet_json *j, const char *key, const char *text); // NULL: null
+void tacet_json_put_bool(tacet_json *j, const char *key, bool value);       // true or false
 // Ends the line. TACET_BAD_INPUT: levels left open or calls out of order; otherwise as
 // tacet_stream_check.
 TACET_USE tacet_status tacet_json_finish(tacet_json *j, const char *what, tacet_error *e);
@@ -101,15 +101,16 @@ typedef struct tacet_folder tacet_folder;
 // Creates the folder (one level) if it is missing. TACET_BAD_INPUT when it holds anything that no
 // run writes; TACET_OUTSIDE_WORLD when it cannot be made, read or written.
 TACET_USE tacet_status tacet_folder_open(const char *path, tacet_folder **out, tacet_error *e);
-const char *tacet_folder_path(const tacet_folder *f);
+const char *tacet_folder_path(const tacet_folder *f); // as opened
 const char *const *tacet_folder_names(void); // every name that a run may write; ends with NULL
 // One file at a time, written as <name>.tmp and given its name by commit. The stream belongs to the
 // folder. Commit reports every write error with the path and leaves an older file as it was.
 TACET_USE tacet_status tacet_folder_begin(tacet_folder *f, const char *name, FILE **out,
                                           tacet_error *e);
+// Closes it, checks that all is written, and gives it its name.
 TACET_USE tacet_status tacet_folder_commit(tacet_folder *f, tacet_error *e);
-void tacet_folder_abort(tacet_folder *f);
-bool tacet_folder_wrote(const tacet_folder *f, const char *name);
+void tacet_folder_abort(tacet_folder *f); // removes the .tmp; nothing open: nothing
+bool tacet_folder_wrote(const tacet_folder *f, const char *name); // by this run
 // Removes files of an earlier run that this one did not write, so that a folder never mixes two.
 TACET_USE tacet_status tacet_folder_tidy(tacet_folder *f, tacet_error *e);
 void tacet_folder_close(tacet_folder *f); // accepts NULL; aborts an open file
@@ -227,13 +228,13 @@ typedef struct {
     tacet_status (*check)(FILE *drawing, tacet_error *e); // is the file whole, with its labels?
 } tacet_drawing_format;
 const tacet_drawing_format *tacet_drawing_formats(void); // svg, png; ends with name == NULL
-const tacet_drawing_format *tacet_drawing_format_find(const char *name);
+const tacet_drawing_format *tacet_drawing_format_find(const char *name); // NULL: none
 
 typedef struct {
     const tacet_drawing_format *format; // svg
     double time_limit_s;                // 30, then gnuplot is killed; 0: only the script is written
 } tacet_draw_how;
-tacet_draw_how tacet_draw_default(void);
+tacet_draw_how tacet_draw_default(void); // SVG, 30 s
 // The gnuplot script of a figure with its data, whole in itself: `gnuplot script > drawing`.
 // TACET_NOT_FINITE: nothing to draw; e says what is missing.
 TACET_USE tacet_status tacet_figure_script(const tacet_figure *f,
@@ -255,7 +256,7 @@ typedef struct {
 // runs (stretches of speed), summary (one row a candidate), ranking (one row a speed), no-go,
 // agreement, levels (one row a condition, every column); ends with name == NULL.
 const tacet_screen_table *tacet_screen_tables(void);
-const tacet_screen_table *tacet_screen_table_find(const char *name);
+const tacet_screen_table *tacet_screen_table_find(const char *name); // NULL: none
 // First lines: what runs where, what it saves, what limits. lines[n], in the arena.
 TACET_USE tacet_status tacet_screen_summary(const tacet_model *m, const tacet_screen *s,
                                             tacet_arena *a, const char *const **lines, size_t *n);
@@ -286,11 +287,14 @@ typedef struct {
     const char *name;
     tacet_quantity_ref of; // with a spectrum
 } tacet_figure_source;
+// Levels of the pattern's orders over the screened speeds, at the study's demand.
 TACET_USE tacet_status tacet_orders_of_pattern(const tacet_figure_source *s,
                                                tacet_figure_orders *out, tacet_error *e);
+// Order bars at one speed and demand, against all-fire where that reaches the demand.
 TACET_USE tacet_status tacet_bars_of_condition(const tacet_figure_source *s, double speed_rad_per_s,
                                                double demand_Nm, tacet_figure_bars *out,
                                                tacet_error *e);
+// Pressure and torque over the repeat at one speed and demand.
 TACET_USE tacet_status tacet_repeat_of_condition(const tacet_figure_source *s,
                                                  double speed_rad_per_s, double demand_Nm,
                                                  tacet_figure_repeat *out, tacet_error *e);

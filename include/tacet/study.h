@@ -21,11 +21,11 @@ typedef struct {
     tacet_densities_def densities;
     const char **patterns; // words, or paths of books
     size_t n_patterns;
-    double highest_order;   // NAN: from the highest mode of interest
-    double reserve_db;      // 3
-    double least_clear_rpm; // rad/s: a density clear over less is not recommended (150 rpm)
-    double least_saving;    // fraction: saving less than this more than the next clear one (0.01)
-    unsigned referee;       // worst conditions re-solved by march + steady (8)
+    double highest_order;         // NAN: from the highest mode of interest
+    double reserve_db;            // 3
+    double least_clear_rad_per_s; // a density clear over less is not recommended (150 rpm)
+    double least_saving; // fraction: saving less than this more than the next clear one (0.01)
+    unsigned referee;    // worst conditions re-solved by march + steady (8)
 } tacet_screen_def;
 
 typedef struct tacet_study { // open, immutable after reading
@@ -50,7 +50,7 @@ TACET_USE tacet_status tacet_study_read(const char *path, tacet_problems *proble
 // The same from memory; `name` stands in messages.
 TACET_USE tacet_status tacet_study_read_text(const char *text, size_t bytes, const char *name,
                                              tacet_problems *problems, tacet_study **out);
-void tacet_study_destroy(tacet_study *s);
+void tacet_study_destroy(tacet_study *s);    // accepts NULL
 const tacet_section *tacet_study_keys(void); // the root of the one table
 
 // Every key with its value and where that came from, in table order, for `check`.
@@ -60,6 +60,7 @@ typedef enum {
     TACET_FROM_COMPUTED,
     TACET_FROM_NOTHING
 } tacet_from;
+// Calls `tell` once a key; its texts hold until it returns.
 TACET_USE tacet_status tacet_study_values(const tacet_study *s,
                                           void (*tell)(void *who, const char *path,
                                                        const char *value, const char *unit,

@@ -43,7 +43,7 @@ typedef struct {
     const char *name, *from, *to;
     // exactly one way to state the stiffness: NAN / NULL where not used
     double stiffness_Nm_per_rad,
-        stiffness_Nm_per_deg; // the second already in N m/rad (unit in table)
+        stiffness_catalogue_Nm_per_rad; // of key stiffness_nm_per_deg, as catalogues state it
     double length_m; // with outer_m (and inner_m): a plain shaft, k = pi G (D^4 - d^4)/(32 L)
     double shear_modulus_Pa;
     double outer_m, inner_m; // also the section for stress; NAN: no stress
@@ -74,10 +74,10 @@ typedef struct tacet_train_def {
     const double *added_inertia_kgm2; // [n_nodes of the file] mean reciprocating share, or NULL
     double lowest_hz, highest_hz;     // range of lines in which a loss factor must hold
 } tacet_train_def;
-const tacet_section *tacet_train_keys(void);
-tacet_train_def tacet_train_default(void); // flywheel "flywheel", load the flywheel, nothing else
-tacet_node_def tacet_node_default(void);   // without name and inertia
-tacet_link_def tacet_link_default(void);   // without name, ends, stiffness
+const tacet_section *tacet_train_keys(void); // section "train"
+tacet_train_def tacet_train_default(void);   // flywheel "flywheel", load the flywheel, nothing else
+tacet_node_def tacet_node_default(void);     // without name and inertia
+tacet_link_def tacet_link_default(void);     // without name, ends, stiffness
 // A connected tree, known names, one stiffness, at most one damping, names unique.
 void tacet_train_def_check(const tacet_train_def *d, const tacet_reporter *r);
 // Stiffness of one link def from whichever way it is stated, N m/rad on the `to` side.
@@ -87,23 +87,24 @@ TACET_USE tacet_status tacet_link_stiffness(const tacet_link_def *d, double *out
 // ------------------------------------------------------------------------------------------------
 typedef struct tacet_train tacet_train;
 typedef struct tacet_train_work tacet_train_work; // one a thread, sized once
+// Assembles nodes, links and dampers; d may go afterwards. TACET_BAD_INPUT: what the check finds.
 TACET_USE tacet_status tacet_train_create(const tacet_train_def *d, tacet_train **out,
                                           tacet_error *e);
-void tacet_train_destroy(tacet_train *t);
+void tacet_train_destroy(tacet_train *t);       // accepts NULL
 size_t tacet_train_nodes(const tacet_train *t); // with damper rings, in file order, rings last
-size_t tacet_train_links(const tacet_train *t);
-const char *tacet_train_node_name(const tacet_train *t, size_t node);
-const char *tacet_train_link_name(const tacet_train *t, size_t link);
+size_t tacet_train_links(const tacet_train *t); // with those of dampers, which come last
+const char *tacet_train_node_name(const tacet_train *t, size_t node); // owned by the train
+const char *tacet_train_link_name(const tacet_train *t, size_t link); // owned by the train
 size_t tacet_train_node_find(const tacet_train *t, const char *name); // SIZE_MAX: none
-size_t tacet_train_link_find(const tacet_train *t, const char *name);
-size_t tacet_train_flywheel(const tacet_train *t);
-size_t tacet_train_load(const tacet_train *t);
+size_t tacet_train_link_find(const tacet_train *t, const char *name); // SIZE_MAX: none
+size_t tacet_train_flywheel(const tacet_train *t);                    // node index
+size_t tacet_train_load(const tacet_train *t);                        // node index
 double tacet_train_node_ratio(const tacet_train *t,
                               size_t node); // mean speed / crank mean speed, signed
 double tacet_train_node_inertia(const tacet_train *t, size_t node); // with the added share
-double tacet_train_node_damping(const tacet_train *t, size_t node);
-bool tacet_train_node_housed(const tacet_train *t, size_t node);
-double tacet_train_total_inertia(const tacet_train *t); // referred to the crank
+double tacet_train_node_damping(const tacet_train *t, size_t node); // to ground, N m s/rad
+bool tacet_train_node_housed(const tacet_train *t, size_t node);    // on the powertrain?
+double tacet_train_total_inertia(const tacet_train *t);             // referred to the crank
 typedef struct {
     size_t from, to;
     double stiffness_Nm_per_rad, gear_ratio;
@@ -112,7 +113,8 @@ typedef struct {
     double loss_factor, damping_Nms_per_rad; // resolved; the other is 0
     double main_mode_hz;
 } tacet_link_info;
-tacet_link_info tacet_train_link_info(const tacet_train *t, size_t link);
+tacet_link_info tacet_train_link_info(const tacet_train *t,
+                                      size_t link); // link < tacet_train_links
 // Complex stiffness of a link at w rad/s, as both solvers use it (N m/rad, on the `to` side).
 double complex tacet_train_link_impedance(const tacet_train *t, size_t link, double w_rad_per_s);
 
@@ -130,6 +132,7 @@ typedef struct {
     tacet_spectrum *link_torque_Nm; // [n_links], means: the carried torque
     size_t n_nodes, n_links;
 } tacet_train_motion;
+// Points m at arena memory for n_lines lines of every node and link.
 TACET_USE tacet_status tacet_train_motion_init(tacet_train_motion *m, const tacet_train *t,
                                                size_t n_lines, tacet_arena *a);
 
@@ -137,7 +140,7 @@ TACET_USE tacet_status tacet_train_motion_init(tacet_train_motion *m, const tace
 // steady is asked for. n_throws: most throws of any call.
 TACET_USE tacet_status tacet_train_work_create(const tacet_train *t, size_t most_lines,
                                                size_t n_throws, tacet_train_work **out);
-void tacet_train_work_destroy(tacet_train_work *w);
+void tacet_train_work_destroy(tacet_train_work *w); // accepts NULL
 
 // Response to torques on the throws (nodes throw_node[n_throws]), constant speed: one line at a
 // time, tree elimination in the impedance form. torque[i].revolutions and n_lines give the grid;
@@ -173,7 +176,7 @@ typedef struct {
     double tolerance;     // relative: closure (steady; 0: 1e-6), error left over (ripple; 0: 1e-6)
     unsigned most_passes; // on all samples (ripple), repeats (steady); 8
 } tacet_periodic;
-tacet_periodic tacet_periodic_default(void);
+tacet_periodic tacet_periodic_default(void); // 2 revolutions, 48 lines, 8 passes, tolerance 1e-6
 
 // Harmonic with the throws' own angles: iterates F = T(W t + d) - J'/2 a'^2 - (J - <J>) a'', d with
 // the static twist of the mean torques against the flywheel, whose mean angle is W t. Also gives
@@ -202,6 +205,7 @@ TACET_USE tacet_status tacet_train_steady(const tacet_train *t, double speed_rad
 typedef struct {
     double in_W, dissipated_W, out_W;
 } tacet_train_power;
+// The motion is of the same lines as `torque`.
 tacet_train_power tacet_train_power_of(const tacet_train *t, double speed_rad_per_s,
                                        size_t n_throws, const size_t *throw_node,
                                        const tacet_spectrum *torque,

@@ -50,14 +50,19 @@ TACET_USE tacet_status line_marks_take(line_marks *k, const tacet_model *m, cons
 // those add there has not been seen.
 void line_marks_unseen(line_marks *k, const tacet_model *m, const double *grid, size_t n_grid);
 void mark_lines(const tacet_spectrum *s, double least_peak, bool *mark);
-// Speeds between two at which a marked line enters or leaves the counted band.
-TACET_USE tacet_status lines_enter_and_leave(const tacet_band *b, unsigned revolutions,
-                                             size_t n_lines, const bool *mark,
-                                             const double range[2], speeds *out, tacet_arena *a);
-// Speeds between two at which a marked line has one of the frequencies inside low_hz..high_hz.
-TACET_USE tacet_status lines_cross(const double *hz, size_t n_hz, double low_hz, double high_hz,
-                                   unsigned revolutions, size_t n_lines, const bool *mark,
-                                   const double range[2], speeds *out, tacet_arena *a);
+// Lines of a repeat, those that count, and the speeds (rad/s) between which they are looked at.
+typedef struct {
+    unsigned revolutions;
+    size_t n_lines;
+    const bool *mark; // [n_lines + 1]
+    double range[2];
+} marked_lines;
+// Speeds at which a marked line enters or leaves the counted band.
+TACET_USE tacet_status lines_enter_and_leave(const marked_lines *l, const tacet_band *b,
+                                             speeds *out, tacet_arena *a);
+// Speeds at which a marked line has one of the frequencies inside low_hz..high_hz.
+TACET_USE tacet_status lines_cross(const marked_lines *l, const double *hz, size_t n_hz,
+                                   double low_hz, double high_hz, speeds *out, tacet_arena *a);
 // Every speed worth a look besides the grid's, rising, none of them on the grid.
 TACET_USE tacet_status extra_speeds(const line_marks *k, const tacet_model *m, const double *grid,
                                     size_t n_grid, speeds *out, tacet_arena *a);

@@ -130,31 +130,29 @@ static tacet_status add_inside(speeds *out, double speed, const double range[2],
     return speed > range[0] && speed < range[1] ? speeds_add(out, speed, a) : TACET_OK;
 }
 
-tacet_status lines_enter_and_leave(const tacet_band *b, unsigned revolutions, size_t n_lines,
-                                   const bool *mark, const double range[2], speeds *out,
+tacet_status lines_enter_and_leave(const marked_lines *l, const tacet_band *b, speeds *out,
                                    tacet_arena *a)
 {
-    for (size_t h = 1; h <= n_lines; h++) {
-        if (!mark[h]) continue;
+    for (size_t h = 1; h <= l->n_lines; h++) {
+        if (!l->mark[h]) continue;
         double low, high;
-        tacet_order_window(b, (double)h / revolutions, true, &low, &high);
-        tacet_status status = add_inside(out, low, range, a);
-        if (status == TACET_OK) status = add_inside(out, high, range, a);
+        tacet_order_window(b, (double)h / l->revolutions, true, &low, &high);
+        tacet_status status = add_inside(out, low, l->range, a);
+        if (status == TACET_OK) status = add_inside(out, high, l->range, a);
         if (status != TACET_OK) return status;
     }
     return TACET_OK;
 }
 
-tacet_status lines_cross(const double *hz, size_t n_hz, double low_hz, double high_hz,
-                         unsigned revolutions, size_t n_lines, const bool *mark,
-                         const double range[2], speeds *out, tacet_arena *a)
+tacet_status lines_cross(const marked_lines *l, const double *hz, size_t n_hz, double low_hz,
+                         double high_hz, speeds *out, tacet_arena *a)
 {
     for (size_t i = 0; i < n_hz; i++) {
         if (hz[i] < low_hz || hz[i] > high_hz) continue;
-        for (size_t h = 1; h <= n_lines; h++) {
-            if (!mark[h]) continue;
-            double speed = tacet_order_speed((double)h / revolutions, hz[i]);
-            tacet_status status = add_inside(out, speed, range, a);
+        for (size_t h = 1; h <= l->n_lines; h++) {
+            if (!l->mark[h]) continue;
+            double speed = tacet_order_speed((double)h / l->revolutions, hz[i]);
+            tacet_status status = add_inside(out, speed, l->range, a);
             if (status != TACET_OK) return status;
         }
     }
@@ -188,23 +186,23 @@ static void drop_grid(speeds *s, const double *grid, size_t n_grid)
 tacet_status extra_speeds(const line_marks *k, const tacet_model *m, const double *grid,
                           size_t n_grid, speeds *out, tacet_arena *a)
 {
-    const double range[2] = {grid[0], grid[n_grid - 1]};
+    marked_lines l = {k->revolutions, k->n_lines, NULL, {grid[0], grid[n_grid - 1]}};
     const double *hz = tacet_model_mode_hz(m) + 1; // the rigid mode is no resonance
     size_t n_hz = tacet_train_nodes(tacet_model_train(m)) - 1, stride = k->n_lines + 1;
     tacet_status status = TACET_OK;
     for (size_t b = 0; status == TACET_OK && b < tacet_model_bands(m); b++) {
         const tacet_band *band = tacet_model_band(m, b);
-        const bool *mark = marks_of(k, b);
         speeds breaks = {0};
-        status = lines_enter_and_leave(band, k->revolutions, k->n_lines, mark, range, &breaks, a);
-        if (status == TACET_OK) status = step_aside(&breaks, range, out, a);
+        l.mark = marks_of(k, b);
+        status = lines_enter_and_leave(&l, band, &breaks, a);
+        if (status == TACET_OK) status = step_aside(&breaks, l.range, out, a);
         if (status == TACET_OK)
-            status = lines_cross(hz, n_hz, band->counted_low_hz, band->counted_high_hz,
-                                 k->revolutions, k->n_lines, mark, range, out, a);
+            status = lines_cross(&l, hz, n_hz, band->counted_low_hz, band->counted_high_hz, out, a);
     }
-    for (size_t i = 0; status == TACET_OK && i < tacet_model_limits(m); i++)
-        status = lines_cross(hz, n_hz, 0, INFINITY, k->revolutions, k->n_lines,
-                             k->of_limit + i * stride, range, out, a);
+    for (size_t i = 0; status == TACET_OK && i < tacet_model_limits(m); i++) {
+        l.mark = k->of_limit + i * stride;
+        status = lines_cross(&l, hz, n_hz, 0, INFINITY, out, a);
+    }
     speeds_sort(out);
     drop_grid(out, grid, n_grid);
     return status;

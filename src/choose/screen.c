@@ -208,15 +208,17 @@ static tacet_status probe(void *who, double speed, sample *out)
 static tacet_status find_no_go_of(screening *g, size_t c, no_go_list *found)
 {
     const tacet_screen *s = g->s;
-    const double range[2] = {s->speeds_rad_per_s[0], s->speeds_rad_per_s[s->n_speeds - 1]};
     const line_marks *k = &g->marks[c];
+    marked_lines lines = {.revolutions = k->revolutions,
+                          .n_lines = k->n_lines,
+                          .range = {s->speeds_rad_per_s[0], s->speeds_rad_per_s[s->n_speeds - 1]}};
     g->probed = c;
     samples_sort(&g->samples[c]);
     for (size_t b = 0; b < tacet_model_bands(g->m); b++) {
         speeds breaks = {0};
+        lines.mark = k->of_band + b * (k->n_lines + 1);
         tacet_status status =
-            lines_enter_and_leave(tacet_model_band(g->m, b), k->revolutions, k->n_lines,
-                                  k->of_band + b * (k->n_lines + 1), range, &breaks, g->scratch);
+            lines_enter_and_leave(&lines, tacet_model_band(g->m, b), &breaks, g->scratch);
         if (status != TACET_OK) return no_memory(g);
         speeds_sort(&breaks);
         no_go_search q = {.candidate = c,
@@ -251,7 +253,7 @@ static tacet_status judge_together(screening *g)
 {
     const tacet_screen_def *d = &tacet_model_study(g->m)->screen;
     const char *names[TACET_BANDS_MOST], *limits[TACET_LIMITS_MOST];
-    note_rules rules = {.least_clear_rad_per_s = d->least_clear_rpm,
+    note_rules rules = {.least_clear_rad_per_s = d->least_clear_rad_per_s,
                         .least_saving = d->least_saving,
                         .reserve_db = d->reserve_db,
                         .band_name = names,

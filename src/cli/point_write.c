@@ -231,9 +231,15 @@ static void write_solver(const point *p)
     printf("\nSolved by %s: %u passes, closure %.1e, last change %.1e\n", n->method, n->repeats,
            n->closure, n->difference);
     if (!p->refereed) return;
-    if (p->referee_status != TACET_OK || !p->agreement.settled)
-        printf("The march did not settle: no second opinion (%s)\n",
-               tacet_status_text(p->referee_status));
+    if (p->referee_status != TACET_OK)
+        printf("No second opinion: the march failed (%s)\n", tacet_status_text(p->referee_status));
+    else if (!p->agreement.settled && isnan(p->agreement.same_model))
+        printf("No second opinion: the march at constant speed did not settle\n");
+    else if (!p->agreement.settled)
+        printf(
+            "Half a second opinion: same model %.1e; the full march did not settle in %u repeats "
+            "(closure %.1e)\n",
+            p->agreement.same_model, p->agreement.repeats, p->agreement.closure);
     else
         printf("Agreement: same model %.1e, fast path against the full march %.4f dB "
                "(%u repeats, closure %.1e)\n",

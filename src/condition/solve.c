@@ -28,7 +28,7 @@ tacet_status levels_solve(tacet_workspace *w, const tacet_condition *c, tacet_ba
         if (status != TACET_OK) return status;
         for (unsigned slot = 0; slot < c->roll->cylinders && disperses(m); slot++)
             w->slot_transfer[slot] = &w->transfers.transfer[b * m->n_throws + m->slot_throw[slot]];
-        d.cyclic_ms = disperses(m) ? dispersion_cyclic(w, b, W) : 0;
+        d.cyclic_mean_square = disperses(m) ? dispersion_cyclic(w, b, W) : 0;
         tacet_band_level_of(band, &w->quantity, W, disperses(m) ? &d : NULL, &out[b]);
         if (!isfinite(out[b].dispersed)) return TACET_NOT_FINITE;
     }

@@ -152,40 +152,56 @@ static void check_geometry(const tacet_engine_def *d, const tacet_reporter *r)
                      d->compression_ratio, LEAST_COMPRESSION, MOST_COMPRESSION);
 }
 
-// Speeds at which a curve may bend: its own points; a curve without points is constant.
-static double bend(const tacet_curve *c, size_t i)
+// The i-th speed at which `n` curves that belong together are looked at: every point of those with
+// more than one, or any one speed when all are constant. `text`: " at 1400 rpm", or nothing then.
+// False: there are no more.
+static bool speed_at(const tacet_curve *const *curve, size_t n, size_t i, double *rpm,
+                     char text[32])
 {
-    return c->n ? c->x[i] : 0;
+    bool constant = true;
+    text[0] = '\0';
+    for (size_t k = 0; k < n; k++) {
+        if (curve[k]->n < 2) continue;
+        constant = false;
+        if (i < curve[k]->n) {
+            *rpm = curve[k]->x[i];
+            tacet_text(text, 32, " at %.6g rpm", *rpm);
+            return true;
+        }
+        i -= curve[k]->n;
+    }
+    *rpm = 0;
+    return constant && i == 0;
 }
 
 static void check_burn(const tacet_cycle_def *c, const tacet_reporter *r)
 {
-    const tacet_curve *curves[] = {&c->mid_burn_rad, &c->burn_10_90_rad};
-    for (size_t k = 0; k < 2; k++)
-        for (size_t i = 0; i < (curves[k]->n ? curves[k]->n : 1); i++) {
-            double rpm = bend(curves[k], i), start, end;
-            gas_burn_span(engine_mid_burn(c, rpm), engine_burn_10_90(c, rpm), &start, &end);
-            if (start > -GAS_BURN_EARLIEST && end < GAS_BURN_LATEST) continue;
-            tacet_report(r, ERROR, "cycle.burn_10_90_deg",
-                         "at %.6g rpm the fuel would burn from %.4g to %.4g degrees after top; it "
-                         "must lie between %.0f and %.0f",
-                         rpm, start / DEG, end / DEG, -GAS_BURN_EARLIEST / DEG,
-                         GAS_BURN_LATEST / DEG);
-            return;
-        }
+    const tacet_curve *const curves[] = {&c->mid_burn_rad, &c->burn_10_90_rad};
+    double rpm, start, end;
+    char at[32];
+    for (size_t i = 0; speed_at(curves, 2, i, &rpm, at); i++) {
+        gas_burn_span(engine_mid_burn(c, rpm), engine_burn_10_90(c, rpm), &start, &end);
+        if (start > -GAS_BURN_EARLIEST && end < GAS_BURN_LATEST) continue;
+        tacet_report(r, ERROR, "cycle.burn_10_90_deg",
+                     "the fuel would burn from %.4g to %.4g degrees after top%s; it must lie "
+                     "between %.0f and %.0f",
+                     start / DEG, end / DEG, at, -GAS_BURN_EARLIEST / DEG, GAS_BURN_LATEST / DEG);
+        return;
+    }
 }
 
 static void check_mixture(const tacet_cycle_def *c, const tacet_reporter *r)
 {
-    const tacet_curve *curve = &c->air_fuel_ratio;
-    for (size_t i = 0; i < (curve->n ? curve->n : 1); i++) {
-        double rpm = bend(curve, i), ratio = engine_air_fuel_ratio(c, rpm);
-        double heat = c->lower_heating_value_J_per_kg / ratio;
+    const tacet_curve *const curve = &c->air_fuel_ratio;
+    double rpm;
+    char at[32];
+    for (size_t i = 0; speed_at(&curve, 1, i, &rpm, at); i++) {
+        double ratio = engine_air_fuel_ratio(c, rpm),
+               heat = c->lower_heating_value_J_per_kg / ratio;
         if (!(heat > MOST_HEAT_OF_AIR)) continue;
         tacet_report(r, WARNING, "cycle.fuel.air_fuel_ratio",
-                     "%.4g at %.6g rpm, %.3g MJ of fuel for each kg of air; more than %.3g does "
-                     "not burn",
-                     ratio, rpm, heat / 1e6, MOST_HEAT_OF_AIR / 1e6);
+                     "%.4g%s, %.3g MJ of fuel for each kg of air; more than %.3g does not burn",
+                     ratio, at, heat / 1e6, MOST_HEAT_OF_AIR / 1e6);
         return;
     }
 }
@@ -193,17 +209,17 @@ static void check_mixture(const tacet_cycle_def *c, const tacet_reporter *r)
 static void check_manifold(const tacet_cycle_def *c, const tacet_reporter *r)
 {
     if (c->load_by != TACET_LOAD_CHARGE) return;
-    const tacet_curve *curves[] = {&c->lowest_Pa, &c->highest_Pa};
-    for (size_t k = 0; k < 2; k++)
-        for (size_t i = 0; i < (curves[k]->n ? curves[k]->n : 1); i++) {
-            double rpm = bend(curves[k], i);
-            double lowest = engine_lowest(c, rpm), highest = engine_highest(c, rpm);
-            if (lowest < highest) continue;
-            tacet_report(r, ERROR, "cycle.manifold_kpa.lowest",
-                         "%.6g kPa at %.6g rpm; it must lie below `highest`, %.6g kPa there",
-                         lowest / 1e3, rpm, highest / 1e3);
-            return;
-        }
+    const tacet_curve *const curves[] = {&c->lowest_Pa, &c->highest_Pa};
+    double rpm;
+    char at[32];
+    for (size_t i = 0; speed_at(curves, 2, i, &rpm, at); i++) {
+        double lowest = engine_lowest(c, rpm), highest = engine_highest(c, rpm);
+        if (lowest < highest) continue;
+        tacet_report(r, ERROR, "cycle.manifold_kpa.lowest",
+                     "%.6g kPa%s; it must lie below `highest`, %.6g kPa%s", lowest / 1e3, at,
+                     highest / 1e3, *at ? " there" : "");
+        return;
+    }
 }
 
 static void check_cycle(const tacet_engine_def *d, const tacet_reporter *r)

@@ -19,6 +19,8 @@ typedef struct { // a half in hand
     double valve_from, valve_per_rad, from_Pa, to_Pa; // set pressure
     double inflow_J_per_kg;                           // enthalpy of gas drawn in
     double most_kg, most_J; // drawn in when last no gas was out in the inlet port
+    double coldest,
+        hottest; // J/kg, enthalpy of gas in manifold and cylinder so far: bounds of that
     double manifold_h, wall_h, woschni_bore;
     bool open, inlet;
 } half_state;
@@ -206,12 +208,14 @@ static void part_step(const half_state *s, double angle, double h, const double 
 }
 
 // A step while gas is out in the inlet port: it comes back first, with the enthalpy it took; the
-// step is cut where the last of it is back (regula falsi on the part of the step).
+// step is cut where the last of it is back (regula falsi on the part of the step). Where the flow
+// turned within a step, what is left outside may be next to nothing, and its enthalpy over its mass
+// anything: gas out there is no colder and no hotter than gas has been.
 static gas_state port_step(half_state *s, const cylinder_place at[3], double angle, double h,
                            const double a[TERMS], double end[TERMS])
 {
     double out = a[VALVE_KG] - s->most_kg, low = 0, high = 1, middle[TERMS];
-    s->inflow_J_per_kg = (a[VALVE_J] - s->most_J) / out;
+    s->inflow_J_per_kg = fmin(fmax((a[VALVE_J] - s->most_J) / out, s->coldest), s->hottest);
     gas_state z = step(s, at, angle, h, a, end);
     double over = end[VALVE_KG] - s->most_kg, rest = over;
     if (over < 0) return z;
@@ -237,6 +241,9 @@ static gas_state inlet_step(half_state *s, const cylinder_place at[3], double an
 {
     bool out = a[VALVE_KG] < s->most_kg;
     gas_state z = out ? port_step(s, at, angle, h, a, end) : step(s, at, angle, h, a, end);
+    double enthalpy = z.u + s->c->gas.R_J_per_kgK * z.T;
+    s->coldest = fmin(s->coldest, enthalpy);
+    s->hottest = fmax(s->hottest, enthalpy);
     if (end[VALVE_KG] >= s->most_kg) {
         s->most_kg = end[VALVE_KG];
         s->most_J = end[VALVE_J];
@@ -288,7 +295,7 @@ static half_state begin(const cylinder *c, const cylinder_run *r, cylinder_rule 
                     .wall_h = gas_h(&c->gas, c->wall_K),
                     .woschni_bore = 3.26 * pow(c->slider.bore_m, -0.2) * pow(1e-3, 0.8),
                     .inlet = rule.up};
-    s.inflow_J_per_kg = s.manifold_h;
+    s.inflow_J_per_kg = s.coldest = s.hottest = s.manifold_h;
     if (s.fuel_J > 0) start_burn(&s, g);
     return s;
 }

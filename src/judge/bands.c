@@ -100,7 +100,7 @@ void tacet_band_level_of(const tacet_band *b, const tacet_spectrum *s, double sp
         out->leading_line = h;
     }
     out->nominal = sqrt(nominal / 2);
-    out->dispersed = sqrt((nominal + added) / 2 + (d ? d->cyclic_ms : 0));
+    out->dispersed = sqrt((nominal + added) / 2 + (d ? d->cyclic_mean_square : 0));
     double total = tacet_spectrum_rms(s, 1, s->n_lines);
     out->has_line = out->dispersed > 0 && out->dispersed >= NO_LINE * total;
     if (sqrt(largest / 2) < NO_LINE * total) out->leading_line = 0;

@@ -111,16 +111,15 @@ void canvas_box(canvas *c, double x0, double y0, double x1, double y1, canvas_pa
         fputs(" noborder\n", c->to);
 }
 
-void canvas_line(canvas *c, double x0, double y0, double x1, double y1, const char *colour,
-                 double line_width, bool dashed)
+void canvas_line(canvas *c, double x0, double y0, double x1, double y1, canvas_stroke stroke)
 {
     char w[TACET_NUMBER_TEXT];
     fprintf(c->to, "set arrow %u from ", ++c->n_arrows);
     screen_place(c, x0, y0);
     fputs(" to ", c->to);
     screen_place(c, x1, y1);
-    fprintf(c->to, " nohead front linecolor rgb '%s' linewidth %s%s\n", colour,
-            text_fixed(line_width, 1, w), dashed ? " dashtype (6, 4)" : "");
+    fprintf(c->to, " nohead front linecolor rgb '%s' linewidth %s%s\n", stroke.colour,
+            text_fixed(stroke.width, 1, w), stroke.dashed ? " dashtype (6, 4)" : "");
 }
 
 void canvas_disc(canvas *c, double x, double y, double radius, const char *fill, const char *border)

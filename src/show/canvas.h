@@ -51,8 +51,12 @@ typedef struct {
     bool behind;        // the plot
 } canvas_paint;
 void canvas_box(canvas *c, double x0, double y0, double x1, double y1, canvas_paint paint);
-void canvas_line(canvas *c, double x0, double y0, double x1, double y1, const char *colour,
-                 double width, bool dashed);
+typedef struct {
+    const char *colour;
+    double width; // px
+    bool dashed;
+} canvas_stroke;
+void canvas_line(canvas *c, double x0, double y0, double x1, double y1, canvas_stroke stroke);
 void canvas_disc(canvas *c, double x, double y, double radius, const char *fill,
                  const char *border);
 

@@ -153,7 +153,8 @@ static void bands(canvas *c, const tacet_figure_bars *f)
         if (row == 3) continue;
         row_end[row] = start + fmin(width, 300);
         double y = c->top - 14 - 20 * row;
-        canvas_line(c, x0 + 1.5, c->top - 3, x1 - 1.5, c->top - 3, INK_FAINT, 1.5, false);
+        canvas_line(c, x0 + 1.5, c->top - 3, x1 - 1.5, c->top - 3,
+                    (canvas_stroke){INK_FAINT, 1.5, false});
         canvas_text(c, start + 2, y,
                     (canvas_style){.size = FONT_SMALL, .bold = band->judged, .most_px = 290},
                     band->name);

@@ -36,22 +36,31 @@ unsigned map_colour(tacet_mark mark, double margin_db, double reserve_db)
     }
 }
 
-static void tile(canvas *c, double x, double y, tacet_mark mark, double margin_db,
-                 double reserve_db, const char *letter, const char *text)
+typedef struct {
+    tacet_mark mark;
+    double margin_db;
+    const char *letter, *text;
+} key_tile;
+
+static void tile(canvas *c, double x, double y, double reserve_db, key_tile t)
 {
     char colour[16];
     canvas_paint paint = {.fill = colour};
-    snprintf(colour, sizeof colour, "#%06x", map_colour(mark, margin_db, reserve_db));
-    if (mark == TACET_MARK_UNREACHABLE) paint = (canvas_paint){.fill = "#9aa5b1", .hatched = true};
+    snprintf(colour, sizeof colour, "#%06x", map_colour(t.mark, t.margin_db, reserve_db));
+    if (t.mark == TACET_MARK_UNREACHABLE)
+        paint = (canvas_paint){.fill = "#9aa5b1", .hatched = true};
     canvas_box(c, x, y - 11, x + 26, y + 11, paint);
     canvas_style mid = {.anchor = ANCHOR_CENTRE, .size = 15};
-    mid.bold = mark == TACET_MARK_OVER;
-    mid.colour = mark == TACET_MARK_OVER ? PAPER : mark == TACET_MARK_NEAR ? "#3a2710" : INK_FAINT;
-    if (mark == TACET_MARK_CLEAR && *letter)
+    mid.bold = t.mark == TACET_MARK_OVER;
+    mid.colour = t.mark == TACET_MARK_OVER   ? PAPER
+                 : t.mark == TACET_MARK_NEAR ? "#3a2710"
+                                             : INK_FAINT;
+    if (t.mark == TACET_MARK_CLEAR && *t.letter)
         canvas_disc(c, x + 13, y, 2, "#6f8ea3", "#6f8ea3");
-    else if (mark != TACET_MARK_CLEAR)
-        canvas_text(c, x + 13, y, mid, letter);
-    canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT, .most_px = MAP_KEY_PX - 56}, text);
+    else if (t.mark != TACET_MARK_CLEAR)
+        canvas_text(c, x + 13, y, mid, t.letter);
+    canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT, .most_px = MAP_KEY_PX - 56},
+                t.text);
 }
 
 static void colour_bar(canvas *c, double x, double y, double reserve_db)
@@ -90,16 +99,19 @@ static double key_of_marks(canvas *c, const tacet_figure_map *f, double x, doubl
     const double pitch = 30;
     snprintf(near, sizeof near, "near: under %s dB left",
              tacet_number_format_short(f->reserve_db, 3, number));
-    tile(c, x, y, TACET_MARK_OVER, -3, f->reserve_db, "A", "over a limit");
-    if (f->reserve_db > 0) tile(c, x, y += pitch, TACET_MARK_NEAR, 1, f->reserve_db, "a", near);
-    tile(c, x, y += pitch, TACET_MARK_CLEAR, 6, f->reserve_db, map_has_room(c, f) ? "." : "",
-         "clear");
+    tile(c, x, y, f->reserve_db, (key_tile){TACET_MARK_OVER, -3, "A", "over a limit"});
+    if (f->reserve_db > 0)
+        tile(c, x, y += pitch, f->reserve_db, (key_tile){TACET_MARK_NEAR, 1, "a", near});
+    tile(c, x, y += pitch, f->reserve_db,
+         (key_tile){TACET_MARK_CLEAR, 6, map_has_room(c, f) ? "." : "", "clear"});
     if (occurs(f, TACET_MARK_UNREACHABLE))
-        tile(c, x, y += pitch, TACET_MARK_UNREACHABLE, 0, 0, "", "torque not reachable");
+        tile(c, x, y += pitch, f->reserve_db,
+             (key_tile){TACET_MARK_UNREACHABLE, 0, "", "torque not reachable"});
     if (occurs(f, TACET_MARK_FAILED))
-        tile(c, x, y += pitch, TACET_MARK_FAILED, 0, 0, "!", "not solved");
+        tile(c, x, y += pitch, f->reserve_db, (key_tile){TACET_MARK_FAILED, 0, "!", "not solved"});
     if (occurs(f, TACET_MARK_NO_REFERENCE))
-        tile(c, x, y += pitch, TACET_MARK_NO_REFERENCE, 0, 0, "?", "no all-fire reference");
+        tile(c, x, y += pitch, f->reserve_db,
+             (key_tile){TACET_MARK_NO_REFERENCE, 0, "?", "no all-fire reference"});
     y += pitch;
     canvas_box(c, x + 1, y - 10, x + 25, y + 10, (canvas_paint){.border = "#0b1f33", .width = 2.6});
     canvas_text(c, x + 38, y, (canvas_style){.size = FONT_TEXT}, "recommended there");

@@ -204,8 +204,8 @@ static void names(canvas *c, const tacet_figure_orders *f, double high_px)
         memcpy(at, wish, n * sizeof *at);
     while (!canvas_spread(n, at, 22, high_px, c->bottom) && n--); // the last modes drop out first
     for (size_t i = 0; i < n; i++) {
-        canvas_line(c, c->right + 3, wish[i], c->right + 24, at[i], is_mode[i] ? INK : INK_FAINT, 1,
-                    is_mode[i]);
+        canvas_line(c, c->right + 3, wish[i], c->right + 24, at[i],
+                    (canvas_stroke){is_mode[i] ? INK : INK_FAINT, 1, is_mode[i]});
         canvas_text(c, c->right + 30, at[i],
                     (canvas_style){.size = is_mode[i] ? FONT_SMALL : FONT_TEXT,
 

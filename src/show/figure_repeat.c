@@ -88,14 +88,15 @@ static void names(canvas *c, const panel *p)
             continue;
         }
         const char *colour = colours[n_strong];
-        canvas_line(c, x, y, x + 30, y, colour, n_strong == 2 ? 2.2 : 2.6, n_strong > 0);
+        canvas_line(c, x, y, x + 30, y,
+                    (canvas_stroke){colour, n_strong == 2 ? 2.2 : 2.6, n_strong > 0});
         canvas_text(c, x + 40, y, (canvas_style){.size = FONT_TEXT, .most_px = KEY_PX - 70},
                     p->trace[t].name);
         n_strong++;
         y += 26;
     }
     if (!light) return;
-    canvas_line(c, x, y, x + 30, y, "#b3bec9", 1.5, false);
+    canvas_line(c, x, y, x + 30, y, (canvas_stroke){"#b3bec9", 1.5, false});
     canvas_text(c, x + 40, y,
                 (canvas_style){.size = FONT_TEXT, .colour = INK_FAINT, .most_px = KEY_PX - 70},
                 several ? "the others" : light);

@@ -109,8 +109,13 @@ tacet_status screen_levels_table(const tacet_model *m, const tacet_screen *s, ta
     table_row row;
     tacet_table_column *columns = levels_columns(m, a, &n_columns);
     if (!columns) return TACET_NO_MEMORY;
-    tacet_status status =
-        table_start(a, "levels", "Conditions", columns, n_columns, s->n_cells, out, &row);
+    tacet_status status = table_start(a,
+                                      &(tacet_table){.name = "levels",
+                                                     .heading = "Conditions",
+                                                     .columns = columns,
+                                                     .n_columns = n_columns,
+                                                     .n_rows = s->n_cells},
+                                      out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_cells; i++) {
         const tacet_cell *cell = &s->cells[i];
         tacet_condition condition = screen_condition(s, i);

@@ -115,17 +115,14 @@ void put_accent(table_row *r)
     r->next[-1].accent = true;
 }
 
-tacet_status table_start(tacet_arena *a, const char *name, const char *heading,
-                         const tacet_table_column *columns, size_t n_columns, size_t n_rows,
-                         tacet_table *out, table_row *first)
+tacet_status table_start(tacet_arena *a, const tacet_table *what, tacet_table *out,
+                         table_row *first)
 {
-    tacet_table_cell *cells = tacet_arena_alloc(a, (n_rows * n_columns + 1) * sizeof *cells);
+    size_t n = what->n_rows * what->n_columns;
+    tacet_table_cell *cells = tacet_arena_alloc(a, (n + 1) * sizeof *cells);
     *first = (table_row){cells};
-    *out = (tacet_table){.name = name,
-                         .heading = heading,
-                         .columns = columns,
-                         .n_columns = n_columns,
-                         .cells = cells,
-                         .n_rows = cells ? n_rows : 0};
+    *out = *what;
+    out->cells = cells;
+    if (!cells) out->n_rows = 0;
     return cells ? TACET_OK : TACET_NO_MEMORY;
 }

@@ -49,9 +49,8 @@ typedef struct {
 void put_number(table_row *r, double value);
 void put_text(table_row *r, const char *text);
 void put_accent(table_row *r); // marks the cell just written
-// A table over constant columns with room for n_rows; NULL cells: no memory.
-TACET_USE tacet_status table_start(tacet_arena *a, const char *name, const char *heading,
-                                   const tacet_table_column *columns, size_t n_columns,
-                                   size_t n_rows, tacet_table *out, table_row *first);
+// The table `what` with cells for its rows, as yet empty; NULL cells: no memory.
+TACET_USE tacet_status table_start(tacet_arena *a, const tacet_table *what, tacet_table *out,
+                                   table_row *first);
 
 #endif

@@ -49,7 +49,12 @@ tacet_status screen_runs_table(const tacet_model *m, const tacet_screen *s, tace
     table_row row;
     tacet_status status = screen_runs(s, a, &run, &n);
     if (status != TACET_OK) return status;
-    status = table_start(a, "runs", "What runs where", runs_columns, N_COLUMNS(runs_columns), n,
+    status = table_start(a,
+                         &(tacet_table){.name = "runs",
+                                        .heading = "What runs where",
+                                        .columns = runs_columns,
+                                        .n_columns = N_COLUMNS(runs_columns),
+                                        .n_rows = n},
                          out, &row);
     if (status != TACET_OK) return status;
     for (size_t i = 0; i < n; i++) {
@@ -145,8 +150,14 @@ tacet_status screen_summary_table(const tacet_model *m, const tacet_screen *s, t
     for (size_t i = 0; i < s->n_candidates; i++)
         none += !s->candidates[s->notes[i].candidate].refused && s->notes[i].n_none > 0;
     columns[NO_VERDICT].data_only = none == 0; // a column of zeros says nothing to a reader
-    tacet_status status = table_start(a, "summary", "Candidates, by number of grid speeds", columns,
-                                      n, s->n_candidates, out, &row);
+    tacet_status status =
+        table_start(a,
+                    &(tacet_table){.name = "summary",
+                                   .heading = "Candidates, by number of grid speeds",
+                                   .columns = columns,
+                                   .n_columns = n,
+                                   .n_rows = s->n_candidates},
+                    out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_candidates; i++)
         summary_row(m, &s->candidates[s->notes[i].candidate], &s->notes[i], &row);
     return status;
@@ -225,8 +236,13 @@ tacet_status screen_ranking_table(const tacet_model *m, const tacet_screen *s, t
                                   tacet_table *out)
 {
     table_row row;
-    tacet_status status = table_start(a, "ranking", "Ranking at each speed", ranking_columns,
-                                      N_COLUMNS(ranking_columns), s->n_ranks, out, &row);
+    tacet_status status = table_start(a,
+                                      &(tacet_table){.name = "ranking",
+                                                     .heading = "Ranking at each speed",
+                                                     .columns = ranking_columns,
+                                                     .n_columns = N_COLUMNS(ranking_columns),
+                                                     .n_rows = s->n_ranks},
+                                      out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_ranks; i++)
         ranking_row(m, s, &s->ranks[i], &row);
     return status;
@@ -251,8 +267,13 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
     static const char *const open[] = {"", "below", "above", "both ends"};
     table_row row;
     tacet_status status =
-        table_start(a, "no-go", "No-go ranges (open: beyond it nothing was judged)", no_go_columns,
-                    N_COLUMNS(no_go_columns), s->n_no_go, out, &row);
+        table_start(a,
+                    &(tacet_table){.name = "no-go",
+                                   .heading = "No-go ranges (open: beyond it nothing was judged)",
+                                   .columns = no_go_columns,
+                                   .n_columns = N_COLUMNS(no_go_columns),
+                                   .n_rows = s->n_no_go},
+                    out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_no_go; i++) {
         const tacet_no_go *g = &s->no_go[i];
         put_text(&row, s->candidates[g->candidate].name);
@@ -288,8 +309,13 @@ tacet_status screen_agreement_table(const tacet_model *m, const tacet_screen *s,
     (void)m;
     table_row row;
     tacet_status status =
-        table_start(a, "agreement", "Agreement of the solvers on the worst conditions",
-                    agreement_columns, N_COLUMNS(agreement_columns), s->n_referee, out, &row);
+        table_start(a,
+                    &(tacet_table){.name = "agreement",
+                                   .heading = "Agreement of the solvers on the worst conditions",
+                                   .columns = agreement_columns,
+                                   .n_columns = N_COLUMNS(agreement_columns),
+                                   .n_rows = s->n_referee},
+                    out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_referee; i++) {
         const tacet_referee *f = &s->referee[i];
         char word[TACET_PATTERN_LONGEST + 1];

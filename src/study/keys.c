@@ -79,7 +79,7 @@ static const tacet_field screen_fields[] = {
      .doc = "margin from which a verdict is clear; near below it"},
     {.key = "least_clear_rpm",
      .kind = TACET_FIELD_NUMBER,
-     SCREEN(least_clear_rpm),
+     SCREEN(least_clear_rad_per_s),
      .unit = "rpm",
      .fallback = "150",
      .low = 0,

@@ -138,7 +138,7 @@ static const tacet_field link_fields[] = {
      .doc = "torsional stiffness on the `to` side; or one of the next, length_mm, throw"},
     {.key = "stiffness_nm_per_deg",
      .kind = TACET_FIELD_NUMBER,
-     LINK(stiffness_Nm_per_deg),
+     LINK(stiffness_catalogue_Nm_per_rad),
      .unit = "N m/deg",
      .fallback = "",
      STIFFNESS,
@@ -328,7 +328,7 @@ tacet_link_def tacet_link_default(void)
 {
     return (tacet_link_def){
         .stiffness_Nm_per_rad = NAN,
-        .stiffness_Nm_per_deg = NAN,
+        .stiffness_catalogue_Nm_per_rad = NAN,
         .length_m = NAN,
         .shear_modulus_Pa = 80e9,
         .outer_m = NAN,

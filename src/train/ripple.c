@@ -31,8 +31,8 @@
 #define SLOW           0.5  // above, what is left cannot be told from the last changes
 #define CAUTION        4    // times the error that steady contraction would leave
 #define FIRST          0.5  // of a first pass's change that is left, at most, where passes contract
-#define MOVE           100 // times what is enough: moving samples by so much is right to a hundredth of it
-#define DIVERGED       1e3 // change over size of the torque lines
+#define MOVE           100  // times what is enough: moving by so much is right to a hundredth of it
+#define DIVERGED       1e3  // change over size of the torque lines
 
 // ---- torque -----------------------------------------------------------------------------------
 

@@ -30,8 +30,8 @@ bool link_throw_stated(const tacet_link_def *l)
 
 unsigned link_stiffness_ways(const tacet_link_def *l)
 {
-    return !isnan(l->stiffness_Nm_per_rad) + !isnan(l->stiffness_Nm_per_deg) + !isnan(l->length_m) +
-           link_throw_stated(l);
+    return !isnan(l->stiffness_Nm_per_rad) + !isnan(l->stiffness_catalogue_Nm_per_rad) +
+           !isnan(l->length_m) + link_throw_stated(l);
 }
 
 // l/D^4, 1/m3.
@@ -58,7 +58,7 @@ tacet_status tacet_link_stiffness(const tacet_link_def *l, double *out, tacet_er
         return tacet_fail(e, TACET_BAD_INPUT,
                           "link '%s': a throw without a formula; carter or ker-wilson", name);
     double k = l->stiffness_Nm_per_rad;
-    if (!isnan(l->stiffness_Nm_per_deg)) k = l->stiffness_Nm_per_deg;
+    if (!isnan(l->stiffness_catalogue_Nm_per_rad)) k = l->stiffness_catalogue_Nm_per_rad;
     if (!isnan(l->length_m))
         k = M_PI * l->shear_modulus_Pa * fourths(l->outer_m, l->inner_m) / (32 * l->length_m);
     if (link_throw_stated(l)) k = M_PI * l->shear_modulus_Pa / (32 * throw_length(&l->throw_));

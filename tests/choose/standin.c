@@ -15,7 +15,7 @@ struct tacet_model standin(double step_rpm, tacet_arena *a)
         s->speeds_rad_per_s[i] = (900 + step_rpm * (double)i) * RPM;
     s->densities = (tacet_densities_def){.list = densities, .n_list = 3};
     s->reserve_db = 3;
-    s->least_clear_rpm = 150 * RPM;
+    s->least_clear_rad_per_s = 150 * RPM;
     s->least_saving = 0.01;
     s->referee = 4;
     m.study.path = "standin.yaml";

@@ -47,19 +47,20 @@ static void test_enter_and_leave(void **state)
         .low_hz = 11, .high_hz = 18, .counted_low_hz = 11 * 0.95, .counted_high_hz = 18 * 1.05};
     bool mark[43] = {false};
     mark[18] = true;
-    const double wide[2] = {400 * RPM, 1000 * RPM}, low[2] = {400 * RPM, 800 * RPM},
-                 none[2] = {900 * RPM, 1900 * RPM};
+    const marked_lines wide = {14, 42, mark, {400 * RPM, 1000 * RPM}},
+                       low = {14, 42, mark, {400 * RPM, 800 * RPM}},
+                       none = {14, 42, mark, {900 * RPM, 1900 * RPM}};
     speeds out = {0};
-    assert_int_equal(lines_enter_and_leave(&b, 14, 42, mark, wide, &out, arena), TACET_OK);
+    assert_int_equal(lines_enter_and_leave(&wide, &b, &out, arena), TACET_OK);
     assert_int_equal(out.n, 2);
     speeds_sort(&out);
     assert_near(out.at[0] / RPM, 487.0 + 2. / 3, 1e-9, 0);
     assert_near(out.at[1] / RPM, 882, 1e-9, 0);
     out.n = 0;
-    assert_int_equal(lines_enter_and_leave(&b, 14, 42, mark, low, &out, arena), TACET_OK);
+    assert_int_equal(lines_enter_and_leave(&low, &b, &out, arena), TACET_OK);
     assert_int_equal(out.n, 1);
     out.n = 0;
-    assert_int_equal(lines_enter_and_leave(&b, 14, 42, mark, none, &out, arena), TACET_OK);
+    assert_int_equal(lines_enter_and_leave(&none, &b, &out, arena), TACET_OK);
     assert_int_equal(out.n, 0);
 }
 
@@ -70,9 +71,9 @@ static void test_cross(void **state)
     static const double hz[] = {5, 22, 90};
     bool mark[9] = {false};
     mark[2] = mark[3] = true;
-    const double range[2] = {600 * RPM, 2000 * RPM};
+    const marked_lines l = {2, 8, mark, {600 * RPM, 2000 * RPM}};
     speeds out = {0};
-    assert_int_equal(lines_cross(hz, 3, 17, 27, 2, 8, mark, range, &out, arena), TACET_OK);
+    assert_int_equal(lines_cross(&l, hz, 3, 17, 27, &out, arena), TACET_OK);
     speeds_sort(&out);
     assert_int_equal(out.n, 2);
     assert_near(out.at[0] / RPM, 880, 1e-9, 0);

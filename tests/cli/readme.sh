@@ -1,11 +1,14 @@
 #!/bin/sh
-# Runs every command of README.md's sh blocks, in order, from the project's root. The one that runs the tests is
-# left to the caller.
+# Runs every command of README.md's sh blocks, in order, from the project's root. The one that runs
+# the tests is left to the caller.
 set -eu
 cd "$(dirname "$0")/../.."
 left="my.yaml my-screen forwarder-screen brush-truck-screen" # what the commands leave behind
 for name in $left; do
-    [ ! -e "$name" ] || { echo "tests/cli/readme.sh: $name is in the way; move it first" >&2; exit 1; }
+    [ ! -e "$name" ] || {
+        echo "tests/cli/readme.sh: $name is in the way; move it first" >&2
+        exit 1
+    }
 done
 tidy()
 {
@@ -13,7 +16,8 @@ tidy()
     rm -rf readme-commands.tmp readme-output.tmp $left
 }
 trap tidy EXIT
-awk '/^```sh$/ { on = 1; next } /^```$/ { on = 0 } on && NF' README.md | grep -v '^sh tests/run\.sh' >readme-commands.tmp
+awk '/^```sh$/ { on = 1; next } /^```$/ { on = 0 } on && NF' README.md |
+    grep -v '^sh tests/run\.sh' >readme-commands.tmp
 count=0
 while IFS= read -r command; do
     echo "\$ $command"

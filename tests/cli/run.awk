@@ -10,7 +10,8 @@ function inline(expected, actual,    part, n, i, at) {
         if (!at) return 0
         actual = substr(actual, at + length(part[i]))
     }
-    return length(actual) >= length(part[n]) && substr(actual, length(actual) - length(part[n]) + 1) == part[n]
+    at = length(actual) - length(part[n]) + 1
+    return at >= 1 && substr(actual, at) == part[n]
 }
 
 function split_dots(text, part,    n, at) {
@@ -28,7 +29,8 @@ function matches(expected, n_expected, actual, n_actual,    e, a, ok) {
     for (e = n_expected + 1; e >= 1; e--)
         for (a = n_actual + 1; a >= 1; a--) {
             if (e > n_expected) ok[e, a] = a > n_actual
-            else if (expected[e] == "...") ok[e, a] = ok[e + 1, a] || (a <= n_actual && ok[e, a + 1])
+            else if (expected[e] == "...")
+                ok[e, a] = ok[e + 1, a] || (a <= n_actual && ok[e, a + 1])
             else ok[e, a] = a <= n_actual && ok[e + 1, a + 1] && inline(expected[e], actual[a])
         }
     return ok[1, 1]

@@ -1,5 +1,6 @@
 #!/bin/sh
-# usage: sh run.sh CASES TACET ROOT [JSON_PATHS]   runs the commands of a case file in a scratch folder and compares.
+# usage: sh run.sh CASES TACET ROOT [JSON_PATHS]
+# Runs the commands of a case file in a scratch folder and compares.
 #   $ command      run by sh; `tacet` is TACET; tests/cli/studies is copied in, patterns/ and
 #                  tests/cli/json are linked, `json-paths` is JSON_PATHS
 #   = 2            its exit code (0 when not said)

@@ -259,6 +259,8 @@ static void test_duty_charge_factor(void **state)
     tacet_duty all = duty_of(&even, "x", 1500, 100), q = duty_of(&p, "x", 1500, 100);
     assert_near(q.brake_torque_Nm, 100, 0, 1e-10);
     assert_near(q.charge_Pa * 8.2 / 8, all.charge_Pa, 0, 2e-3);
+    assert_near(q.brake_W + q.friction_W + q.wall_heat_W + q.exhaust_W + q.blow_by_W, q.fuel_W, 0,
+                1e-6);
     tacet_roll *r = roll_of("x", 8);
     assert_int_equal(tacet_engine_load(p.engine, r, &q, 1500 * RPM, p.work), TACET_OK);
     tacet_duty richer = q;

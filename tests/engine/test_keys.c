@@ -183,10 +183,20 @@ static void test_check_cycle(void **state)
     double rpm[] = {0}, late[] = {60 * DEG}, slow[] = {90 * DEG}, low[] = {150e3};
     d.cycle.mid_burn_rad = (tacet_curve){rpm, late, 1};
     d.cycle.burn_10_90_rad = (tacet_curve){rpm, slow, 1};
-    expect(&d, false, "cycle.burn_10_90_deg: at 0 rpm the fuel would burn from");
+    expect(&d, false, // a plain number has no speed
+           "cycle.burn_10_90_deg: the fuel would burn from -34.03 to 168.4 degrees after top; it");
+    double two[] = {900, 1900}, later[] = {8 * DEG, 60 * DEG};
+    d.cycle.mid_burn_rad = (tacet_curve){two, later, 2};
+    expect(&d, false,
+           "cycle.burn_10_90_deg: the fuel would burn from -34.03 to 168.4 degrees after top at "
+           "1900 rpm; it");
     d = demo_six();
     d.cycle.lowest_Pa = (tacet_curve){rpm, low, 1};
-    expect(&d, false, "cycle.manifold_kpa.lowest: 150 kPa at 0 rpm");
+    expect(&d, false,
+           "cycle.manifold_kpa.lowest: 150 kPa at 800 rpm; it must lie below `highest`, 130 kPa "
+           "there");
+    d.cycle.highest_Pa = (tacet_curve){rpm, low, 1};
+    expect(&d, false, "cycle.manifold_kpa.lowest: 150 kPa; it must lie below `highest`, 150 kPa");
     d = demo_six();
     double speeds[] = {900, 1900}, rich[] = {14.6, 10}; // 44 / 10 MJ
     d.cycle.air_fuel_ratio = (tacet_curve){speeds, rich, 2};

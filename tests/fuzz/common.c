@@ -70,24 +70,48 @@ void fuzz_refusal(tacet_status status, const tacet_error *e)
     require_words(e->text);
 }
 
-// Is there such a place in the text? One past its end is where something is missing.
-static bool inside(int line, int column, const char *text, size_t bytes)
+// Behind the end of the line at `at`; NULL: the last one. YAML ends lines at a lone CR, U+0085,
+// U+2028 and U+2029, too.
+static const char *next_line(const char *at, const char *end, bool yaml)
+{
+    for (; at < end; at++) {
+        size_t left = (size_t)(end - at);
+        if (*at == '\n') return at + 1;
+        if (!yaml) continue;
+        if (*at == '\r') return at + (left > 1 && at[1] == '\n' ? 2 : 1);
+        if (left >= 2 && memcmp(at, "\xc2\x85", 2) == 0) return at + 2;
+        if (left < 3) continue;
+        if (memcmp(at, "\xe2\x80\xa8", 3) == 0 || memcmp(at, "\xe2\x80\xa9", 3) == 0) return at + 3;
+    }
+    return NULL;
+}
+
+static bool is_place(int line, int column, const char *text, size_t bytes, bool yaml)
 {
     const char *at = text, *end = text + bytes;
     for (int i = 1; i < line; i++) {
-        const char *next = memchr(at, '\n', (size_t)(end - at));
+        const char *next = next_line(at, end, yaml);
         if (!next) return i + 1 == line && column == 1;
-        at = next + 1;
+        at = next;
     }
-    const char *next = memchr(at, '\n', (size_t)(end - at));
+    const char *next = next_line(at, end, yaml);
     size_t letters = (size_t)((next ? next : end) - at);
-    return line >= 1 && column >= 1 && (size_t)column <= letters + 2;
+    return line >= 1 && column >= 1 && (size_t)column <= letters + 1 + (next == NULL);
+}
+
+// Is there such a place in the text? One past its end is where something is missing.
+static void require_place(int line, int column, const char *words, const char *text, size_t bytes)
+{
+    bool inside =
+        is_place(line, column, text, bytes, false) || is_place(line, column, text, bytes, true);
+    if (!inside) fprintf(stderr, "%d:%d: %s\n", line, column, words);
+    REQUIRE(inside);
 }
 
 void fuzz_refusal_in(tacet_status status, const tacet_error *e, const char *text, size_t bytes)
 {
     fuzz_refusal(status, e);
-    REQUIRE(inside(e->line, e->column, text, bytes));
+    require_place(e->line, e->column, e->text, text, bytes);
 }
 
 void fuzz_problems(tacet_status status, const tacet_problems *p, const char *name, const char *text,
@@ -104,7 +128,7 @@ void fuzz_problems(tacet_status status, const tacet_problems *p, const char *nam
         REQUIRE(one->file && *one->file);
         if (strcmp(one->file, name) != 0) continue;
         if (one->line == 0) continue; // of the whole file
-        REQUIRE(inside(one->line, one->column, text, bytes));
+        require_place(one->line, one->column, one->text, text, bytes);
     }
 }
 

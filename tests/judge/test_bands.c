@@ -300,7 +300,8 @@ static void test_false_zero_is_filled(void **state)
     assert_int_equal(c.b.level.leading_line, 3);
     assert_near(c.b.level.leading_peak, 0.03 * 2 * (100.0 / 3), 0, 1e-12);
     c.d.cylinder_sigma = 0;
-    c.d.cyclic_ms = 0.49; // cycles alone, between the lines: a level without a leading line
+    c.d.cyclic_mean_square =
+        0.49; // cycles alone, between the lines: a level without a leading line
     judge_level(&c.b, 600, &c.d);
     assert_near(c.b.level.dispersed, 0.7, 0, 1e-12);
     assert_true(c.b.level.has_line);

@@ -23,7 +23,7 @@ static tacet_link_def link_of(const char *name, const char *from, const char *to
         .from = from,
         .to = to,
         .stiffness_Nm_per_rad = k,
-        .stiffness_Nm_per_deg = NAN,
+        .stiffness_catalogue_Nm_per_rad = NAN,
         .length_m = NAN,
         .shear_modulus_Pa = 80e9,
         .outer_m = NAN,

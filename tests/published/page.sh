@@ -1,6 +1,7 @@
 #!/bin/sh
-# usage: page.sh TESTS-FOLDER   every file and test function that published/README.md names must exist:
-# `folder/file: function, function` between backquotes. Functions of a C file must also be run (stand in
+# usage: page.sh TESTS-FOLDER   every file and test function that published/README.md names must
+# exist: `folder/file: function, function` between backquotes. Functions of a C file must also be
+# run (stand in
 # its list of tests), so that a page cannot lean on a test that is never called.
 set -eu
 cd "$1"

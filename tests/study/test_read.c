@@ -60,7 +60,7 @@ static void test_minimal(void **state)
     assert_string_equal(s->screen.densities.lowest, "1/3");
     assert_near(s->screen.reserve_db, 3, 0, 0);
     assert_near(s->screen.least_saving, 0.01, 0, 1e-15);
-    assert_near(s->screen.least_clear_rpm, 15.7079632679489662, 0, 1e-14);
+    assert_near(s->screen.least_clear_rad_per_s, 15.7079632679489662, 0, 1e-14);
     assert_int_equal(s->screen.referee, 8);
     assert_true(isnan(s->screen.highest_order));
     tacet_study_destroy(s);
@@ -118,7 +118,7 @@ static void test_full_has_every_key(void **state)
     assert_near(s->engine.cyclic_dispersion, 0.015, 0, 1e-15);
     assert_near(s->engine.cycle.blow_by_area_m2, 0.5e-6, 0, 1e-15);
     assert_near(s->engine.cycle.lower_heating_value_J_per_kg, 42.5e6, 0, 1e-15);
-    assert_near(s->train.links[2].stiffness_Nm_per_deg, 1145.91559026164642, 0, 1e-14);
+    assert_near(s->train.links[2].stiffness_catalogue_Nm_per_rad, 1145.91559026164642, 0, 1e-14);
     assert_near(s->train.links[0].throw_.web_width_m, 0.09, 0, 1e-15);
     assert_near(s->train.links[1].shear_modulus_Pa, 79e9, 0, 1e-15);
     assert_near(s->bands[0].guard, 0.04, 0, 1e-15);

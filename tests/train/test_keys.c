@@ -188,7 +188,7 @@ static void test_stiffness_and_damping(void **state)
     b->link[0].stiffness_Nm_per_rad = NAN;
     check_says(b, "train.links[0].name: no stiffness");
     b = good();
-    b->link[0].stiffness_Nm_per_deg = 1e5;
+    b->link[0].stiffness_catalogue_Nm_per_rad = 1e5;
     check_says(b, "train.links[0].name: more than one stiffness");
     b = good();
     b->link[0].stiffness_Nm_per_rad = NAN;

@@ -66,15 +66,15 @@ static void test_as_stated(void **state)
     tacet_link_def l = tacet_link_default();
     l.stiffness_Nm_per_rad = 1234;
     assert_near(stiffness(l), 1234, 0, 0);
-    l.stiffness_Nm_per_deg = 5678; // the field table has made it N m/rad
+    l.stiffness_catalogue_Nm_per_rad = 5678; // the field table has made it N m/rad
     double k = -1;
     tacet_error e;
     assert_int_equal(tacet_link_stiffness(&l, &k, &e), TACET_BAD_INPUT);
     l.stiffness_Nm_per_rad = NAN;
     assert_near(stiffness(l), 5678, 0, 0);
-    l.stiffness_Nm_per_deg = -1;
+    l.stiffness_catalogue_Nm_per_rad = -1;
     assert_int_equal(tacet_link_stiffness(&l, &k, &e), TACET_BAD_INPUT);
-    l.stiffness_Nm_per_deg = NAN;
+    l.stiffness_catalogue_Nm_per_rad = NAN;
     assert_int_equal(tacet_link_stiffness(&l, &k, &e), TACET_BAD_INPUT);
     assert_near(k, -1, 0, 0);
 }
