@@ -11,8 +11,8 @@
 static void open(demo *d, const char *reference)
 {
     char *text = demo_text("forwarder.yaml"), with[128];
-    snprintf(with, sizeof with, "over_all_fire_db: 6, floor_rms: 1e-3%s", reference);
-    demo_replace(text, "over_all_fire_db: 6, floor_rms: 100", with);
+    snprintf(with, sizeof with, "over_all_fire_db: 6, floor_rms: 1e-6%s", reference);
+    demo_replace(text, "limit_rms: 0.130", with);
     demo_replace(text, "900:1900:25", "[900, 1400, 1900]");
     demo_open_text(d, text);
     free(text);
@@ -37,7 +37,7 @@ static void test_reference_worst_screened_speed(void **state)
     for (double rpm = 900; rpm <= 1900; rpm += 500)
         worst = fmax(worst,
                      row_of(&d, tacet_model_all_fire(d.model), rpm, 0).bands[BOOM].level.dispersed);
-    assert_true(worst > 1);
+    assert_true(worst > 0.01); // Pa
     assert_near(tacet_model_reference(d.model, BOOM), worst, 0, 1e-9);
     tacet_roll *half = demo_roll(&d, ".x");
     tacet_row row = row_of(&d, half, 1400, 200);
@@ -83,7 +83,7 @@ static void test_reference_unreachable(void **state)
     c.demand_Nm = 25;
     assert_int_equal(tacet_solve(d.model, &c, TACET_LEVEL_RIPPLE, d.work, &all), TACET_OK);
     assert_int_equal(all.outcome, TACET_UNREACHABLE);
-    assert_true(row.bands[BOOM].level.dispersed > 1);
+    assert_true(row.bands[BOOM].level.dispersed > 0.01);
     assert_int_equal(row.bands[BOOM].verdict, TACET_NO_VERDICT);
     assert_int_equal(row.bands[BOOM].why, TACET_WHY_NO_REFERENCE);
     assert_true(isnan(row.bands[BOOM].limit) && isnan(row.fuel_to_all_fire));

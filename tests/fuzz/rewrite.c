@@ -159,11 +159,21 @@ static bool any_given(const tacet_section *s, const bool *given, size_t *at)
     return any;
 }
 
-static bool is_given(writer *w, const tacet_field *field, bool root)
+// A section that asks for keys and may be left out is absent as a whole.
+static bool is_left_out(const tacet_field *field, const char *at)
+{
+    if (!field->fallback) return false;
+    for (const tacet_field *key = field->section->fields; key->key; key++)
+        if (!key->fallback && key->kind == TACET_FIELD_NUMBER)
+            return isnan(*(const double *)(const void *)(at + key->offset));
+    return false;
+}
+
+static bool is_given(writer *w, const tacet_field *field, const char *owner, bool root)
 {
     if (field->kind != TACET_FIELD_SECTION) return w->given[w->at++];
     size_t at = w->at;
-    if (root) return true;
+    if (root && !is_left_out(field, owner + field->offset)) return true;
     if (any_given(field->section, w->given, &at)) return true;
     w->at = at;
     return false;
@@ -174,7 +184,7 @@ static void put_section(writer *w, const tacet_section *s, const char *owner)
     bool root = s == tacet_study_keys(), first = true;
     fputc('{', w->to);
     for (const tacet_field *field = s->fields; field->key; field++) {
-        if (is_given(w, field, root)) {
+        if (is_given(w, field, owner, root)) {
             fputs(first ? "" : root ? ",\n" : ", ", w->to);
             put_value(w, field, owner);
             first = false;
@@ -298,7 +308,7 @@ static void finite_section(const tacet_section *s, const char *owner)
                 REQUIRE(isfinite((*(double *const *)at)[i]));
             break;
         case TACET_FIELD_SECTION:
-            finite_section(field->section, at);
+            if (!is_left_out(field, at)) finite_section(field->section, at);
             break;
         case TACET_FIELD_SECTIONS:
             for (size_t i = 0; i < count_of(field, owner); i++)
