@@ -1,5 +1,5 @@
-"""usage: words.py TACET   words a second time: what `tacet patterns --json` says against counting by hand
-and numpy's transform."""
+"""usage: words.py TACET   words a second time: what `tacet patterns --json` says against counting
+by hand and numpy's transform."""
 import itertools
 import json
 import math
@@ -11,8 +11,8 @@ import numpy as np
 
 
 def ask(*arguments):
-    out = subprocess.run([sys.argv[1], "patterns", *arguments, "--json"], check=True, stdout=subprocess.PIPE)
-    return json.loads(out.stdout)["patterns"]
+    call = [sys.argv[1], "patterns", *arguments, "--json"]
+    return json.loads(subprocess.run(call, check=True, stdout=subprocess.PIPE).stdout)["patterns"]
 
 
 def same(what, got, expected):
@@ -30,7 +30,7 @@ def near(what, got, expected):
 
 
 def history(word, cylinders):
-    """Letters that each cylinder meets until all of it repeats: opportunities dealt out one by one."""
+    """Letters that each cylinder meets until all of it repeats: opportunities dealt one by one."""
     w, seen, i = reduced(word), [""] * cylinders, 0
     while i == 0 or i % cylinders or i % len(w):
         seen[i % cylinders] += w[i % len(w)]
@@ -41,7 +41,8 @@ def history(word, cylinders):
 def skip_run(letters):
     if set(letters) == {"."}:
         return 0  # never fires: no run
-    return max(map(len, "".join("." if c == "." else "x" for c in letters * 2).split("x"))) if "." in letters else 0
+    twice = "".join("." if c == "." else "x" for c in letters * 2)
+    return max(map(len, twice.split("x")))
 
 
 def placements(word, cylinders):
@@ -98,13 +99,17 @@ def accumulator(fires, length):
 
 
 words = 0
-for word, cylinders, strokes in (("x", 6, 4), ("x.", 6, 4), ("x.x.", 4, 2), ("..x.x.x", 6, 4), ("x5..9", 8, 4),
-                                 ("x" + "." * 20 + "3", 5, 4), (".1.1x.", 4, 4), ("xx.x", 1, 4), ("x...x..", 12, 2),
-                                 ("x.." * 21 + "9", 6, 4)):
-    check(ask(word, "--cylinders", str(cylinders), "--strokes", str(strokes))[0], word, cylinders, strokes)
+for word, cylinders, strokes in (
+    ("x", 6, 4), ("x.", 6, 4), ("x.x.", 4, 2), ("..x.x.x", 6, 4), ("x5..9", 8, 4),
+    ("x" + "." * 20 + "3", 5, 4), (".1.1x.", 4, 4), ("xx.x", 1, 4), ("x...x..", 12, 2),
+    ("x.." * 21 + "9", 6, 4),
+):
+    got = ask(word, "--cylinders", str(cylinders), "--strokes", str(strokes))
+    check(got[0], word, cylinders, strokes)
     words += 1
 for fires, length, longest, cylinders in ((3, 7, 0, 6), (4, 10, 0, 8), (5, 12, 3, 6), (6, 9, 1, 4)):
-    got = ask(f"{fires}/{length}", "--cylinders", str(cylinders), "--maker", "necklaces", "--longest-run", str(longest))
+    got = ask(f"{fires}/{length}", "--cylinders", str(cylinders),
+              "--maker", "necklaces", "--longest-run", str(longest))
     k = Fraction(fires, length)
     expected = all_necklaces(k.numerator, k.denominator, longest)
     same("necklaces", sorted(p["word"] for p in got), expected)
