@@ -145,12 +145,81 @@ static void test_shaft_pytel_3_1(void **state)
     }
 }
 
+// Twist of two inertias over its static value at w = r w_n: J1 = J2 = 2, k = 1, so w_n = 1 and
+// c = 2 z.
+static double magnification(double z, double r)
+{
+    tacet_node_def node[2] = {tacet_node_default(), tacet_node_default()};
+    tacet_link_def link = tacet_link_default();
+    node[0].name = link.from = "flywheel";
+    node[1].name = link.to = "load";
+    node[0].inertia_kgm2 = node[1].inertia_kgm2 = 2;
+    link.name = "shaft";
+    link.stiffness_Nm_per_rad = 1;
+    link.damping_Nms_per_rad = 2 * z;
+    tacet_train_def d = tacet_train_default();
+    d.nodes = node;
+    d.n_nodes = 2;
+    d.links = &link;
+    d.n_links = 1;
+    tacet_arena *arena = tacet_arena_create();
+    tacet_train *train = NULL;
+    tacet_train_work *work = NULL;
+    tacet_train_motion motion;
+    tacet_spectrum torque;
+    size_t at = 0;
+    assert_int_equal(tacet_train_create(&d, &train, NULL), TACET_OK);
+    assert_int_equal(tacet_train_work_create(train, 1, 1, &work), TACET_OK);
+    assert_int_equal(tacet_train_motion_init(&motion, train, 1, arena), TACET_OK);
+    assert_int_equal(tacet_spectrum_init(&torque, 1, arena), TACET_OK);
+    torque.line[1] = 2; // of which the second inertia's half goes through the spring
+    assert_int_equal(tacet_train_harmonic(train, r, 1, &at, &torque, work, &motion), TACET_OK);
+    double twist = cabs(motion.angle_rad[0].line[1] - motion.angle_rad[1].line[1]);
+    tacet_train_work_destroy(work);
+    tacet_train_destroy(train);
+    tacet_arena_destroy(arena);
+    return twist;
+}
+
+// The resonance of one degree lies at r = sqrt(1 - 2 z^2) and is 1 / (2 z sqrt(1 - z^2)) high; with
+// z = 0.1 at 0.989949494, 5.025189076 (any text on mechanical vibration; from memory).
+static void test_peak_of_one_degree(void **state)
+{
+    (void)state;
+    double at = 0.989949494, high = 5.025189076;
+    assert_near(magnification(0.1, at), high, 0, 1e-9);
+    assert_true(magnification(0.1, at - 1e-3) < high * (1 - 1e-7));
+    assert_true(magnification(0.1, at + 1e-3) < high * (1 - 1e-7));
+}
+
+// A stepped shaft is as stiff as one of the diameter D and the length sum l_i (D / d_i)^4: 11 in of
+// 3 in, 10 of 5, 15 of 3.5, 4 of 7 and 10 of 5 are 21.82357 in of 3 in (data of Bevan, The Theory
+// of Machines, ch. 15; the rule from memory).
+static void test_stepped_shaft(void **state)
+{
+    (void)state;
+    static const double in[5][2] = {{11, 3}, {10, 5}, {15, 3.5}, {4, 7}, {10, 5}};
+    const double inch = 0.0254;
+    double compliance = 0, k;
+    for (int i = 0; i < 6; i++) {
+        tacet_link_def link = tacet_link_default();
+        link.name = link.from = link.to = "step";
+        link.length_m = (i < 5 ? in[i][0] : 21.82357) * inch;
+        link.outer_m = (i < 5 ? in[i][1] : 3) * inch;
+        assert_int_equal(tacet_link_stiffness(&link, &k, NULL), TACET_OK);
+        if (i < 5) compliance += 1 / k;
+    }
+    assert_near(compliance, 1 / k, 0, 1e-7);
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_irregularity_khurmi_16_11),
         cmocka_unit_test(test_irregularity_khurmi_16_9),
         cmocka_unit_test(test_shaft_pytel_3_1),
+        cmocka_unit_test(test_peak_of_one_degree),
+        cmocka_unit_test(test_stepped_shaft),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
