@@ -11,21 +11,20 @@ typedef struct {
     const cli_session *s;
     const tacet_train *train;
     size_t node, n_links;
-    double step_hz;
-    size_t first, last; // lines, at multiples of the step
-    tacet_train_motion motion;
+    double from_hz, step_hz;
+    size_t n;                  // frequencies
+    tacet_train_motion motion; // line k at frequency k - 1
 } response;
 
-// FROM:TO:STEP of which FROM and TO are whole multiples of STEP; default up to beyond the modes.
+// FROM:TO:STEP as in every list of numbers; default up to beyond the modes.
 static int read_frequencies(const cli_call *call, response *r)
 {
     const double *mode = tacet_model_mode_hz(r->s->model);
     const char *text = cli_value(call, "frequencies");
     double v[3];
     if (!text) {
-        r->step_hz = BEYOND_MODES * mode[tacet_train_nodes(r->train) - 1] / POINTS;
-        r->first = 1;
-        r->last = POINTS;
+        r->from_hz = r->step_hz = BEYOND_MODES * mode[tacet_train_nodes(r->train) - 1] / POINTS;
+        r->n = POINTS;
         return r->step_hz > 0 ? CLI_DONE : cli_wrong("the train has no elastic mode");
     }
     char copy[100], *part = copy;
@@ -38,32 +37,42 @@ static int read_frequencies(const cli_call *call, response *r)
             return cli_wrong("--frequencies '%s': FROM:TO:STEP in Hz, each above 0", text);
         if (end) part = end + 1;
     }
-    if (!(v[1] >= v[0]) || v[1] / v[2] > POINTS_MOST)
+    double steps = (v[1] - v[0]) / v[2];
+    if (!(steps >= 0) || steps > POINTS_MOST)
         return cli_wrong("--frequencies '%s': TO at or above FROM, and at most %d steps up to TO",
                          text, POINTS_MOST);
+    r->from_hz = v[0];
     r->step_hz = v[2];
-    r->first = (size_t)fmax(1, ceil(v[0] / v[2] - 1e-9));
-    r->last = (size_t)floor(v[1] / v[2] + 1e-9);
-    return r->last >= r->first ? CLI_DONE
-                               : cli_wrong("--frequencies '%s': no multiple of STEP inside", text);
+    r->n = (size_t)floor(steps + 1e-9) + 1;
+    return CLI_DONE;
 }
 
-// A torque with 1 N m on every line of a repeat that lasts one revolution at step_hz: line h lies
-// at h times the step.
+static double frequency(const response *r, size_t line)
+{
+    return r->from_hz + (double)(line - 1) * r->step_hz;
+}
+
+// 1 N m on the one line of a repeat of one revolution, whose speed puts it at each frequency in
+// turn.
 static tacet_status solve(response *r)
 {
     tacet_spectrum unit;
+    tacet_train_motion one;
     tacet_train_work *w = NULL;
-    tacet_status status = tacet_spectrum_init(&unit, r->last, r->s->arena);
+    tacet_status status = tacet_spectrum_init(&unit, 1, r->s->arena);
+    if (status == TACET_OK) status = tacet_train_motion_init(&one, r->train, 1, r->s->arena);
     if (status == TACET_OK)
-        status = tacet_train_motion_init(&r->motion, r->train, r->last, r->s->arena);
-    if (status == TACET_OK) status = tacet_train_work_create(r->train, r->last, 1, &w);
-    if (status == TACET_OK) {
-        unit.revolutions = 1;
-        for (size_t h = 1; h <= r->last; h++)
-            unit.line[h] = 1;
-        status = tacet_train_harmonic(r->train, tacet_order_speed(1, r->step_hz), 1, &r->node,
-                                      &unit, w, &r->motion);
+        status = tacet_train_motion_init(&r->motion, r->train, r->n, r->s->arena);
+    if (status == TACET_OK) status = tacet_train_work_create(r->train, 1, 1, &w);
+    unit.revolutions = 1;
+    if (status == TACET_OK) unit.line[1] = 1;
+    for (size_t k = 1; k <= r->n && status == TACET_OK; k++) {
+        status = tacet_train_harmonic(r->train, tacet_order_speed(1, frequency(r, k)), 1, &r->node,
+                                      &unit, w, &one);
+        if (status != TACET_OK) break;
+        r->motion.angle_rad[r->node].line[k] = one.angle_rad[r->node].line[1];
+        for (size_t i = 0; i < r->n_links; i++)
+            r->motion.link_torque_Nm[i].line[k] = one.link_torque_Nm[i].line[1];
     }
     tacet_train_work_destroy(w);
     return status;
@@ -76,7 +85,7 @@ static double angle(const response *r, size_t line)
 
 static bool is_peak(const response *r, size_t line)
 {
-    return line > r->first && line < r->last && angle(r, line) > angle(r, line - 1) &&
+    return line > 1 && line < r->n && angle(r, line) > angle(r, line - 1) &&
            angle(r, line) >= angle(r, line + 1);
 }
 
@@ -101,10 +110,10 @@ static const tacet_table *make_table(const response *r, bool peaks_only, cli_row
     size_t n_columns;
     const tacet_table_column *c = columns(r, &n_columns);
     if (!c) return NULL;
-    *rows = cli_rows_start(r->s->arena, "response", NULL, c, n_columns, r->last - r->first + 1);
-    for (size_t h = r->first; h <= r->last; h++) {
+    *rows = cli_rows_start(r->s->arena, "response", NULL, c, n_columns, r->n);
+    for (size_t h = 1; h <= r->n; h++) {
         if (peaks_only && !is_peak(r, h)) continue;
-        cli_put(rows, (double)h * r->step_hz);
+        cli_put(rows, frequency(r, h));
         cli_put(rows, angle(r, h));
         cli_put(rows, carg(r->motion.angle_rad[r->node].line[h]) * 180 / M_PI);
         for (size_t i = 0; i < r->n_links; i++)
@@ -162,8 +171,8 @@ int cli_response(const cli_call *call, const cli_session *s, const char *node)
         tacet_write_clean(stdout, cli_title(s));
         printf(": peaks of the angle of ");
         tacet_write_clean(stdout, node);
-        printf(" for 1 N m there, %.4g to %.4g Hz in steps of %.3g Hz\n",
-               (double)r.first * r.step_hz, (double)r.last * r.step_hz, r.step_hz);
+        printf(" for 1 N m there, %.4g to %.4g Hz in steps of %.3g Hz\n", r.from_hz,
+               frequency(&r, r.n), r.step_hz);
     }
     cli_write_table(call, t);
     if (!csv) printf("--csv writes every frequency, and the torque of every link.\n");

@@ -68,6 +68,15 @@ tacet_status cylinder_grid(cylinder *c, unsigned steps)
     return TACET_OK;
 }
 
+// Volume flow through the rings about A sqrt(R T) at 1000 K, over that of the gas at top.
+unsigned cylinder_steps(const cylinder *c, double lowest_rad_per_s)
+{
+    double flow_m3_per_s = c->blow_by_m2 * sqrt(c->gas.R_J_per_kgK * 1000);
+    double leak = flow_m3_per_s / c->clearance_m3 * (M_PI / 180) / lowest_rad_per_s;
+    if (!(leak <= STEPS_MOST * LEAK_A_STEP)) return 0;
+    return leak > LEAK_A_STEP ? (unsigned)ceil(leak / LEAK_A_STEP) : 1;
+}
+
 void cylinder_clear(cylinder *c)
 {
     free(c->place);

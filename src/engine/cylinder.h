@@ -46,6 +46,13 @@ typedef struct { // what does not change from cycle to cycle
 // Fills everything but `place` from a definition; then places for `steps` steps a degree.
 cylinder cylinder_of(const tacet_engine_def *d);
 TACET_USE tacet_status cylinder_grid(cylinder *c, unsigned steps);
+// Steps a degree for running down to a speed: the rings of a cylinder that leaks much, turning
+// slowly, would empty it near top within a step. One step does for up to LEAK_A_STEP of the gas at
+// top (error below 2e-4 of the peak pressure); every real engine stays far below it. 0: more than
+// STEPS_MOST would be needed.
+#define LEAK_A_STEP 0.04
+#define STEPS_MOST  24
+unsigned cylinder_steps(const cylinder *c, double lowest_rad_per_s);
 void cylinder_clear(cylinder *c);
 
 typedef struct { // running condition of one cycle

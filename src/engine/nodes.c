@@ -96,9 +96,16 @@ tacet_status nodes_compute(tacet_engine *en, double lowest_rad_per_s, double hig
     size_t n_speeds = 1;
     for (size_t k = 0; k + 1 < b.n; k++)
         n_speeds += intervals(&b, k);
+    unsigned steps = cylinder_steps(&en->cyl, low);
+    if (steps == 0)
+        return tacet_fail(
+            e, TACET_BAD_INPUT,
+            "cycle.blow_by_area_mm2: %.6g; past rings this wide the gas at top leaves "
+            "within a degree at %.6g rpm, which is not computed",
+            en->cyl.blow_by_m2 * 1e6, low * 60 / (2 * M_PI));
     halves h = halves_of(en->def.skip.trapped, longest_run, en->exhaust_first);
     tacet_status status = table_create(&en->table, &h, CYLINDER_SAMPLES, n_speeds, TABLE_CHARGES);
-    if (status == TACET_OK) status = cylinder_grid(&en->cyl, 1);
+    if (status == TACET_OK) status = cylinder_grid(&en->cyl, steps);
     if (status != TACET_OK) return tacet_fail(e, status, "no memory for the cycle table");
     double range[2];
     place_speeds(&en->table, &b);

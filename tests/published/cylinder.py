@@ -1,9 +1,9 @@
 """usage: cylinder.py CYCLES   cylinder cycles a second time, with scipy.
 
-CYCLES prints cycles and duties of the program as JSON. Here each is computed again from the laws as
-published, stated apart from the program: mass and temperature of the gas are integrated (the program
-integrates energies), with valves open temperature alone, since pressure is then given; Runge-Kutta of
-eighth order with error control between the angles at which something begins or ends.
+CYCLES prints cycles and duties of the program as JSON. Here each is computed again from the laws
+as published, stated apart from the program: mass and temperature of the gas are integrated (the
+program integrates energies), with valves open temperature alone, since pressure is then given;
+Runge-Kutta of eighth order with error control between the angles at which something begins or ends.
 """
 import json
 import math
@@ -34,8 +34,8 @@ def h(T):
 
 
 def nozzle(p, T, ratio):
-    """Mass flow per area of an isentropic nozzle (any text on gas dynamics), choked where it must be;
-    within 5 % of equal pressures the parabola through rest that joins in value and slope."""
+    """Mass flow per area of an isentropic nozzle (any text on gas dynamics), choked where it must
+    be; within 5 % of equal pressures the parabola through rest that joins in value and slope."""
     g = gamma(T)
     critical = (2 / (g + 1)) ** (g / (g - 1))
 
@@ -72,7 +72,8 @@ class Cylinder:
         self.small = self.swept / (d["ratio"] - 1)
         self.speed = d["rpm"] * 2 * math.pi / 60
         self.piston = d["stroke_m"] * d["rpm"] / 30  # mean speed, 2 S N
-        share = [(-math.log1p(-x * (1 - math.exp(-6.908))) / 6.908) ** (1 / 3) for x in (0.1, 0.5, 0.9)]
+        end = 1 - math.exp(-6.908)
+        share = [(-math.log1p(-x * end) / 6.908) ** (1 / 3) for x in (0.1, 0.5, 0.9)]
         self.duration = d["burn_deg"] / (share[2] - share[0])
         self.start = d["mid_deg"] - share[1] * self.duration  # degrees after firing top
 
@@ -104,7 +105,7 @@ class Cylinder:
             return per * nozzle(p, T, d["crankcase_Pa"] / p), T
         return -per * nozzle(d["crankcase_Pa"], d["wall_K"], p / d["crankcase_Pa"]), d["wall_K"]
 
-    # What is summed over a repeat, J: work, wall, exhaust, rings; enthalpies over that of the manifold.
+    # Summed over a repeat, J: work, wall, exhaust, rings; enthalpies over that of the manifold.
     def shut(self, gas, a0, a1, top, total, out, fuel):
         """Valves shut from a0 to a1; `top` is the firing top's angle in this half."""
         h_in = h(self.d["intake_K"])
@@ -118,7 +119,8 @@ class Cylinder:
             x = (a - top - self.start) / self.duration
             dx = 0.0
             if fuel > 0 and 0 < x < 1:
-                dx = 3 * 6.908 * x * x * math.exp(-6.908 * x**3) / (1 - math.exp(-6.908)) / self.duration
+                dx = 3 * 6.908 * x * x * math.exp(-6.908 * x**3) / self.duration
+                dx /= 1 - math.exp(-6.908)
             dT = (fuel * dx - p * dV - dQ - db * (h(Tb) - u(T))) / (m * cv(T))
             return [-db, dT, p * dV, dQ, 0.0, db * (h(Tb) - h_in)]
 
@@ -129,7 +131,7 @@ class Cylinder:
             total[i] += y[2 + i]
 
     def valve(self, gas, a0, a1, start, span, p0, p1, inlet, total, out):
-        """A valve is open from a0 to a1: pressure goes from p0 at `start` to p1 over `span` degrees.
+        """A valve is open from a0 to a1: pressure goes from p0 at `start` to p1 over `span`.
         State: temperature, gas out in the inlet port and its enthalpy, fresh gas drawn in, sums."""
         h_in = h(self.d["intake_K"])
 
@@ -162,6 +164,9 @@ class Cylinder:
         def gone(a, y):
             return y[1]
 
+        def given(a, y):
+            return pressure(a)[0]
+
         inflow.terminal = gone.terminal = True
         y, a, way = [gas["T"], 0, 0, 0, 0, 0, 0, 0], a0, None
         if inlet and inflow(a0 + 1e-9, y) > 0:
@@ -171,7 +176,7 @@ class Cylinder:
             if inlet:
                 inflow.direction, gone.direction = 1 if way is None else -1, -1
                 events = [inflow] if way is None or way == h_in else [inflow, gone]
-            y, a = self.integrate(rate(way), y, a, a1, lambda a, y: pressure(a)[0], out, events, True)
+            y, a = self.integrate(rate(way), y, a, a1, given, out, events, True)
             if a >= a1:
                 break
             if way is None:
@@ -207,8 +212,9 @@ class Cylinder:
         else:
             self.shut(gas, 0, 180, 360, total, out, 0)
         if fires and fresh > 0:
-            kilo = d["heating"] / d["air_fuel"] * charge if d["by_fuel"] else d["heating"] / (1 + d["air_fuel"])
-            fuel = kilo * fresh
+            mixture = 1 if d["by_fuel"] else 1 + 1 / d["air_fuel"]  # air is drawn in, or mixture
+            share = charge if d["by_fuel"] else 1
+            fuel = share * d["heating"] / d["air_fuel"] * fresh / mixture
         V, T = self.volume(180)[0], gas["T"]
         p = gas["m"] * R * T / V
         begins = 360 + min(self.start, 0) if fuel else 360
@@ -242,9 +248,9 @@ RESIDUAL, BURNT, AIR, OPEN = range(4)
 
 def repeat(d, charge, factor=1.0, gas=None):
     """The first cylinder's settled repeat: energies in J, pressures of every degree by halves. What
-    valves do: residual: exhaust after every fire, intake before every fire; burnt: no exhaust between a
-    fire and a skip, but before a fire; air: exhaust after a fire, intake of the first skip, exhaust
-    before a fire; open: always."""
+    valves do: residual: exhaust after every fire, intake before every fire; burnt: no exhaust
+    between a fire and a skip, but before a fire; air: exhaust after a fire, intake of the first
+    skip, exhaust before a fire; open: always."""
     c, kind, word, n = Cylinder(d), d["trapped"], d["word"], int(d["cylinders"])
     length = len(word) // math.gcd(len(word), n)
     letter = [word[k * n % len(word)] for k in range(length)]
@@ -262,7 +268,8 @@ def repeat(d, charge, factor=1.0, gas=None):
             else:
                 exhaust = kind == OPEN or (kind in (BURNT, AIR) and after)
             up, down = ([0.0] * 360, [0.0] * 360) if settled else (None, None)
-            fuel += c.up(gas, intake, fires, charge * factor * (share[k] if fires else 1), total, up)
+            own = charge * factor * (share[k] if fires else 1)
+            fuel += c.up(gas, intake, fires, own, total, up)
             c.down(gas, exhaust, total, down)
             pressure += [up, down]
         if settled:
@@ -317,7 +324,7 @@ def torque(d, charge, gas):
 
 
 def check_duty(d):
-    # all-fire: what the table's interpolation leaves; with skips also what its short memory leaves out
+    # all-fire: what the table's interpolation leaves; with skips also what its short memory does
     share = 1e-3 if "." in d["word"] else 1e-4
     c = Cylinder(d)
     gas = {"m": 1.2e5 * c.small / (R * 1000), "T": 1000.0}
@@ -327,7 +334,8 @@ def check_duty(d):
     near("brake", brake, d["demand_Nm"], 1e-4 * d["demand_Nm"])
     near("charge", d["charge"], charge, share * charge)
     near("friction_Nm", d["friction_Nm"], friction, share * friction)
-    near("fuel_kg_per_s", d["fuel_kg_per_s"], fuel * c.speed / d["heating"], share * d["fuel_kg_per_s"])
+    burnt = fuel * c.speed / d["heating"]
+    near("fuel_kg_per_s", d["fuel_kg_per_s"], burnt, share * burnt)
     for name, value in zip(("wall_W", "exhaust_W", "rings_W"), total[1:]):
         near(name, d[name], value * c.speed, share * fuel * c.speed)
     near("gross_W", d["gross_W"] - d["pumping_W"], total[0] * c.speed, share * fuel * c.speed)
@@ -341,7 +349,8 @@ def main():
             check_cycles(d)
         else:
             check_duty(d)
-    print(len(cases), "cases; share of what is allowed:", {k: float(f"{v:.2g}") for k, v in worst.items()})
+    shares = {k: float(f"{v:.2g}") for k, v in worst.items()}
+    print(len(cases), "cases; share of what is allowed:", shares)
 
 
 main()

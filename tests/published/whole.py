@@ -19,8 +19,9 @@ sys.dont_write_bytecode = True  # no cache beside the sources
 import numpy as np
 from scipy.integrate import simpson
 from scipy.optimize import brentq
-from whole_model import (AREA, BANDS, DEMAND, DENSITIES, LIMITS, LINKS, LOADS, N, NODES, RESERVE_DB, SPEEDS,
-                         Condition, Train, fired_kpa, skipped_kpa, slider, write_study)
+from whole_model import (AREA, BANDS, CYCLIC_SIGMA, CYLINDER_SIGMA, DEMAND, DENSITIES, GUARD, LIMITS, LINKS,
+                         LOADS, N, NODES, RESERVE_DB, SPEEDS, Condition, Train, fired_kpa, skipped_kpa, slider,
+                         write_study)
 
 TACET = sys.argv[1]
 MARGIN_DB = 0.005  # of margins with both levels' share of cyclic variation
@@ -187,7 +188,7 @@ def compare_modes(study, train):
         for critical in mode["criticals"]:
             near(f"modes: critical of {i}", critical["speed_rpm"],
                  60 * train.hz[i] / critical["order"], 1e-9)
-    got = tacet("modes", study, "--response", "gearbox", "--frequencies", "3:303:1.5")["response"]
+    got = tacet("modes", study, "--response", "gearbox", "--frequencies", "2:302:1.5")["response"]
     f = np.array(got["frequency_hz"])
     same("response: frequencies", len(f), 201)
     force = np.zeros((len(f), len(NODES)), complex)
@@ -237,6 +238,13 @@ def compare_screen(study, train):
             if verdict(min(margins)) == "clear":
                 clear[rpm].append((cases[0].fuel(), name))
     compare_ranges(got, train, words)
+    for note in got["candidates"]:
+        mine = [rows[note["candidate"], rpm]["verdict"] for rpm in SPEEDS]
+        for kind, key in (("clear", "clear"), ("near", "near"), ("over", "over"), ("none", "unreachable")):
+            same(f"candidate {note['candidate']}: {key}", note[key], mine.count(kind))
+        same(f"candidate {note['candidate']}: best_at", note["best_at"],
+             sum(row["run"] == note["candidate"] and row["status"] == "recommended"
+                 for row in got["ranking"]))
     recommended = {note["candidate"] for note in got["candidates"] if note["recommended"] == "yes"}
     same("screen: verdicts of all kinds", {row["verdict"] for row in rows.values()},
          {"clear", "near", "over", "none"})
@@ -257,6 +265,37 @@ def compare_screen(study, train):
         best = min(((f, name) for name, f in fuel.items() if name in recommended), default=None)
         same(f"ranking at {rpm}: run", row["run"], best and best[1])
     same("ranking: some run", ran > 3, True)
+
+
+def compare_random(study, train, word, rpm, repeats):
+    """What dispersion adds to the mean square of each band, against cylinders and cycles drawn at random
+    one by one over a long stretch of time: 4 standard errors, and 1 % for the grain of its lines."""
+    rng = np.random.default_rng(1902)
+    got = tacet("point", study, "--pattern", word, "--speed", str(rpm), "--level", "constant")
+    c = Condition(train, word, rpm, demand_at(rpm), "constant")
+    fires = [(s, k * c.roll.cycles + j) for s in range(N) for k in range(repeats)
+             for j in range(c.roll.cycles) if c.roll.fire[s][j]]
+    slot = np.array([s for s, _ in fires])
+    top = np.array([4 * math.pi * (s / N + k) for s, k in fires])
+    for i, band in enumerate(BANDS):
+        low, high = band[2] * (1 - GUARD[band[1]]), band[3] * (1 + GUARD[band[1]])
+        step = rpm / 60 / c.R / repeats
+        f = step * np.arange(math.ceil(low / step), math.floor(high / step) + 1)
+        w = 2 * math.pi * f
+        q = w / c.W
+        one = c.roll.fired_pulse(q, c.load) / (math.pi * c.R * repeats)
+        # quantity of every single fire on every line
+        H = c.quantity(band[4], w, c.unit(w))[1]
+        response = H[:, slot] * one[:, None] * np.exp(-1j * np.outer(q, top))
+        square = []
+        for _ in range(4):
+            draws = CYLINDER_SIGMA * rng.standard_normal((N, 1000))[slot]
+            draws = draws + CYCLIC_SIGMA * rng.standard_normal((len(fires), 1000))
+            square.extend(np.sum(np.abs(response @ draws) ** 2, axis=0) / 2)
+        here, error = np.mean(square), np.std(square) / math.sqrt(len(square))
+        b, what = got["bands"][i], f"random {word} at {rpm}: band {band[0]}"
+        same(f"{what}: enough draws", error < 0.03 * here, True)
+        near(what, b["level_rms"] ** 2 - b["nominal_rms"] ** 2, here, 0.01, 4 * error)
 
 
 def compare_ranges(got, train, words):
@@ -297,6 +336,8 @@ def main():
         for word in ("x", ".x", "..xx.x"):
             compare_point(b, lossy, word, 1350, "ripple", 2e-5)
         compare_point(a, viscous, "x.x", 1350, "steady", 1e-4)
+        compare_random(b, lossy, "x", 1900, 96)
+        compare_random(b, lossy, "x..x.", 1900, 24)
         compare_screen(b, lossy)
     print("\n".join(wrong))
     print(f"{checks} numbers compared, {len(wrong)} wrong")
