@@ -47,12 +47,14 @@ static double fluctuation(double inertia_kgm2, double rpm, unsigned revolutions,
     tacet_limit_def def = {"swing", "irregularity", TACET_STAT_PP, 1};
     tacet_limit limit;
     tacet_limit_result result;
-    assert_int_equal(tacet_limit_create(&def, train, &limit, NULL), TACET_OK);
+    assert_int_equal(tacet_limit_create(&def, train, NULL, &limit, NULL), TACET_OK);
     assert_int_equal(tacet_transform_create(tacet_transform_length(n_lines, 8), &transform),
                      TACET_OK);
     double *buffer = tacet_transform_buffer(transform);
     assert_non_null(buffer);
-    assert_int_equal(tacet_limit_judge(&limit, &r, 3, &scratch, transform, buffer, &result),
+    assert_int_equal(tacet_limit_judge(&limit, &r, 3,
+                                       &(tacet_limit_scratch){&scratch, transform, buffer, NULL},
+                                       &result),
                      TACET_OK);
     value = result.value;
     tacet_transform_release(buffer);
