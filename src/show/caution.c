@@ -18,7 +18,7 @@ const char *tacet_caution(tacet_caution_form form)
            "Confirm it by measurement on the real engine, by a qualified engineer, under the "
            "codes\n"
            "and class rules that apply. Not modelled: crankshaft bending, bearings, manifold\n"
-           "dynamics (gas exchange is at constant manifold pressures), a powertrain that bends.\n"
-           "Mounts and paths to people count as far as the study gives them. Stresses are of\n"
+           "dynamics (gas exchange is at constant manifold pressures), a powertrain that bends;\n"
+           "mounts and paths to people count as far as the study gives them. Stresses are of\n"
            "torsion only.\n";
 }
