@@ -87,18 +87,33 @@ bool tacet_row_worse(const tacet_row *a, const tacet_row *b);
 // cannot be reached or solved is a row with that outcome and TACET_OK.
 TACET_USE tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c,
                                    tacet_level level, tacet_workspace *w, tacet_row *out);
-// The response of the last solved condition of this workspace, until the next solve; NULL: none.
-// The same of one path's share, and comfort at a point of acceleration.
-TACET_USE tacet_status tacet_workspace_path(tacet_workspace *w, size_t path,
-                                            const tacet_spectrum **out);
-TACET_USE tacet_status tacet_workspace_comfort(tacet_workspace *w, size_t point,
-                                               tacet_comfort *out);
+// ---- one cylinder dead: a reference beside all-fire
+// Every cylinder fires but one, which never does; all others at equal charge, for the same demand.
+// The dead one's valves do what `skip: trapped` says. Whether it may skip does not matter.
+const tacet_roll *tacet_model_one_dead(const tacet_model *m, unsigned slot); // NULL: one cylinder
+typedef struct {
+    unsigned n_cylinders, n_solved;  // with how many of them dead a level is known
+    double level[TACET_BANDS_MOST];  // of each band with its worst cylinder dead; NAN: none known
+    unsigned slot[TACET_BANDS_MOST]; // that cylinder, by place in the firing order
+} tacet_one_dead;
+// Speed and demand of c; its roll does not matter. The workspace holds no response afterwards.
+TACET_USE tacet_status tacet_solve_one_dead(const tacet_model *m, const tacet_condition *c,
+                                            tacet_level level, tacet_workspace *w,
+                                            tacet_one_dead *out);
+
+// ---- what a workspace still holds of its last solved condition
+// Its response, until the next solve; NULL: none.
 const tacet_response *tacet_workspace_response(const tacet_workspace *w);
 // Gas torque and pressure of the last solved condition (engine_work loaded for it).
 const tacet_engine_work *tacet_workspace_engine(const tacet_workspace *w);
 // Spectrum of any quantity of the last solved condition into workspace memory; peaks on request.
 TACET_USE tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quantity_ref q,
                                                 const tacet_spectrum **out, tacet_peaks *peaks);
+// The same of one path's share, and comfort at a point of acceleration.
+TACET_USE tacet_status tacet_workspace_path(tacet_workspace *w, size_t path,
+                                            const tacet_spectrum **out);
+TACET_USE tacet_status tacet_workspace_comfort(tacet_workspace *w, size_t point,
+                                               tacet_comfort *out);
 
 // How well the solvers agree on a condition: same_model = largest difference of link torque and
 // node speed lines, steady with frozen inertia and torque at W t against constant-speed harmonic,

@@ -230,6 +230,9 @@ void tacet_limit_no_verdict(tacet_why why, tacet_limit_result *out);
 // ---- people -----------------------------------------------------------------------------------
 // One path's share of what arrives at its point (path: index in the body), weighted as the point.
 TACET_USE tacet_status tacet_path_share(const tacet_response *r, size_t path, tacet_spectrum *out);
+// What a part adds along the sum that it belongs to, Re(part conj(sum)) / |sum|^2: the shares of
+// all parts come to 1, negative ones take away from it. NAN: the sum is 0.
+double tacet_share(double complex part, double complex sum);
 
 // Whole-body vibration of one axis at one point, ISO 2631-1 (from memory but for the weightings).
 typedef struct {

@@ -103,6 +103,7 @@ typedef struct tacet_roll {
     unsigned fires;         // in a repeat
     unsigned longest_run;   // skipped cycles in a row of one cylinder that also fires
     unsigned longest_gap;   // skipped opportunities in a row; all of them when nothing fires
+    bool fault;             // a cylinder that never fires cannot: it need not be one that may skip
     tacet_cycle *cycle;     // [cylinders * cycles], slot by slot
 } tacet_roll;
 // Deals the letters of p, reduced, out to the cylinders. TACET_BAD_INPUT: cylinders or strokes out

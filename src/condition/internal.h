@@ -36,7 +36,7 @@ struct tacet_model {
     double highest_order, highest_band_hz;
     bool order_limited;
     double *mode_hz; // [n_nodes]
-    tacet_roll *all_fire;
+    tacet_roll *all_fire, **one_dead; // the second [cylinders]; NULL: there is one only
     unsigned most_revolutions;
     size_t most_lines;
     tacet_transform *transform[TRANSFORM_KINDS];

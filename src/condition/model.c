@@ -196,13 +196,32 @@ static tacet_status assemble_even_transforms(tacet_model *m, unsigned cylinders,
     return TACET_OK;
 }
 
+// A word of one letter a cylinder that leaves one out: its repeat is one cycle.
+static tacet_status assemble_one_dead(tacet_model *m, unsigned n, unsigned strokes, tacet_error *e)
+{
+    if (n < 2) return TACET_OK;
+    m->one_dead = tacet_arena_alloc(m->arena, n * sizeof(tacet_roll *));
+    if (!m->one_dead) return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+    memset(m->one_dead, 0, n * sizeof(tacet_roll *));
+    for (unsigned slot = 0; slot < n; slot++) {
+        tacet_pattern p = {.length = n};
+        for (unsigned k = 0; k < n; k++)
+            p.tenths[k] = k == slot ? 0 : 10;
+        tacet_status status = tacet_roll_create(&p, n, strokes, &m->one_dead[slot], e);
+        if (status != TACET_OK) return status;
+        m->one_dead[slot]->fault = true;
+    }
+    return TACET_OK;
+}
+
 static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
 {
     unsigned n = tacet_engine_cylinders(m->engine), strokes = tacet_engine_strokes(m->engine);
     tacet_pattern fire = {.length = 1, .tenths = {10}};
     tacet_status status = tacet_roll_create(&fire, n, strokes, &m->all_fire, e);
     if (status != TACET_OK) return status;
-    status = choose_highest_order(m, e);
+    status = assemble_one_dead(m, n, strokes, e);
+    if (status == TACET_OK) status = choose_highest_order(m, e);
     if (status != TACET_OK) return status;
     m->most_revolutions = TACET_PATTERN_LONGEST * strokes / 2;
     m->most_lines = tacet_model_lines(m, m->most_revolutions);
@@ -292,6 +311,8 @@ void tacet_model_destroy(tacet_model *m)
     for (size_t i = 0; i < EVEN_CYCLES; i++)
         tacet_transform_destroy(m->even[i]);
     tacet_roll_destroy(m->all_fire);
+    for (unsigned slot = 0; m->one_dead && slot < tacet_engine_cylinders(m->engine); slot++)
+        tacet_roll_destroy(m->one_dead[slot]);
     tacet_body_destroy(m->body);
     tacet_train_destroy(m->train);
     tacet_engine_destroy(m->engine);
@@ -395,4 +416,9 @@ const tacet_roll *tacet_model_all_fire(const tacet_model *m)
 const double *tacet_model_mode_hz(const tacet_model *m)
 {
     return m->mode_hz;
+}
+
+const tacet_roll *tacet_model_one_dead(const tacet_model *m, unsigned slot)
+{
+    return m->one_dead && slot < tacet_engine_cylinders(m->engine) ? m->one_dead[slot] : NULL;
 }

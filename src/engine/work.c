@@ -81,14 +81,19 @@ static void count(engine_group *g, unsigned kind)
     if (g->count[kind]++ == 0) g->used[g->n_used++] = kind;
 }
 
+static bool may_run(const tacet_engine *en, const tacet_roll *r, unsigned slot, unsigned cycle)
+{
+    tacet_cycle c = tacet_roll_cycle(r, slot, cycle);
+    return c.tenths > 0 || en->slot[slot].may_skip || (r->fault && c.skips == TACET_SKIPS_FOREVER);
+}
+
 tacet_reach engine_gather(const tacet_engine *en, const tacet_roll *r, tacet_engine_work *w)
 {
     w->n_groups = 0;
     for (unsigned slot = 0; slot < r->cylinders; slot++)
         for (unsigned c = 0; c < r->cycles; c++) {
             unsigned up, down;
-            if (!en->slot[slot].may_skip && tacet_roll_cycle(r, slot, c).tenths == 0)
-                return TACET_REACH_CYLINDER;
+            if (!may_run(en, r, slot, c)) return TACET_REACH_CYLINDER;
             if (!halves_of_cycle(&en->table.halves, r, slot, c, &up, &down)) return TACET_REACH_RUN;
             engine_group *g = group_of(w, engine_share(en, r, slot, c));
             count(g, up);

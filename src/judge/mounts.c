@@ -90,6 +90,12 @@ tacet_status tacet_path_share(const tacet_response *r, size_t path, tacet_spectr
     return TACET_OK;
 }
 
+double tacet_share(double complex part, double complex sum)
+{
+    double square = creal(sum) * creal(sum) + cimag(sum) * cimag(sum);
+    return square > 0 ? creal(part * conj(sum)) / square : NAN;
+}
+
 tacet_status shaking(const tacet_response *r, size_t member, tacet_spectrum *out)
 {
     size_t n = quantity_begin(r, out);
