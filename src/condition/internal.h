@@ -35,7 +35,7 @@ struct tacet_model {
     tacet_limit *limits;
     double highest_order, highest_band_hz;
     bool order_limited;
-    double *mode_hz; // [n_nodes]
+    double *mode_hz;                  // [n_nodes]
     tacet_roll *all_fire, **one_dead; // the second [cylinders]; NULL: there is one only
     unsigned most_revolutions;
     size_t most_lines;
@@ -75,10 +75,10 @@ struct tacet_workspace {
     tacet_spectrum unit, quantity, *fired;                       // fired: [cylinders]
     const tacet_spectrum **slot_transfer;                        // [cylinders]
     double *samples, *angle, *torque_at, *inertia_at, *slope_at; // [longest transform (+ 2)]
-    double *cycles; // for limits that count cycles; NULL: none does
-    double *order;                                               // [most of any grid]
-    double complex *pulse;                                       // the same
-    double *twist; // [nodes] mean angle against the flywheel's, referred to the crank
+    double *cycles;        // for limits that count cycles; NULL: none does
+    double *order;         // [most of any grid]
+    double complex *pulse; // the same
+    double *twist;         // [nodes] mean angle against the flywheel's, referred to the crank
     tacet_body_response mounts, one_line; // the second for single frequencies
     double friction_Nm;                   // mean total of the loaded condition
     const tacet_roll *roll;               // of the loaded condition
