@@ -206,11 +206,43 @@ typedef struct { // 4: pressure and torque over the repeat
     size_t n_events;
 } tacet_figure_repeat;
 
+typedef struct { // 5: kinetic energy of the modes of the body on its mounts
+    const char *title, *subtitle;
+    const tacet_body_modes *modes;
+    const tacet_figure_band *band; // under the modes, over frequency
+    size_t n_bands;
+} tacet_figure_modes;
+
+// A path's share of the sum is the part of its contribution that lies along the sum: it adds when
+// positive, takes away when negative; all of them together are 1.
+typedef struct {
+    double order, hz;    // NAN: all lines of `heading`
+    double level_rms;    // of the sum
+    const double *share; // [n_paths]
+} tacet_figure_sum;
+typedef struct {
+    const char *name, *at; // of the point; condition and margin
+    const char *all;       // what the sum without order is of: "band cab boom"
+    const char *unit;
+    const char *const *path; // [n_paths]
+    size_t n_paths;
+    const tacet_figure_sum *sum;
+    size_t n_sums;
+} tacet_figure_point;
+#define TACET_FIGURE_POINTS_MOST 6
+typedef struct { // 6: what each path brings to the points
+    const char *title, *subtitle;
+    const tacet_figure_point *point;
+    size_t n_points; // up to TACET_FIGURE_POINTS_MOST
+} tacet_figure_paths;
+
 typedef enum {
     TACET_FIGURE_MAP,
     TACET_FIGURE_ORDERS,
     TACET_FIGURE_BARS,
-    TACET_FIGURE_REPEAT
+    TACET_FIGURE_REPEAT,
+    TACET_FIGURE_MODES,
+    TACET_FIGURE_PATHS
 } tacet_figure_kind;
 typedef struct {
     tacet_figure_kind kind;
@@ -219,6 +251,8 @@ typedef struct {
         const tacet_figure_orders *orders;
         const tacet_figure_bars *bars;
         const tacet_figure_repeat *repeat;
+        const tacet_figure_modes *modes;
+        const tacet_figure_paths *paths;
     };
 } tacet_figure;
 
@@ -241,8 +275,9 @@ TACET_USE tacet_status tacet_figure_script(const tacet_figure *f,
                                            const tacet_drawing_format *format, FILE *to,
                                            tacet_error *e);
 // Writes <stem>.gnuplot and <stem>.<extension> into the folder. stem is one of tacet_folder_names
-// ("map", "orders", "bars", "repeat"), never a user's text. Without gnuplot the script, which holds
-// the data, is kept and e says "drawings need gnuplot" (TACET_OUTSIDE_WORLD).
+// ("map", "orders", "bars", "repeat", "modes", "forces", "paths"), never a user's text. Without
+// gnuplot the script, which holds the data, is kept and e says "drawings need gnuplot"
+// (TACET_OUTSIDE_WORLD).
 TACET_USE tacet_status tacet_draw(tacet_folder *folder, const char *stem, const tacet_figure *f,
                                   const tacet_draw_how *how, tacet_error *e);
 
@@ -298,9 +333,29 @@ TACET_USE tacet_status tacet_bars_of_condition(const tacet_figure_source *s, dou
 TACET_USE tacet_status tacet_repeat_of_condition(const tacet_figure_source *s,
                                                  double speed_rad_per_s, double demand_Nm,
                                                  tacet_figure_repeat *out, tacet_error *e);
+// The next three are of a study with a body on mounts.
+// Kinetic energy of the rigid-body modes over the bands of kind mount.
+TACET_USE tacet_status tacet_modes_of_body(const tacet_model *m, tacet_arena *a,
+                                           tacet_figure_modes *out, tacet_error *e);
+// As tacet_orders_of_pattern, of a mount's force: with rigid-body modes and the bands that mounts
+// reach (kinds mount and cab).
+TACET_USE tacet_status tacet_forces_of_pattern(const tacet_figure_source *s,
+                                               tacet_figure_orders *out, tacet_error *e);
+// What the paths bring to points, each at a condition of its own; `of` and `roll` of the source are
+// not used.
+typedef struct {
+    size_t point;
+    size_t band; // judged on the point; SIZE_MAX: none
+    const tacet_roll *roll;
+    double speed_rad_per_s, demand_Nm;
+} tacet_point_condition;
+TACET_USE tacet_status tacet_paths_of_points(const tacet_figure_source *s,
+                                             const tacet_point_condition *at, size_t n_points,
+                                             tacet_figure_paths *out, tacet_error *e);
 
 // Writes a finished screen into the folder: every table as CSV, screen.json, summary.txt, the four
-// drawings of what the screen recommends (or of what comes nearest). Data first, drawings last;
+// drawings of what the screen recommends (or of what comes nearest), with a body three more. Data
+// first, drawings last;
 // `drawings` (may be NULL) gets the reason when the drawings failed though the data are written,
 // status TACET_OK in it otherwise.
 TACET_USE tacet_status tacet_screen_save(const tacet_model *m, const tacet_screen *s,

@@ -99,9 +99,10 @@ void canvas_box(canvas *c, double x0, double y0, double x1, double y1, canvas_pa
     fputs(" to ", c->to);
     screen_place(c, x1, y0);
     fprintf(c->to, " %s", p.behind ? "behind" : "front");
-    if (p.fill)
-        fprintf(c->to, " fillcolor rgb '%s' fillstyle %s", p.fill,
-                p.hatched ? "pattern 5" : "solid");
+    if (p.fill && p.hatching)
+        fprintf(c->to, " fillcolor rgb '%s' fillstyle pattern %d", p.fill, p.hatching);
+    else if (p.fill)
+        fprintf(c->to, " fillcolor rgb '%s' fillstyle solid", p.fill);
     else
         fputs(" fillstyle empty", c->to);
     if (p.border)

@@ -25,6 +25,10 @@
 #define FILL_REFERENCE "#b9cfe0"
 #define RULE_REFERENCE "#7f9bb3"
 
+#define HATCH_RISING  5 // patterns of gnuplot
+#define HATCH_FALLING 4
+#define HATCH_CROSSED 2
+
 typedef enum { ANCHOR_LEFT, ANCHOR_CENTRE, ANCHOR_RIGHT } canvas_anchor;
 typedef struct {
     FILE *to;
@@ -47,7 +51,7 @@ typedef struct {
     const char *fill;   // NULL: none
     const char *border; // NULL: none
     double width;       // of the border, px
-    bool hatched;       // fill is drawn as hatching
+    int hatching;       // pattern of gnuplot in the colour of the fill; 0: solid
     bool behind;        // the plot
 } canvas_paint;
 void canvas_box(canvas *c, double x0, double y0, double x1, double y1, canvas_paint paint);
@@ -97,6 +101,8 @@ void figure_map_script(canvas *c, const tacet_figure_map *f);
 void figure_orders_script(canvas *c, const tacet_figure_orders *f);
 void figure_bars_script(canvas *c, const tacet_figure_bars *f);
 void figure_repeat_script(canvas *c, const tacet_figure_repeat *f);
+void figure_modes_script(canvas *c, const tacet_figure_modes *f);
+void figure_paths_script(canvas *c, const tacet_figure_paths *f);
 
 // The templates in plots/, embedded at build.
 typedef struct {

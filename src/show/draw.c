@@ -120,6 +120,12 @@ tacet_status tacet_figure_script(const tacet_figure *f, const tacet_drawing_form
     case TACET_FIGURE_REPEAT:
         figure_repeat_script(&c, f->repeat);
         break;
+    case TACET_FIGURE_MODES:
+        figure_modes_script(&c, f->modes);
+        break;
+    case TACET_FIGURE_PATHS:
+        figure_paths_script(&c, f->paths);
+        break;
     }
     return TACET_OK;
 }

@@ -48,7 +48,7 @@ static void tile(canvas *c, double x, double y, double reserve_db, key_tile t)
     canvas_paint paint = {.fill = colour};
     snprintf(colour, sizeof colour, "#%06x", map_colour(t.mark, t.margin_db, reserve_db));
     if (t.mark == TACET_MARK_UNREACHABLE)
-        paint = (canvas_paint){.fill = "#9aa5b1", .hatched = true};
+        paint = (canvas_paint){.fill = "#9aa5b1", .hatching = HATCH_RISING};
     canvas_box(c, x, y - 11, x + 26, y + 11, paint);
     canvas_style mid = {.anchor = ANCHOR_CENTRE, .size = 15};
     mid.bold = t.mark == TACET_MARK_OVER;

@@ -55,6 +55,24 @@ static const char *repeat_missing(const tacet_figure_repeat *f)
     return any_trace(f->torque_Nm, f->n_torque, f->n_samples) ? NULL : "no torque is a number";
 }
 
+static const char *modes_missing(const tacet_figure_modes *f)
+{
+    if (!any_number(f->modes->hz, 6) || !(f->modes->hz[5] > 0)) return "nothing holds the body";
+    for (size_t i = 0; i < 6; i++)
+        if (!isfinite(f->modes->hz[i]) || !any_number(f->modes->share[i], 6))
+            return "a mode is not known";
+    return NULL;
+}
+
+static const char *paths_missing(const tacet_figure_paths *f)
+{
+    if (f->n_points > TACET_FIGURE_POINTS_MOST) return "too many points for one drawing";
+    for (size_t i = 0; i < f->n_points; i++)
+        for (size_t k = 0; k < f->point[i].n_sums; k++)
+            if (any_number(f->point[i].sum[k].share, f->point[i].n_paths)) return NULL;
+    return "nothing arrives at any point";
+}
+
 const char *figure_missing(const tacet_figure *f)
 {
     switch (f->kind) {
@@ -66,6 +84,10 @@ const char *figure_missing(const tacet_figure *f)
         return bars_missing(f->bars);
     case TACET_FIGURE_REPEAT:
         return repeat_missing(f->repeat);
+    case TACET_FIGURE_MODES:
+        return modes_missing(f->modes);
+    case TACET_FIGURE_PATHS:
+        return paths_missing(f->paths);
     }
     return "unknown kind of figure";
 }

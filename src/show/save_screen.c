@@ -1,17 +1,10 @@
 // A finished screen into its folder: data first, drawings last.
 #include "show/folder.h"
-#include "show/screen.h"
+#include "show/save.h"
 #include <math.h>
 #include <string.h>
 
-typedef struct {
-    const tacet_model *m;
-    const tacet_screen *s;
-    tacet_folder *folder;
-    tacet_arena *a;
-} job;
-
-static tacet_status save_table(const job *b, const tacet_screen_table *table, tacet_error *e)
+static tacet_status save_table(const save_job *b, const tacet_screen_table *table, tacet_error *e)
 {
     char name[64];
     tacet_table t;
@@ -25,7 +18,7 @@ static tacet_status save_table(const job *b, const tacet_screen_table *table, ta
     return tacet_folder_commit(b->folder, e);
 }
 
-static tacet_status save_text(const job *b, tacet_error *e)
+static tacet_status save_text(const save_job *b, tacet_error *e)
 {
     static const tacet_table_style plain = {0};
     FILE *to;
@@ -37,7 +30,7 @@ static tacet_status save_text(const job *b, tacet_error *e)
     return tacet_fail(e, status, "summary.txt: %s", tacet_status_text(status));
 }
 
-static tacet_status save_json(const job *b, tacet_error *e)
+static tacet_status save_json(const save_job *b, tacet_error *e)
 {
     FILE *to;
     tacet_status status = tacet_folder_begin(b->folder, "screen.json", &to, e);
@@ -62,7 +55,7 @@ typedef struct {
 
 // How well a cell serves as an example: a skip pattern where it is recommended, then any solved
 // skip pattern, then any solved condition.
-static int example_rank(const job *b, size_t cell)
+static int example_rank(const save_job *b, size_t cell)
 {
     if (b->s->cells[cell].row.outcome != TACET_SOLVED) return 0;
     if (screen_all_fire(screen_candidate(b->s, cell))) return 1;
@@ -73,7 +66,7 @@ static int example_rank(const job *b, size_t cell)
 
 // Of equal rank: the candidate that is recommended at most speeds, and of its cells the one with
 // the least margin that is not over.
-static bool better_example(const job *b, size_t cell, size_t than)
+static bool better_example(const save_job *b, size_t cell, size_t than)
 {
     const tacet_cell *a = &b->s->cells[cell], *best = &b->s->cells[than];
     int rank = example_rank(b, cell), best_rank = example_rank(b, than);
@@ -86,7 +79,7 @@ static bool better_example(const job *b, size_t cell, size_t than)
                 : a->row.worst_margin_db < best->row.worst_margin_db;
 }
 
-static size_t pick_cell(const job *b)
+static size_t pick_cell(const save_job *b)
 {
     size_t best = SIZE_MAX;
     for (size_t i = 0; i < b->s->n_cells; i++)
@@ -98,7 +91,7 @@ static size_t pick_cell(const job *b)
 
 // Of the bands whose quantity has a spectrum: one with a line inside before one without (there the
 // spread of cylinders and cycles alone counts), then the smallest margin. SIZE_MAX: no band.
-static size_t pick_band(const job *b, const tacet_row *r)
+static size_t pick_band(const save_job *b, const tacet_row *r)
 {
     size_t best = SIZE_MAX;
     for (size_t i = 0; i < r->n_bands; i++) {
@@ -115,7 +108,7 @@ static size_t pick_band(const job *b, const tacet_row *r)
 }
 
 // Torque of a shaft: of the first band on one, otherwise of the first link behind the flywheel.
-static bool pick_shaft(const job *b, tacet_quantity_ref *shaft)
+static bool pick_shaft(const save_job *b, tacet_quantity_ref *shaft)
 {
     const tacet_train *t = tacet_model_train(b->m);
     for (size_t i = 0; i < tacet_model_bands(b->m); i++) {
@@ -131,7 +124,7 @@ static bool pick_shaft(const job *b, tacet_quantity_ref *shaft)
     return false;
 }
 
-static choice choose(const job *b)
+static choice choose(const save_job *b)
 {
     choice c = {.cell = pick_cell(b)};
     if (c.cell == SIZE_MAX) return c;
@@ -144,14 +137,7 @@ static choice choose(const job *b)
 
 // ---- drawings
 
-typedef struct {
-    const tacet_draw_how *how;
-    tacet_error first; // reason of the first drawing that failed
-} drawing;
-
-// The first failure is kept; after it only the scripts are written, since what ails gnuplot once
-// (missing, hanging) ails it again.
-static void draw(const job *b, drawing *d, const char *stem, const tacet_figure *f)
+void save_draw(const save_job *b, save_drawing *d, const char *stem, const tacet_figure *f)
 {
     tacet_error e = {.status = TACET_OK};
     tacet_draw_how how = *d->how;
@@ -160,7 +146,7 @@ static void draw(const job *b, drawing *d, const char *stem, const tacet_figure 
         d->first = e;
 }
 
-static void note_failure(drawing *d, tacet_status status, const tacet_error *e)
+void save_note_failure(save_drawing *d, tacet_status status, const tacet_error *e)
 {
     if (status != TACET_OK && d->first.status == TACET_OK) {
         d->first = *e;
@@ -168,9 +154,8 @@ static void note_failure(drawing *d, tacet_status status, const tacet_error *e)
     }
 }
 
-static void draw_pattern(const job *b, tacet_workspace *w, drawing *d)
+static void draw_pattern(const save_job *b, tacet_workspace *w, save_drawing *d, choice c)
 {
-    choice c = choose(b);
     tacet_figure_orders orders;
     tacet_figure_bars bars;
     tacet_figure_repeat repeat;
@@ -186,24 +171,24 @@ static void draw_pattern(const job *b, tacet_workspace *w, drawing *d)
                                .of = c.of};
     if (c.has_of) {
         tacet_status status = tacet_orders_of_pattern(&src, &orders, &e);
-        note_failure(d, status, &e);
+        save_note_failure(d, status, &e);
         if (status == TACET_OK)
-            draw(b, d, "orders", &(tacet_figure){TACET_FIGURE_ORDERS, {.orders = &orders}});
+            save_draw(b, d, "orders", &(tacet_figure){TACET_FIGURE_ORDERS, {.orders = &orders}});
         status = tacet_bars_of_condition(&src, speed, demand, &bars, &e);
-        note_failure(d, status, &e);
+        save_note_failure(d, status, &e);
         if (status == TACET_OK)
-            draw(b, d, "bars", &(tacet_figure){TACET_FIGURE_BARS, {.bars = &bars}});
+            save_draw(b, d, "bars", &(tacet_figure){TACET_FIGURE_BARS, {.bars = &bars}});
     }
     if (!c.has_shaft) return;
     src.of = c.shaft;
     tacet_status status = tacet_repeat_of_condition(&src, speed, demand, &repeat, &e);
-    note_failure(d, status, &e);
+    save_note_failure(d, status, &e);
     if (status == TACET_OK)
-        draw(b, d, "repeat", &(tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &repeat}});
+        save_draw(b, d, "repeat", &(tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &repeat}});
 }
 
 // The shortest first: a full disk takes the answer last.
-static tacet_status save_data(const job *b, tacet_error *e)
+static tacet_status save_data(const save_job *b, tacet_error *e)
 {
     tacet_status status = save_text(b, e);
     for (const tacet_screen_table *t = tacet_screen_tables(); status == TACET_OK && t->name; t++)
@@ -215,17 +200,19 @@ tacet_status tacet_screen_save(const tacet_model *m, const tacet_screen *s, tace
                                tacet_folder *folder, const tacet_draw_how *how,
                                tacet_error *drawings, tacet_error *e)
 {
-    drawing d = {.how = how};
+    save_drawing d = {.how = how};
     tacet_figure_map map;
-    job b = {m, s, folder, tacet_arena_create()};
+    save_job b = {m, s, folder, tacet_arena_create()};
     if (!b.a) return tacet_fail(e, TACET_NO_MEMORY, "no memory to write the results");
     tacet_status status = save_data(&b, e);
     if (status == TACET_OK) {
         tacet_status drawn = tacet_map_of_screen(m, s, b.a, &map);
-        note_failure(&d, drawn, &(tacet_error){.text = "no memory for the map"});
+        save_note_failure(&d, drawn, &(tacet_error){.text = "no memory for the map"});
         if (drawn == TACET_OK)
-            draw(&b, &d, "map", &(tacet_figure){TACET_FIGURE_MAP, {.map = &map}});
-        draw_pattern(&b, w, &d);
+            save_draw(&b, &d, "map", &(tacet_figure){TACET_FIGURE_MAP, {.map = &map}});
+        choice c = choose(&b);
+        draw_pattern(&b, w, &d, c);
+        save_body_drawings(&b, w, &d, c.cell);
         status = tacet_folder_tidy(folder, e);
     }
     if (drawings) *drawings = d.first;

@@ -215,3 +215,71 @@ const tacet_figure_repeat *sample_repeat(void)
                               .n_events = 7 * CYLINDERS};
     return &f;
 }
+
+static const tacet_figure_band mount_bands[] = {
+    {"powertrain roll, front left mount, vertical, at low idle", 10.45, 18.9, true},
+    {"b\xc3\xa4ng `touch hit4` 'quoted'", 17, 24, true},
+};
+
+// Two modes 0.05 Hz apart, negative shares in one, even shares in another.
+const tacet_figure_modes *sample_modes(void)
+{
+    static const tacet_body_modes of_body = {.hz = {0, 5.96, 8.04, 8.09, 10.49, 14.54},
+                                             .share = {{0, 0.973, 0, 0.015, 0, 0.012},
+                                                       {0.91, 0, 0.02, 0, 0.07, 0},
+                                                       {0.05, 0, 0.84, 0, 0.11, 0},
+                                                       {0, 0.04, 0, -0.03, 0, 0.99},
+                                                       {0.16, 0.17, 0.17, 0.17, 0.17, 0.16},
+                                                       {0, 0.02, 0, 1.08, 0, -0.10}},
+                                             .loss = {0, 0.12, 0.1234, 0.12, 0.08, NAN},
+                                             .settled = true};
+    static const tacet_figure_modes f = {.title = SAMPLE_TITLE,
+                                         .subtitle = "Modes of the powertrain on its mounts",
+                                         .modes = &of_body,
+                                         .band = mount_bands,
+                                         .n_bands = sizeof mount_bands / sizeof *mount_bands};
+    return &f;
+}
+
+const tacet_figure_paths *sample_paths(size_t n_points, size_t n_paths)
+{
+    static const char *const path[] = {
+        "front-left z", "front-right z", "rear-left z",
+        "rear-right z", "front-left y",  "b\xc3\xa4ng `touch hit4` 'quoted' <b> at the front",
+        "torque rod x", "9 other paths"};
+    static const char *const point[] = {
+        "ear",   "seat",  "driver's seat, left rail, front, vertical, `touch hit4`",
+        "wheel", "pedal", "floor"};
+    static double share[5][8];
+    static tacet_figure_sum sum[5];
+    static tacet_figure_point points[TACET_FIGURE_POINTS_MOST];
+    static tacet_figure_paths f;
+    for (size_t k = 0; k < 5; k++) {
+        double total = 0;
+        for (size_t i = 0; i < n_paths; i++) {
+            share[k][i] = cos(1.7 * (double)i + 0.6 * (double)k) + 0.3;
+            total += share[k][i];
+        }
+        for (size_t i = 0; i < n_paths; i++)
+            share[k][i] /= total;
+        double order = k ? 0.5 + (double)k / 14 : NAN;
+        sum[k] =
+            (tacet_figure_sum){order, order * 1400 / 60, 0.0123456 / (double)(k + 1), share[k]};
+    }
+    for (size_t i = 0; i < n_points; i++)
+        points[i] = (tacet_figure_point){
+            .name = point[i],
+            .at = "at 1000 rpm and 100 N m: seat rail, margin -5.0 dB (0.177 m/s2 rms with "
+                  "dispersion, limit 0.1)",
+            .all = "all of powertrain roll, front left",
+            .unit = "m/s2",
+            .path = path,
+            .n_paths = n_paths,
+            .sum = sum,
+            .n_sums = 5};
+    f = (tacet_figure_paths){.title = SAMPLE_TITLE,
+                             .subtitle = "What each path from the mounts brings to people",
+                             .point = points,
+                             .n_points = n_points};
+    return &f;
+}

@@ -13,5 +13,7 @@ const tacet_figure_map *sample_map(size_t n_speeds, size_t n_rows);
 const tacet_figure_orders *sample_orders(void);
 const tacet_figure_bars *sample_bars(void);
 const tacet_figure_repeat *sample_repeat(void);
+const tacet_figure_modes *sample_modes(void);
+const tacet_figure_paths *sample_paths(size_t n_points, size_t n_paths); // up to 6 and 8
 
 #endif

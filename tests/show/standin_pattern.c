@@ -1,4 +1,5 @@
 #include "standin_pattern.h"
+#include <complex.h>
 #include <math.h>
 #include <string.h>
 
@@ -188,5 +189,88 @@ tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quantity_ref q,
 {
     (void)q, (void)peaks;
     *out = &w->spectrum;
+    return TACET_OK;
+}
+
+// ---- body
+
+#define PATH(point, mount_name, along)                                                             \
+    {                                                                                              \
+        .mount = mount_name, .axis = along, .to = point                                            \
+    }
+static tacet_point_def points[] = {{.name = "seat"}, {.name = "ear"}, {.name = "knee"}};
+static tacet_path_def paths[] = {
+    PATH("knee", "left", 0),  PATH("ear", "left", 2),   PATH("knee", "left", 1),
+    PATH("ear", "right", 1),  PATH("knee", "left", 2),  PATH("knee", "right", 0),
+    PATH("knee", "right", 1), PATH("knee", "right", 2), PATH("knee", "left", 0),
+    PATH("knee", "left", 1),  PATH("knee", "left", 2)};
+static const tacet_body_def body = {
+    .points = points, .n_points = 3, .paths = paths, .n_paths = sizeof paths / sizeof *paths};
+
+const tacet_body *tacet_model_body(const tacet_model *m)
+{
+    return m->no_body ? NULL : (const tacet_body *)&body;
+}
+
+size_t tacet_body_mounts(const tacet_body *b)
+{
+    (void)b;
+    return 2;
+}
+
+size_t tacet_body_points(const tacet_body *b)
+{
+    (void)b;
+    return 3;
+}
+
+const tacet_body_def *tacet_body_def_of(const tacet_body *b)
+{
+    (void)b;
+    return &body;
+}
+
+const char *tacet_body_point_name(const tacet_body *b, size_t point)
+{
+    (void)b;
+    return points[point].name;
+}
+
+tacet_status tacet_body_modes_of(const tacet_body *b, tacet_body_modes *out)
+{
+    (void)b;
+    *out = (tacet_body_modes){.hz = {5, 6, 7, 8, 9, 10},
+                              .share = {{1, 0, 0, 0, 0, 0},
+                                        {0, 1, 0, 0, 0, 0},
+                                        {0.1, 0, 0.9, 0, 0, 0},
+                                        {0, 0, 0, 0.8, 0, 0.2},
+                                        {0, 0, 0.2, 0, 0.8, 0},
+                                        {0, 0.1, 0, -0.1, 0, 1}},
+                              .settled = true};
+    return TACET_OK;
+}
+
+const tacet_quantity *tacet_quantity_find(const char *name)
+{
+    static const tacet_quantity cab = {.name = "cab", .unit = "m/s2"};
+    return strcmp(name, "cab") == 0 ? &cab : NULL;
+}
+
+tacet_status tacet_workspace_path(tacet_workspace *w, size_t path, const tacet_spectrum **out)
+{
+    tacet_status status = tacet_spectrum_init(&w->share, w->spectrum.n_lines, w->arena);
+    if (status != TACET_OK) return status;
+    double before = 0; // how many paths to the knee come before this one
+    for (size_t i = 0; i < path; i++)
+        before += strcmp(paths[i].to, "knee") == 0;
+    bool ear = strcmp(paths[path].to, "ear") == 0, first = path == 1;
+    w->share.revolutions = w->spectrum.revolutions;
+    for (size_t h = 1; h <= w->spectrum.n_lines; h++) {
+        double complex of_first = h % 2 ? 1.5 + 0.4 * I : 0.25;
+        w->share.line[h] = w->spectrum.line[h] * (!ear    ? before / 36
+                                                  : first ? of_first
+                                                          : 1 - of_first);
+    }
+    *out = &w->share;
     return TACET_OK;
 }

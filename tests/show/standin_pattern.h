@@ -11,13 +11,18 @@ struct tacet_model {
     tacet_band band[2];
     tacet_roll *all_fire;
     bool all_fire_reachable;
+    bool no_body;
 };
 struct tacet_workspace {
     const tacet_model *model;
     tacet_arena *arena;
-    tacet_spectrum spectrum, pistons[2];
+    tacet_spectrum spectrum, share, pistons[2];
     tacet_response response;
 };
+// A body on two mounts with the points "seat" (no path), "ear" (two paths) and "knee" (nine). What
+// arrives is the drawn quantity; of paths to the ear, the first brings 1.5 + 0.4 i times it on odd
+// lines and 0.25 times it on even ones, the second the rest; of those to the knee, path k brings
+// k / 36 (k = 0 .. 8).
 // Amplitude (peak) of line h of a roll's drawn quantity: 1 / h of a pattern; all-fire has 2 at
 // order 3 and nothing else. Phase 0; mean 50.
 double standin_amplitude(const tacet_roll *r, size_t h);

@@ -10,6 +10,9 @@ static const tacet_drawing_format *format(const char *name)
     return f;
 }
 
+static const char *const stems[] = {"map", "orders", "bars", "repeat", "modes", "forces", "paths"};
+#define STEMS (sizeof stems / sizeof *stems)
+
 static void draw_all(void **state, const char *folder_name, const char *format_name)
 {
     const struct {
@@ -18,12 +21,15 @@ static void draw_all(void **state, const char *folder_name, const char *format_n
     } all[] = {{"map", {TACET_FIGURE_MAP, {.map = sample_map(41, 20)}}},
                {"orders", {TACET_FIGURE_ORDERS, {.orders = sample_orders()}}},
                {"bars", {TACET_FIGURE_BARS, {.bars = sample_bars()}}},
-               {"repeat", {TACET_FIGURE_REPEAT, {.repeat = sample_repeat()}}}};
+               {"repeat", {TACET_FIGURE_REPEAT, {.repeat = sample_repeat()}}},
+               {"modes", {TACET_FIGURE_MODES, {.modes = sample_modes()}}},
+               {"forces", {TACET_FIGURE_ORDERS, {.orders = sample_orders()}}},
+               {"paths", {TACET_FIGURE_PATHS, {.paths = sample_paths(3, 8)}}}};
     tacet_folder *folder;
     tacet_draw_how how = tacet_draw_default();
     how.format = format(format_name);
     assert_int_equal(tacet_folder_open(scratch_path(*state, folder_name), &folder, NULL), TACET_OK);
-    for (size_t i = 0; i < 4; i++) {
+    for (size_t i = 0; i < STEMS; i++) {
         tacet_error e = {0};
         tacet_status s = tacet_draw(folder, all[i].stem, &all[i].figure, &how, &e);
         if (s != TACET_OK) print_error("%s: %s\n", all[i].stem, e.text);
@@ -31,8 +37,6 @@ static void draw_all(void **state, const char *folder_name, const char *format_n
     }
     tacet_folder_close(folder);
 }
-
-static const char *const stems[] = {"map", "orders", "bars", "repeat"};
 
 static char *drawing(void **state, const char *folder, const char *stem, const char *tail,
                      size_t *bytes)
@@ -48,7 +52,7 @@ static void test_same_bytes_again(void **state)
 {
     draw_all(state, "a", "svg");
     draw_all(state, "b", "svg");
-    for (size_t i = 0; i < 4; i++) {
+    for (size_t i = 0; i < STEMS; i++) {
         size_t bytes[2];
         char *a = drawing(state, "a", stems[i], "svg", &bytes[0]);
         char *b = drawing(state, "b", stems[i], "svg", &bytes[1]);
@@ -68,8 +72,8 @@ static void test_hostile_text_is_text(void **state)
     draw_all(state, "a", "svg");
     assert_int_equal(chdir(here), 0);
     assert_int_equal(scratch_count(((scratch *)*state)->path), 1);
-    assert_int_equal(scratch_count(scratch_path(*state, "a")), 8);
-    for (size_t i = 0; i < 4; i++) {
+    assert_int_equal(scratch_count(scratch_path(*state, "a")), 2 * STEMS);
+    for (size_t i = 0; i < STEMS; i++) {
         size_t bytes;
         char *svg = drawing(state, "a", stems[i], "svg", &bytes);
         assert_null(strstr(svg, "<script"));
@@ -83,7 +87,7 @@ static void test_hostile_text_is_text(void **state)
 static void test_png_is_whole(void **state)
 {
     draw_all(state, "a", "png");
-    for (size_t i = 0; i < 4; i++) {
+    for (size_t i = 0; i < STEMS; i++) {
         size_t bytes;
         char *png = drawing(state, "a", stems[i], "png", &bytes);
         static const unsigned char head[] = {0x89, 'P', 'N', 'G', 0x0d, 0x0a, 0x1a, 0x0a};
@@ -163,6 +167,17 @@ static void test_nothing_to_draw(void **state)
                                   .torque_Nm = &trace,
                                   .n_torque = 1};
     nothing((tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &repeat}}, "no pressure");
+    tacet_body_modes free_body = {.settled = true};
+    tacet_figure_modes modes = {.modes = &free_body};
+    nothing((tacet_figure){TACET_FIGURE_MODES, {.modes = &modes}}, "nothing holds the body");
+    free_body.hz[5] = 9, free_body.hz[2] = NAN;
+    nothing((tacet_figure){TACET_FIGURE_MODES, {.modes = &modes}}, "not known");
+    tacet_figure_sum sum = {1, 2, 0, nan3};
+    tacet_figure_point point = {.n_paths = 3, .sum = &sum, .n_sums = 1};
+    tacet_figure_paths paths = {.point = &point, .n_points = 1};
+    nothing((tacet_figure){TACET_FIGURE_PATHS, {.paths = &paths}}, "nothing arrives");
+    paths.n_points = TACET_FIGURE_POINTS_MOST + 1;
+    nothing((tacet_figure){TACET_FIGURE_PATHS, {.paths = &paths}}, "too many points");
 }
 
 // Nothing to draw leaves no file, and the folder can be used on.

@@ -174,6 +174,30 @@ static void test_repeat(void **state)
     check(&(tacet_figure){TACET_FIGURE_REPEAT, {.repeat = &f}}, 10);
 }
 
+static void test_modes(void **state)
+{
+    (void)state;
+    tacet_figure_modes f = *sample_modes();
+    check(&(tacet_figure){TACET_FIGURE_MODES, {.modes = &f}}, 35);
+    static tacet_figure_band bands[TACET_BANDS_MOST];
+    for (int i = 0; i < TACET_BANDS_MOST; i++)
+        bands[i] = (tacet_figure_band){"a band with a name of more than one word", 4.0 + i,
+                                       11.0 + 7 * i, true};
+    f.band = bands, f.n_bands = TACET_BANDS_MOST;
+    check(&(tacet_figure){TACET_FIGURE_MODES, {.modes = &f}}, 45);
+    f.n_bands = 0;
+    check(&(tacet_figure){TACET_FIGURE_MODES, {.modes = &f}}, 30);
+}
+
+static void test_paths(void **state)
+{
+    (void)state;
+    for (size_t points = 1; points <= TACET_FIGURE_POINTS_MOST; points++)
+        for (size_t paths = 1; paths <= 8; paths++)
+            check(&(tacet_figure){TACET_FIGURE_PATHS, {.paths = sample_paths(points, paths)}},
+                  7 + points * (2 + 2 * paths));
+}
+
 static void test_spread_moves_as_little_as_needed(void **state)
 {
     (void)state;
@@ -225,6 +249,8 @@ int main(void)
         cmocka_unit_test(test_orders),
         cmocka_unit_test(test_bars),
         cmocka_unit_test(test_repeat),
+        cmocka_unit_test(test_modes),
+        cmocka_unit_test(test_paths),
         cmocka_unit_test(test_spread_moves_as_little_as_needed),
         cmocka_unit_test(test_thin_keeps_the_heaviest),
         cmocka_unit_test(test_text_width),

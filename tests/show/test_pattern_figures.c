@@ -36,7 +36,11 @@ static int begin(void **state)
     model = (struct tacet_model){
         .study = {.title = "A stand-in", .screen = {.speeds_rad_per_s = speeds, .n_speeds = 3}},
         .band =
-            {{.name = "low", .counted_low_hz = 3, .counted_high_hz = 10, .of = {&torque, 0}},
+            {{.name = "low",
+              .kind = TACET_BAND_MOUNT,
+              .counted_low_hz = 3,
+              .counted_high_hz = 10,
+              .of = {&torque, 0}},
              {.name = "other", .counted_low_hz = 1, .counted_high_hz = 2, .of = {&roll_torque, 0}}},
         .all_fire = roll_of("x"),
         .all_fire_reachable = true};
@@ -180,6 +184,116 @@ static void test_repeat_of_fixed_cylinders(void **state)
     assert_string_equal(f.subtitle, "x. at 1000 rpm and 300 N m brake torque");
 }
 
+// Of two bands the one of kind mount lies under the modes.
+static void test_modes_of_body(void **state)
+{
+    (void)state;
+    tacet_figure_modes f;
+    tacet_error e = {0};
+    model.band[1].kind = TACET_BAND_DRIVELINE;
+    assert_int_equal(tacet_modes_of_body(&model, source.arena, &f, &e), TACET_OK);
+    assert_near(f.modes->hz[3], 8, 0, 0);
+    assert_near(f.modes->share[3][5], 0.2, 0, 0);
+    assert_int_equal(f.n_bands, 1);
+    assert_string_equal(f.band[0].name, "low");
+    assert_near(f.band[0].high_hz, 10, 0, 0);
+    model.no_body = true;
+    assert_int_equal(tacet_modes_of_body(&model, source.arena, &f, &e), TACET_BAD_INPUT);
+}
+
+// The same lines as the order drawing, with the body's modes: a second direction is named from
+// 15 % on.
+static void test_forces(void **state)
+{
+    (void)state;
+    static const char *const name[] = {"x", "y", "z", "roll with yaw", "pitch with z", "yaw"};
+    tacet_figure_orders f;
+    tacet_error e = {0};
+    model.band[1].kind = TACET_BAND_DRIVELINE;
+    assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_OK);
+    assert_int_equal(f.n_orders, 9);
+    assert_near(f.level_rms[2 * 3 + 1], sqrt(0.5) / 3, 0, 1e-14);
+    assert_int_equal(f.n_modes, 6);
+    for (size_t i = 0; i < 6; i++) {
+        assert_string_equal(f.mode[i].name, name[i]);
+        assert_near(f.mode[i].hz, 5.0 + (double)i, 0, 0);
+    }
+    assert_int_equal(f.n_bands, 1);
+    model.no_body = true;
+    assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_BAD_INPUT);
+}
+
+// At 1000 rpm lines 3 to 8 (3.57 to 9.52 Hz) lie in the band of 3 to 10 Hz; each is 1 / h. The part
+// of 1.5 + 0.4 i along the sum is 1.5.
+static void test_paths(void **state)
+{
+    (void)state;
+    tacet_figure_paths f;
+    tacet_error e = {0};
+    tacet_point_condition at = {.point = 1,
+                                .band = 0,
+                                .roll = source.roll,
+                                .speed_rad_per_s = 1000 * RPM,
+                                .demand_Nm = 300};
+    assert_int_equal(tacet_paths_of_points(&source, &at, 1, &f, &e), TACET_OK);
+    assert_int_equal(f.n_points, 1);
+    const tacet_figure_point *p = &f.point[0];
+    assert_string_equal(p->name, "ear");
+    assert_string_equal(p->all, "all of low");
+    assert_int_equal(p->n_paths, 2);
+    assert_string_equal(p->path[0], "left z");
+    assert_string_equal(p->path[1], "right y");
+    double odd = 1.0 / 9 + 1.0 / 25 + 1.0 / 49, even = 1.0 / 16 + 1.0 / 36 + 1.0 / 64;
+    assert_true(isnan(p->sum[0].order));
+    assert_near(p->sum[0].level_rms, sqrt((odd + even) / 2), 0, 1e-14);
+    assert_near(p->sum[0].share[0], (1.5 * odd + 0.25 * even) / (odd + even), 0, 1e-14);
+    assert_near(p->sum[0].share[1], (-0.5 * odd + 0.75 * even) / (odd + even), 0, 1e-14);
+    assert_int_equal(p->n_sums, 5); // the four largest: lines 3 to 6
+    for (size_t k = 1; k < 5; k++) {
+        size_t h = k + 2;
+        assert_near(p->sum[k].order, (double)h / 14, 0, 1e-15);
+        assert_near(p->sum[k].hz, (double)h / 14 * 1000 / 60, 0, 1e-14);
+        assert_near(p->sum[k].level_rms, sqrt(0.5) / (double)h, 0, 1e-14);
+        assert_near(p->sum[k].share[0], h % 2 ? 1.5 : 0.25, 0, 1e-14);
+        assert_near(p->sum[k].share[1], h % 2 ? -0.5 : 0.75, 0, 1e-14);
+    }
+}
+
+// Without a band all 42 lines count. Of the knee's nine paths seven are shown: 0 and 1/36 are
+// "others".
+static void test_paths_without_band(void **state)
+{
+    (void)state;
+    tacet_figure_paths f;
+    tacet_error e = {0};
+    tacet_point_condition at[TACET_FIGURE_POINTS_MOST + 1];
+    for (size_t i = 0; i <= TACET_FIGURE_POINTS_MOST; i++)
+        at[i] = (tacet_point_condition){.point = i ? 0 : 2,
+                                        .band = SIZE_MAX,
+                                        .roll = source.roll,
+                                        .speed_rad_per_s = 1000 * RPM,
+                                        .demand_Nm = 300};
+    assert_int_equal(tacet_paths_of_points(&source, at, TACET_FIGURE_POINTS_MOST + 1, &f, &e),
+                     TACET_OK);
+    assert_int_equal(f.n_points, TACET_FIGURE_POINTS_MOST);
+    assert_non_null(strstr(f.subtitle, "(6 of 7 points"));
+    const tacet_figure_point *p = &f.point[0];
+    assert_string_equal(p->all, "all orders");
+    assert_string_equal(p->at, "at 1000 rpm and 300 N m");
+    assert_int_equal(p->n_paths, 8);
+    assert_string_equal(p->path[0], "left z"); // the third to the knee
+    assert_string_equal(p->path[7], "2 other paths");
+    for (size_t k = 0; k < p->n_sums; k++) {
+        for (size_t i = 0; i < 7; i++)
+            assert_near(p->sum[k].share[i], (double)(i + 2) / 36, 0, 1e-14);
+        assert_near(p->sum[k].share[7], 1.0 / 36, 0, 1e-14);
+    }
+    assert_int_equal(f.point[1].n_paths, 0);
+    // nothing to draw where the condition cannot be reached
+    at[0].speed_rad_per_s = 900 * RPM;
+    assert_int_equal(tacet_paths_of_points(&source, at, 1, &f, &e), TACET_BAD_INPUT);
+}
+
 #define EACH(t) cmocka_unit_test_setup_teardown(t, begin, end)
 int main(void)
 {
@@ -190,6 +304,10 @@ int main(void)
         EACH(test_orders),
         EACH(test_repeat),
         EACH(test_repeat_of_fixed_cylinders),
+        EACH(test_modes_of_body),
+        EACH(test_forces),
+        EACH(test_paths),
+        EACH(test_paths_without_band),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
