@@ -346,6 +346,24 @@ static void test_rod_near_the_throw(void **state)
     refused(text_of(&p), "a rod of 50 mm; longer than the crank radius");
 }
 
+// What cannot be reached names the nearest torque that can.
+static void check_edge(demo *d, const plant *p, bool reached)
+{
+    for (int i = 0; i < 2; i++) {
+        const char *word = i ? "xx." : "x";
+        tacet_row row = solve(d, word, p->rpm, p->demand_Nm, TACET_LEVEL_RIPPLE);
+        print_message("  %s, reach %d, %s\n", tacet_outcome_text(row.outcome), row.duty.reach,
+                      row.solver.method ? row.solver.method : "-");
+        if (row.outcome == TACET_SOLVED) assert_true(isfinite(row.bands[0].level.dispersed));
+        if (row.outcome == TACET_FAILED) assert_int_equal(row.why, TACET_NOT_CONVERGED);
+        if (reached) assert_int_equal(row.outcome, TACET_SOLVED);
+        if (row.outcome != TACET_UNREACHABLE) continue;
+        double nearest = row.duty.brake_torque_Nm;
+        row = solve(d, word, p->rpm, nearest - 1e-9 * fabs(nearest), TACET_LEVEL_CONSTANT);
+        assert_int_equal(row.outcome, TACET_SOLVED);
+    }
+}
+
 // The smallest and the largest cylinders, from 10 to 20000 rpm, as the keys allow.
 static void test_sizes_and_speeds(void **state)
 {
@@ -392,19 +410,7 @@ static void test_sizes_and_speeds(void **state)
         print_message("%g mm at %g rpm: %s %s\n", p.bore_mm, p.rpm, tacet_status_text(status),
                       status == TACET_OK ? "" : e.text);
         free(text);
-        for (int word = 0; word < 2 && status == TACET_OK; word++) {
-            tacet_row row = solve(&d, word ? "xx." : "x", p.rpm, p.demand_Nm, TACET_LEVEL_RIPPLE);
-            print_message("  %s, reach %d, %s\n", tacet_outcome_text(row.outcome), row.duty.reach,
-                          row.solver.method ? row.solver.method : "-");
-            if (row.outcome == TACET_SOLVED) assert_true(isfinite(row.bands[0].level.dispersed));
-            if (row.outcome == TACET_FAILED) assert_int_equal(row.why, TACET_NOT_CONVERGED);
-            if (i == 1 || i == 2) assert_int_equal(row.outcome, TACET_SOLVED);
-            if (row.outcome != TACET_UNREACHABLE) continue;
-            double nearest = row.duty.brake_torque_Nm; // is reached
-            row = solve(&d, word ? "xx." : "x", p.rpm, nearest - 1e-9 * fabs(nearest),
-                        TACET_LEVEL_CONSTANT);
-            assert_int_equal(row.outcome, TACET_SOLVED);
-        }
+        if (status == TACET_OK) check_edge(&d, &p, i == 1 || i == 2);
         if (status != TACET_OK) assert_true(strlen(e.text) > 20);
         demo_close(&d);
     }
