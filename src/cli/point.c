@@ -68,8 +68,7 @@ static int run(const cli_call *call)
     cli_session s;
     int code = cli_open(call->operand[0], CLI_PREPARED, &s);
     if (code == CLI_DONE) code = solve(call, &s);
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

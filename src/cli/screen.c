@@ -1,6 +1,5 @@
 // tacet screen: the main job.
 #include "cli/cli.h"
-#include <unistd.h>
 
 static const char *const formats[] = {"svg", "png", "none", NULL};
 
@@ -105,11 +104,8 @@ static int run(const cli_call *call)
         code = cli_deepen(&s, CLI_PREPARED);
     }
     if (code == CLI_DONE) code = screen_study(call, &s, folder);
-    bool made = folder != NULL;
     tacet_folder_close(folder);
-    if (made) rmdir(path); // only goes when nothing was written
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

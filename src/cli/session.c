@@ -19,7 +19,7 @@ static int read_study(const char *path, cli_session *s)
     cli_say_problems(s->problems);
     if (status == TACET_OK) return CLI_DONE;
     size_t n = tacet_problems_errors(s->problems);
-    if (n == 0) return cli_failed(status, NULL);
+    if (n == 0 || status == TACET_NO_MEMORY) return cli_failed(status, NULL);
     if (status == TACET_BAD_INPUT)
         cli_say("%s: %zu error%s, nothing was done", cli_study_name(path), n, n == 1 ? "" : "s");
     return cli_exit_of(status);
@@ -45,13 +45,13 @@ int cli_open(const char *path, cli_depth depth, cli_session *s)
     return code == CLI_DONE ? cli_deepen(s, depth) : code;
 }
 
-void cli_close(cli_session *s)
+int cli_close(cli_session *s, int code)
 {
     tacet_workspace_destroy(s->work);
     tacet_model_destroy(s->model);
     tacet_study_destroy(s->study);
-    tacet_arena_destroy(s->arena);
     tacet_problems_destroy(s->problems);
+    return cli_arena_end(s->arena, code);
 }
 
 int cli_folder(const char *path, const char *foreign, tacet_folder **out)
