@@ -92,9 +92,9 @@ static int run(const cli_call *call)
     tacet_folder *folder = NULL;
     int code = cli_choice(call, "drawings", formats, &format);
     if (code != CLI_DONE) return code;
-    cli_catch_signals();
     cli_folder_name(call, "screen", sizeof path, path);
     code = cli_open(call->operand[0], CLI_READ, &s);
+    cli_catch_signals(); // a study that does not come may be waited for no longer
     if (code == CLI_DONE && *path) code = cli_folder(path, "point.json", &folder);
     if (code == CLI_DONE) {
         double rpm[2];

@@ -31,8 +31,13 @@ int cli_deepen(cli_session *s, cli_depth depth)
     tacet_status status = TACET_OK;
     if (depth >= CLI_ASSEMBLED && !s->model) status = tacet_model_create(s->study, &s->model, &e);
     if (status == TACET_OK && depth == CLI_PREPARED) {
+        tacet_model_watch(s->model, cli_stop());
         status = tacet_model_prepare(s->model, &e);
         if (status == TACET_OK) status = tacet_workspace_create(s->model, &s->work);
+    }
+    if (status == TACET_STOPPED) { // the signal is raised again
+        cli_say("%s; nothing was written", e.text);
+        return CLI_OUTSIDE_WORLD;
     }
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
