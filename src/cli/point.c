@@ -54,6 +54,7 @@ static int solve(const cli_call *call, const cli_session *s)
     if (code == CLI_DONE && cli_given(call, "referee") && p.row.outcome == TACET_SOLVED) {
         p.refereed = true;
         p.referee_status = tacet_solve_referee(s->model, &p.condition, s->work, &p.agreement);
+        if (p.referee_status == TACET_NO_MEMORY) code = cli_failed(TACET_NO_MEMORY, NULL);
     }
     if (code == CLI_DONE) code = write_out(&p);
     if (code == CLI_DONE && cli_given(call, "output"))

@@ -164,18 +164,18 @@ tacet_status tacet_folder_commit(tacet_folder *f, tacet_error *e)
     char tmp[64];
     if (!f->open) return tacet_fail(e, TACET_BAD_INPUT, "no file of the folder is open");
     temporary(f->name, tmp);
-    errno = 0;
-    bool bad = fflush(f->open) != 0 || ferror(f->open) != 0;
-    bad = bad || fsync(fileno(f->open)) != 0;
+    bool bad = tacet_stream_check(f->open, tmp, NULL) != TACET_OK || fsync(fileno(f->open)) != 0;
     int reason = errno;
-    bool bad_close = fclose(f->open) != 0;
-    if (bad_close && !bad) reason = errno;
+    if (fclose(f->open) != 0 && !bad) {
+        bad = true;
+        reason = errno;
+    }
     f->open = NULL;
-    if (!bad && !bad_close && renameat(f->fd, tmp, f->fd, names[f->name]) == 0) {
+    if (!bad && renameat(f->fd, tmp, f->fd, names[f->name]) == 0) {
         f->wrote[f->name] = true;
         return TACET_OK;
     }
-    if (!bad && !bad_close) reason = errno;
+    if (!bad) reason = errno;
     unlinkat(f->fd, tmp, 0);
     return outside(e, "write", f->path, names[f->name], reason ? reason : EIO);
 }

@@ -27,3 +27,27 @@ look_at() # WHAT CODE WHOLE: the run's folder `result`, words in `err`
     done
     rm -rf result
 }
+
+# The n-th of each kind of call fails, until a run does not get as far. FILES narrows it to calls on one of them.
+fail_each() # WHOLE "CALLS" FILES ARGUMENTS..
+{
+    whole=$1 calls=$2 files=$3
+    shift 3
+    for call in $calls; do
+        n=1
+        while :; do
+            # shellcheck disable=SC2086 # FILES is -P options, or none
+            strace -qq -o trace $files -e trace="$call" -e inject="$call:error=ENOSPC:when=$n" \
+                "$TACET" "$@" >out 2>err </dev/null
+            code=$?
+            grep -q INJECTED trace || break
+            look_at "$call $n of $1" "$code" "$whole"
+            n=$((n + ${STEP:-1}))
+        done
+        echo "$1: $((n - 1)) calls of $call"
+    done
+}
+
+# paths of the folder are relative to it, so -P cannot name them: standard error is closed off by a pipe instead
+fail_each whole "fsync renameat openat" "" screen small.yaml -o result --drawings svg
+finish
