@@ -3,7 +3,7 @@
 # a file system that is really full (as root, where mounting is allowed). The run must
 #   end with exit code 4, name the file (or standard output) and the reason;
 #   leave whole files only, no *.tmp, no empty folder.
-# A call that standard error needs is left alone. Skipped (77) where processes may not be traced.
+# EVERY=1: every call; otherwise in steps. Skipped (77) where processes may not be traced.
 . "$(dirname "$0")/help.sh"
 strace -qq -o /dev/null true 2>/dev/null || { echo "processes may not be traced here"; exit 77; }
 
@@ -28,26 +28,58 @@ look_at() # WHAT CODE WHOLE: the run's folder `result`, words in `err`
     rm -rf result
 }
 
-# The n-th of each kind of call fails, until a run does not get as far. FILES narrows it to calls on one of them.
-fail_each() # WHOLE "CALLS" FILES ARGUMENTS..
+paths="-P $PWD/out"
+for name in summary.txt runs.csv summary.csv ranking.csv no-go.csv agreement.csv levels.csv lines.csv screen.json \
+    point.json map.gnuplot orders.gnuplot bars.gnuplot repeat.gnuplot; do
+    paths="$paths -P $PWD/result/$name.tmp"
+done
+
+# The n-th of each kind of call fails, from the first on in steps, until a run does not get as far.
+fail_each() # STEP WHOLE "CALLS" ARGUMENTS..
 {
-    whole=$1 calls=$2 files=$3
+    step=$1 whole=$2 calls=$3
+    [ -z "${EVERY:-}" ] || step=1
     shift 3
     for call in $calls; do
-        n=1
+        n=1 count=0 only='' on=''
+        # a disk that is full stays so; not for standard error
+        [ "$call" != write ] || only=$paths on=+
         while :; do
-            # shellcheck disable=SC2086 # FILES is -P options, or none
-            strace -qq -o trace $files -e trace="$call" -e inject="$call:error=ENOSPC:when=$n" \
-                "$TACET" "$@" >out 2>err </dev/null
+            # shellcheck disable=SC2086 # options or none
+            strace -qq -o trace $only -e trace="$call" -e inject="$call:error=ENOSPC:when=$n$on" "$TACET" "$@" \
+                >out 2>err </dev/null
             code=$?
             grep -q INJECTED trace || break
-            look_at "$call $n of $1" "$code" "$whole"
-            n=$((n + ${STEP:-1}))
+            # the loader's files come before the run
+            grep INJECTED trace | grep -q '^openat(AT_FDCWD, "/' ||
+                look_at "$call $n of $*: $(grep -m1 INJECTED trace | cut -c1-60 | tr -d '\n')" "$code" "$whole"
+            count=$((count + 1))
+            n=$((n + step))
         done
-        echo "$1: $((n - 1)) calls of $call"
+        echo "$count calls of $call failed in: $*"
     done
 }
 
-# paths of the folder are relative to it, so -P cannot name them: standard error is closed off by a pipe instead
-fail_each whole "fsync renameat openat" "" screen small.yaml -o result --drawings svg
+fail_each 3 whole "fsync renameat mkdir" screen small.yaml -o result --drawings svg
+fail_each 5 whole "write openat" screen small.yaml -o result --drawings svg
+fail_each 2 point-whole "write fsync renameat" point small.yaml --density 1/2 --speed 1500 -o result
+fail_each 1 whole write keys --json
+fail_each 1 whole write example
+
+# a file system of so many pages that is really full, with drawings and all
+if [ "$(id -u)" = 0 ] && mkdir tight && mount -t tmpfs -o size=4k none tight 2>/dev/null; then
+    umount tight
+    for pages in 1 2 3 4 8 12 20 30 40 60 80 100; do
+        mount -t tmpfs -o size=$((pages * 4))k none tight
+        tacet screen small.yaml -o tight/result --drawings svg >out 2>err
+        code=$?
+        sed 's|tight/result|result|' err >err2 && mv err2 err
+        [ ! -d tight/result ] || cp -r tight/result result
+        look_at "a file system of $pages pages" "$code" whole
+        umount tight
+    done
+    echo "small file systems were filled"
+else
+    echo "no file system may be mounted here"
+fi
 finish

@@ -4,6 +4,7 @@
 //   FAIL_COPIES=f   at the n-th call, for every n, a copy of the process is forked. The call fails
 //                   in the copy, which goes on in f/n, a copy of the working folder, its open files
 //                   with it; then the process goes on as if nothing had been.
+//                   FAIL_FROM=n, FAIL_STEP=n: not every call, but from the n-th on every n-th.
 //                   f/log gets a line for each: n, "exit" or "signal", its number.
 //   FAIL_AT=n       without copies: the n-th call fails
 //   FAIL_ON=1       and so does every later one
@@ -41,7 +42,7 @@ static struct {
 
 static struct {
     bool counting, failing, on;
-    unsigned long at, calls;
+    unsigned long at, from, step, calls;
     const char *copies;
     int log;
 } state;
@@ -109,7 +110,8 @@ static bool fails(const void *caller)
     if (!state.counting || within(&fftw, caller)) return false;
     state.calls++;
     bool bad = state.failing && state.on;
-    if (state.copies) bad = fork_here();
+    bool due = state.calls >= state.from && (state.calls - state.from) % state.step == 0;
+    if (state.copies && due) bad = fork_here();
     if (state.calls == state.at) bad = state.failing = true;
     if (bad) errno = ENOMEM;
     return bad;
@@ -192,11 +194,18 @@ static int look_at_library(struct dl_phdr_info *info, size_t size, void *who)
     return 0;
 }
 
+static unsigned long number(const char *variable, unsigned long fallback)
+{
+    const char *text = getenv(variable);
+    return text ? strtoul(text, NULL, 10) : fallback;
+}
+
 __attribute__((constructor)) static void start(void)
 {
-    const char *at = getenv("FAIL_AT");
     dl_iterate_phdr(look_at_library, NULL);
-    state.at = at ? strtoul(at, NULL, 10) : 0;
+    state.at = number("FAIL_AT", 0);
+    state.from = number("FAIL_FROM", 1);
+    state.step = number("FAIL_STEP", 1);
     state.on = getenv("FAIL_ON") != NULL;
     state.copies = getenv("FAIL_COPIES");
     if (state.copies) {

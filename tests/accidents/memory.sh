@@ -4,6 +4,7 @@
 #   end with exit code 4 and say on standard error that memory is lacking, or end as the whole run did: same bytes;
 #   leave no file that differs from the whole run's, no part of one, no empty folder;
 #   free what it holds.
+# EVERY=1: every call of every command; otherwise reading the study once, and samples of the rest.
 . "$(dirname "$0")/help.sh"
 shared=$(realpath "$2")
 
@@ -39,30 +40,32 @@ look_at() # NAME: the copies in $scratch/NAME, the whole run in $scratch/NAME-wh
     echo "$1: $(wc -l <"$copies/log") calls"
 }
 
-fail_each() # NAME "once"|"on" ARGUMENTS..
+fail_each() # NAME "once"|"on" FROM STEP ARGUMENTS..
 {
-    name=$1-$2 on=
+    name=$1-$2 on='' which="FAIL_FROM=$3 FAIL_STEP=$4"
     [ "$2" = once ] || on="FAIL_ON=1"
-    shift 2
+    [ -z "${EVERY:-}" ] || which=''
+    shift 4
     mkdir "$scratch/$name" "$scratch/$name-whole"
     cp ./*.yaml ./*.words "$scratch/$name-whole"
     cd "$scratch/$name-whole" || exit 1
-    # shellcheck disable=SC2086 # no word or one
-    env $on FAIL_COPIES="$scratch/$name" LD_PRELOAD="$shared" "$TACET" "$@" >out 2>err </dev/null ||
+    # shellcheck disable=SC2086 # variables, or none
+    env $on $which FAIL_COPIES="$scratch/$name" LD_PRELOAD="$shared" "$TACET" "$@" >out 2>err </dev/null ||
         complain "$name: the whole run ends with $?: $(head -1 err)"
     cd "$scratch/desk" || exit 1
     look_at "$name"
     rm -rf "${scratch:?}/$name" "$scratch/$name-whole"
 }
 
-for how in once on; do
-    fail_each example $how example
-    fail_each keys $how keys --json
-    fail_each patterns $how patterns 3/7 --cylinders 6
-    fail_each modes $how modes small.yaml --response flywheel
-    fail_each check $how check small.yaml --values
-    fail_each point $how point small.yaml --density 1/2 --speed 1500 --referee -o result
-    fail_each screen $how screen small.yaml -o result
-    fail_each screen-json $how screen small.yaml --json
-done
+fail_each example once 1 1 example
+fail_each keys once 1 1 keys --json
+fail_each patterns once 1 1 patterns 3/7 --cylinders 6
+fail_each check once 1 1 check small.yaml --values
+fail_each modes once 530 3 modes small.yaml --response flywheel
+fail_each point once 650 5 point small.yaml --density 1/2 --speed 1500 --referee -o result
+fail_each screen once 532 5 screen small.yaml -o result
+fail_each screen-json once 1500 7 screen small.yaml --json
+fail_each check-all on 2 4 check small.yaml --values
+fail_each point-all on 641 8 point small.yaml --density 1/2 --speed 1500 --referee -o result
+fail_each screen-all on 534 8 screen small.yaml -o result
 finish
