@@ -1,14 +1,16 @@
 #!/bin/sh
-# usage: sh disk.sh TACET   the n-th write, open, fsync, rename of a run fails as on a full disk, for every n; then
-# a file system that is really full (as root, where mounting is allowed). The run must
+# usage: sh disk.sh TACET
+# The n-th write, open, fsync, rename of a run fails as on a full disk; then a file system is really
+# full (as root, where mounting is allowed). The run must
 #   end with exit code 4, name the file (or standard output) and the reason;
 #   leave whole files only, no *.tmp, no empty folder.
 # EVERY=1: every call; otherwise in steps. Skipped (77) where processes may not be traced.
 . "$(dirname "$0")/help.sh"
 strace -qq -o /dev/null true 2>/dev/null || { echo "processes may not be traced here"; exit 77; }
 
-tacet screen small.yaml -o whole --drawings svg >whole.out 2>whole.err || complain "the whole run ends with $?"
-tacet point small.yaml --density 1/2 --speed 1500 -o point-whole >point-whole.out 2>/dev/null || complain "the point ends with $?"
+tacet screen small.yaml -o whole >out 2>err || complain "the whole run ends with $?"
+tacet point small.yaml --density 1/2 --speed 1500 -o point-whole >out 2>err ||
+    complain "the point ends with $?"
 
 look_at() # WHAT CODE WHOLE: the run's folder `result`, words in `err`
 {
@@ -29,8 +31,8 @@ look_at() # WHAT CODE WHOLE: the run's folder `result`, words in `err`
 }
 
 paths="-P $PWD/out"
-for name in summary.txt runs.csv summary.csv ranking.csv no-go.csv agreement.csv levels.csv lines.csv screen.json \
-    point.json map.gnuplot orders.gnuplot bars.gnuplot repeat.gnuplot; do
+for name in summary.txt runs.csv summary.csv ranking.csv no-go.csv agreement.csv levels.csv \
+    lines.csv screen.json point.json map.gnuplot orders.gnuplot bars.gnuplot repeat.gnuplot; do
     paths="$paths -P $PWD/result/$name.tmp"
 done
 
@@ -46,13 +48,13 @@ fail_each() # STEP WHOLE "CALLS" ARGUMENTS..
         [ "$call" != write ] || only=$paths on=+
         while :; do
             # shellcheck disable=SC2086 # options or none
-            strace -qq -o trace $only -e trace="$call" -e inject="$call:error=ENOSPC:when=$n$on" "$TACET" "$@" \
-                >out 2>err </dev/null
+            strace -qq -o trace $only -e trace="$call" \
+                -e inject="$call:error=ENOSPC:when=$n$on" "$TACET" "$@" >out 2>err </dev/null
             code=$?
             grep -q INJECTED trace || break
             # the loader's files come before the run
             grep INJECTED trace | grep -q '^openat(AT_FDCWD, "/' ||
-                look_at "$call $n of $*: $(grep -m1 INJECTED trace | cut -c1-60 | tr -d '\n')" "$code" "$whole"
+                look_at "$call $n of $*: $(grep -m1 INJECTED trace | cut -c1-60)" "$code" "$whole"
             count=$((count + 1))
             n=$((n + step))
         done

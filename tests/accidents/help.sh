@@ -1,5 +1,5 @@
-# What the scripts of this folder share: a scratch folder with the studies, the program as `tacet`, complaints that
-# are counted. Read by each of them:  . "$(dirname "$0")/help.sh"; first argument of the script: the program.
+# What the scripts of this folder share: a scratch folder with the studies, the program as `tacet`,
+# complaints that are counted. Read by each of them; the script's first argument is the program.
 set -u
 here=$(cd "$(dirname "$0")" && pwd)
 root=$(cd "$here/../.." && pwd)

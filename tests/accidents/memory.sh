@@ -1,7 +1,9 @@
 #!/bin/sh
-# usage: sh memory.sh TACET FAIL_MEMORY.so   every allocation of every command fails once, and once with all later ones.
-# A copy of the process goes on with the failure (see fail_memory.c), and must
-#   end with exit code 4 and say on standard error that memory is lacking, or end as the whole run did: same bytes;
+# usage: sh memory.sh TACET FAIL_MEMORY.so
+# Every allocation of every command fails once, and once with all later ones. A copy of the process
+# goes on with the failure (see fail_memory.c), and must
+#   end with exit code 4 and say on standard error that memory is lacking, or end as the whole run
+#   did: same bytes;
 #   leave no file that differs from the whole run's, no part of one, no empty folder;
 #   free what it holds.
 # EVERY=1: every call of every command; otherwise reading the study once, and samples of the rest.
@@ -16,18 +18,21 @@ look_at() # NAME: the copies in $scratch/NAME, the whole run in $scratch/NAME-wh
         case "$ended $code" in
             "exit 0")
                 for file in out err; do
-                    cmp -s "$here/$file" "$whole/$file" || complain "$1, call $n: ends with 0, but $file differs"
+                    cmp -s "$here/$file" "$whole/$file" ||
+                        complain "$1, call $n: ends with 0, but $file differs"
                 done
                 if [ -d "$whole/result" ]; then
-                    diff -r "$here/result" "$whole/result" >/dev/null || complain "$1, call $n: ends with 0, but files differ"
+                    diff -r "$here/result" "$whole/result" >/dev/null ||
+                        complain "$1, call $n: ends with 0, but files differ"
                 fi
                 ;;
             "exit 4")
-                grep -q -i -e memory "$here/err" || complain "$1, call $n: no word about memory: $(head -1 "$here/err")"
+                grep -q -i memory "$here/err" ||
+                    complain "$1, call $n: no word about memory: $(head -1 "$here/err")"
                 [ ! -d "$here/result" ] || for file in "$here"/result/*; do
                     [ -f "$file" ] || { complain "$1, call $n: leaves an empty folder"; break; }
-                    [ "${file##*/}" = summary.txt.tmp ] && complain "$1, call $n: leaves $file"
-                    cmp -s "$file" "$whole/result/${file##*/}" || complain "$1, call $n: ${file##*/} is not whole"
+                    cmp -s "$file" "$whole/result/${file##*/}" ||
+                        complain "$1, call $n: ${file##*/} is not whole"
                 done
                 ;;
             *) complain "$1, call $n: $ended $code: $(head -1 "$here/err")" ;;
@@ -35,8 +40,8 @@ look_at() # NAME: the copies in $scratch/NAME, the whole run in $scratch/NAME-wh
         read -r calls left <"$here/blocks" || calls=0 left=unknown
         [ "$left" = 0 ] || complain "$1, call $n: $left blocks left of $calls calls"
     done <"$copies/log"
-    grep -q -v -e '^tacet: ' -e '^[^ ]*: error: ' "$copies"/*/err &&
-        complain "$1: other words: $(grep -h -v -e '^tacet: ' -e '^[^ ]*: error: ' "$copies"/*/err | sort | uniq -c)"
+    grep -h -v -e '^tacet: ' -e '^[^ ]*: error: ' "$copies"/*/err >"$scratch/others" &&
+        complain "$1: other words: $(sort "$scratch/others" | uniq -c)"
     echo "$1: $(wc -l <"$copies/log") calls"
 }
 
@@ -50,7 +55,8 @@ fail_each() # NAME "once"|"on" FROM STEP ARGUMENTS..
     cp ./*.yaml ./*.words "$scratch/$name-whole"
     cd "$scratch/$name-whole" || exit 1
     # shellcheck disable=SC2086 # variables, or none
-    env $on $which FAIL_COPIES="$scratch/$name" LD_PRELOAD="$shared" "$TACET" "$@" >out 2>err </dev/null ||
+    env $on $which FAIL_COPIES="$scratch/$name" LD_PRELOAD="$shared" \
+        "$TACET" "$@" >out 2>err </dev/null ||
         complain "$name: the whole run ends with $?: $(head -1 err)"
     cd "$scratch/desk" || exit 1
     look_at "$name"

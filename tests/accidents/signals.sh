@@ -1,6 +1,7 @@
 #!/bin/sh
-# usage: sh signals.sh TACET   a run is interrupted while it waits for its study, prepares, screens, draws; it is killed
-# and started anew.
+# usage: sh signals.sh TACET
+# A run is interrupted while it waits for its study, prepares, screens, draws; it is killed and
+# started anew.
 . "$(dirname "$0")/help.sh"
 
 sed 's/speeds_rpm: .*/speeds_rpm: 1000:2000:1/; s/list: .*/longest: 12}/' small.yaml >long.yaml
@@ -8,8 +9,8 @@ mkdir fake
 printf '#!/bin/sh\necho started >>"%s/drawing"\nsleep 20\n' "$PWD" >fake/gnuplot
 chmod +x fake/gnuplot
 
-# Starts tacet ARGUMENTS with the usual reaction to signals, which a job of a shell without a terminal has not, and
-# waits for TEXT in FILE: words, or what the fake gnuplot writes.
+# Starts tacet ARGUMENTS with the usual reaction to signals, which a job of a shell without a
+# terminal has not, and waits for TEXT in FILE: words, or what the fake gnuplot writes.
 start() # TEXT FILE ARGUMENTS..
 {
     text=$1 file=$2
@@ -44,7 +45,8 @@ for signal in INT:130 TERM:143; do
     start screening words screen long.yaml -o result --drawings none
     kill -"$name" "$run"
     ends "$name at the start" "$code"
-    grep -q '^tacet: stopped .*; nothing was written$' words || complain "$name at the start: $(cat words)"
+    grep -q '^tacet: stopped .*; nothing was written$' words ||
+        complain "$name at the start: $(cat words)"
     no_rest "$name at the start" result
 done
 
@@ -94,11 +96,13 @@ PATH="$PWD/fake:$PATH" start started drawing screen small.yaml -o drawn
 kill -KILL "$run"
 ends "killed" 137
 ls drawn/*.tmp >/dev/null 2>&1 || complain "killed: this test was to leave a part"
-tacet screen small.yaml -o drawn --drawings none >out 2>words || complain "after the kill: ends with $?: $(cat words)"
+tacet screen small.yaml -o drawn --drawings none >out 2>words ||
+    complain "after the kill: ends with $?: $(cat words)"
 diff -r good drawn || complain "after the kill: files differ"
 start screening words screen long.yaml -o killed --drawings none
 kill -KILL "$run"
 wait "$run"
-tacet screen small.yaml -o killed --drawings none >out 2>words || complain "after the early kill: $(cat words)"
+tacet screen small.yaml -o killed --drawings none >out 2>words ||
+    complain "after the early kill: $(cat words)"
 diff -r good killed || complain "after the early kill: files differ"
 finish

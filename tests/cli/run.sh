@@ -2,8 +2,7 @@
 # usage: sh run.sh CASES TACET ROOT [JSON_PATHS]
 # Runs the commands of a case file in a scratch folder and compares.
 #   $ command      run by sh; `tacet` is TACET; the folder `studies` beside the cases' own is copied
-#                  in, patterns/ and
-#                  tests/cli/json are linked, `json-paths` is JSON_PATHS
+#                  in, patterns/ and tests/cli/json are linked, `json-paths` is JSON_PATHS
 #   = 2            its exit code (0 when not said)
 #   > text         its standard output, line by line; none: must be empty
 #   ! text         its standard error, line by line; none: must be empty
