@@ -16,6 +16,9 @@ TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **ou
 // Fills the cycle table and the all-fire reference levels, once, before any workspace is created;
 // the model is frozen afterwards and may be shared by threads.
 TACET_USE tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e);
+// From here on prepare looks at *stop between its steps; not 0: it ends with TACET_STOPPED, and the
+// model is as it was created, to be destroyed. NULL: it does not look.
+void tacet_model_watch(tacet_model *m, const volatile int *stop);
 void tacet_model_destroy(tacet_model *m);                             // accepts NULL
 const tacet_study *tacet_model_study(const tacet_model *m);           // borrowed
 const tacet_engine *tacet_model_engine(const tacet_model *m);         // owned by the model

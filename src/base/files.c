@@ -10,6 +10,7 @@
 static tacet_status cannot(const char *path, int reason, tacet_error *e)
 {
     char buffer[128];
+    if (reason == ENOMEM) return tacet_fail(e, TACET_NO_MEMORY, "no memory to read %s", path);
     const char *why = reason == EISDIR   ? "it is a folder"
                       : reason == ENOENT ? "there is no such file"
                       : reason == EACCES ? "reading it is not permitted"

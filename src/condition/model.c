@@ -239,6 +239,21 @@ failed:
     return status;
 }
 
+void tacet_model_watch(tacet_model *m, const volatile int *stop)
+{
+    m->stop = stop;
+}
+
+static bool stopped(const tacet_model *m)
+{
+    return m->stop && *m->stop;
+}
+
+static tacet_status asked_to_stop(tacet_error *e)
+{
+    return tacet_fail(e, TACET_STOPPED, "stopped while the model was prepared");
+}
+
 // All-fire levels at the study's demand at every screened speed; the worst of each band is its
 // reference.
 static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet_error *e)
@@ -250,6 +265,7 @@ static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet
         double speed = screen->speeds_rad_per_s[i];
         tacet_condition c = {.speed_rad_per_s = speed, .roll = m->all_fire};
         c.demand_Nm = tacet_model_demand(m, speed);
+        if (stopped(m)) return asked_to_stop(e);
         tacet_duty duty;
         tacet_solver_note note;
         tacet_band_level level[TACET_BANDS_MOST];
@@ -270,12 +286,14 @@ tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e)
         tacet_engine_prepare(m->engine, (1 - SPEED_MARGIN) * range[0],
                              (1 + SPEED_MARGIN) * range[1], m->study->engine.skip.longest_run, e);
     if (status != TACET_OK) return status;
+    if (stopped(m)) return asked_to_stop(e);
     tacet_workspace *w = NULL;
     status = workspace_build(m, &w);
     if (status != TACET_OK)
         return tacet_fail(e, status, "preparing the model: %s", tacet_status_text(status));
     status = dispersion_prepare(m, w, e);
     if (status == TACET_OK) status = prepare_references(m, w, e);
+    if (status == TACET_OK && stopped(m)) status = asked_to_stop(e);
     tacet_workspace_destroy(w);
     m->prepared = status == TACET_OK;
     return status;

@@ -149,6 +149,10 @@ tacet_status tacet_draw(tacet_folder *folder, const char *stem, const tacet_figu
                     e);
     if (s == TACET_OK) s = how->format->check(to, e);
     if (s == TACET_OK) return tacet_folder_commit(folder, e);
+    int reason = stream_reason(to); // gnuplot says nothing of a full disk
+    if (reason)
+        (void)tacet_fail(e, s, "cannot write %s/%s: %s", tacet_folder_path(folder), drawing,
+                         strerror(reason));
     tacet_folder_abort(folder);
     return s;
 }
