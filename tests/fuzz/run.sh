@@ -46,7 +46,7 @@ fuzz() {
     mkdir -p $build/corpus/"$target" $build/found/"$target"
     # shellcheck disable=SC2046 # one word a folder
     $build/tests/fuzz/fuzz_"$target" -seed=$seed -max_total_time="$mode" -max_len=$longest \
-        -timeout=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
+        -timeout=60 -report_slow_units=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
         $([ -f $build/"$target".dict ] && echo -dict=$build/"$target".dict) \
         -artifact_prefix=$build/found/"$target"/ \
         $build/corpus/"$target" $(seeds "$target") >$build/"$target".log 2>&1 || true
@@ -70,7 +70,7 @@ report() {
 if [ "$mode" = keep ]; then
     for target; do
         mkdir -p $here/corpus/"$target"
-        $build/tests/fuzz/fuzz_"$target" -merge=1 $here/corpus/"$target" $build/corpus/"$target"
+        $build/tests/fuzz/fuzz_"$target" -merge=1 -use_counters=0 -set_cover_merge=1 $here/corpus/"$target" $build/corpus/"$target"
     done
     exit
 fi
