@@ -70,7 +70,9 @@ report() {
 if [ "$mode" = keep ]; then
     for target; do
         mkdir -p $here/corpus/"$target"
-        $build/tests/fuzz/fuzz_"$target" -merge=1 -use_counters=0 -set_cover_merge=1 $here/corpus/"$target" $build/corpus/"$target"
+        # shellcheck disable=SC2046 # one word a folder
+        $build/tests/fuzz/fuzz_"$target" -merge=1 -use_counters=0 -set_cover_merge=1 \
+            $here/corpus/"$target" $build/corpus/"$target" $(seeds "$target")
     done
     exit
 fi
