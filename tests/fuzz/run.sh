@@ -44,7 +44,7 @@ fuzz() {
     local target=$1 longest=400 old
     case $target in study | model) longest=8000 ;; traces) longest=12000 ;; book) longest=2000 ;; esac
     mkdir -p $build/corpus/"$target" $build/found/"$target"
-    for old in $build/found/"$target"/*; do # findings that were mended since
+    for old in "$build/found/$target"/*; do # findings that were mended since
         [ ! -f "$old" ] || ! $build/tests/fuzz/fuzz_"$target" "$old" >/dev/null 2>&1 || rm "$old"
     done
     # shellcheck disable=SC2046 # one word a folder
