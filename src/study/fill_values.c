@@ -317,7 +317,8 @@ static bool read_parts(filler *f, const tacet_field *field, const tree_node *nod
     char point[SHOWN_TEXT], subject[SUBJECT_TEXT];
     const char *meant = list ? decimal_comma(node, false, point) : NULL;
     part *parts = tacet_arena_alloc(f->arena, n_parts * sizeof *parts);
-    for (size_t i = 0; parts && i < n_parts; i++) {
+    // no more is read than may be kept: each part of some bytes may stand for many values
+    for (size_t i = 0; parts && i < n_parts && total <= FILL_MOST_VALUES; i++) {
         size_t length = list ? fill_enter_item(f, i) : strlen(f->path);
         good = check_part(f, field, list ? node->child[i] : node, meant, &parts[i]) && good;
         fill_leave(f, length);

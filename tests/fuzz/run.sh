@@ -41,12 +41,15 @@ seeds() { # folders whose files a target starts from
     case $1 in study | model) ls -d tests/study/good tests/study/broken patterns tests/cli/studies ;; esac
 }
 fuzz() {
-    local target=$1 longest=400
+    local target=$1 longest=400 old
     case $target in study | model) longest=8000 ;; traces) longest=12000 ;; book) longest=2000 ;; esac
     mkdir -p $build/corpus/"$target" $build/found/"$target"
+    for old in "$build/found/$target"/*; do # findings that were mended since
+        [ ! -f "$old" ] || ! $build/tests/fuzz/fuzz_"$target" "$old" >/dev/null 2>&1 || rm "$old"
+    done
     # shellcheck disable=SC2046 # one word a folder
     $build/tests/fuzz/fuzz_"$target" -seed=$seed -max_total_time="$mode" -max_len=$longest \
-        -timeout=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
+        -timeout=60 -report_slow_units=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
         $([ -f $build/"$target".dict ] && echo -dict=$build/"$target".dict) \
         -artifact_prefix=$build/found/"$target"/ \
         $build/corpus/"$target" $(seeds "$target") >$build/"$target".log 2>&1 || true
@@ -70,7 +73,9 @@ report() {
 if [ "$mode" = keep ]; then
     for target; do
         mkdir -p $here/corpus/"$target"
-        $build/tests/fuzz/fuzz_"$target" -merge=1 $here/corpus/"$target" $build/corpus/"$target"
+        # shellcheck disable=SC2046 # one word a folder
+        $build/tests/fuzz/fuzz_"$target" -merge=1 -use_counters=0 -set_cover_merge=1 \
+            $here/corpus/"$target" $build/corpus/"$target" $(seeds "$target")
     done
     exit
 fi
