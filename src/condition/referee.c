@@ -28,10 +28,11 @@ static double interpolate(const double *y, size_t n, double at)
     double whole = floor(at), u = at - whole, sum = 0;
     long long first = (long long)whole - (POINTS / 2 - 1);
     double weight[POINTS];
+    const int middle = POINTS / 2 - 1;
     for (int i = 0; i < POINTS; i++) {
         double product = 1;
         for (int j = 0; j < POINTS; j++)
-            if (j != i) product *= (u + (POINTS / 2 - 1) - j) / (i - j);
+            if (j != i) product *= (u + middle - j) / (i - j);
         weight[i] = product;
     }
     for (int i = 0; i < POINTS; i++) {

@@ -12,7 +12,7 @@ static const char *const trapped[] = {"residual", "burnt", "air", "open", NULL};
 #define CYCLE(member)    .offset = offsetof(tacet_engine_def, cycle.member)
 #define SKIP(member)     .offset = offsetof(tacet_engine_def, skip.member)
 // A section whose members lie side by side in the struct: offsets from the first of them.
-#define WITHIN(type, first, member) .offset = offsetof(type, member) - offsetof(type, first)
+#define WITHIN(type, first, member) .offset = (offsetof(type, member) - offsetof(type, first))
 #define SPAN(type, first, last, last_type)                                                         \
     (offsetof(type, last) + sizeof(last_type) - offsetof(type, first))
 

@@ -182,7 +182,7 @@ static void names(canvas *c, const tacet_figure_orders *f, double high_px)
     double at[NAMES_MOST], wish[NAMES_MOST];
     const char *name[NAMES_MOST];
     char store[NAMES_MOST][96];
-    bool is_mode[NAMES_MOST];
+    bool is_mode[NAMES_MOST] = {false};
     size_t n = 0;
     for (size_t b = 0; b < f->n_bands && n < NAMES_MOST; b++) {
         if (f->band[b].low_hz >= c->y_high) continue;
@@ -206,11 +206,10 @@ static void names(canvas *c, const tacet_figure_orders *f, double high_px)
     for (size_t i = 0; i < n; i++) {
         canvas_line(c, c->right + 3, wish[i], c->right + 24, at[i],
                     (canvas_stroke){is_mode[i] ? INK : INK_FAINT, 1, is_mode[i]});
-        canvas_text(c, c->right + 30, at[i],
-                    (canvas_style){.size = is_mode[i] ? FONT_SMALL : FONT_TEXT,
-
-                                   .most_px = KEY_PX - 46},
-                    name[i]);
+        canvas_text(
+            c, c->right + 30, at[i],
+            (canvas_style){.size = is_mode[i] ? FONT_SMALL : FONT_TEXT, .most_px = KEY_PX - 46},
+            name[i]);
     }
 }
 
@@ -231,13 +230,14 @@ static void key(canvas *c, const tacet_figure_orders *f, double most, double y)
     snprintf(text, sizeof text, "%s rms, shown by area", f->unit);
     canvas_text(c, x, y + 22, style, text);
     double value = most > 0 ? round_below(most) : 0, at = x;
-    for (int i = 0; i < 3 && value > 0; i++, value /= 4) {
+    for (int i = 0; i < 3 && value > 0; i++) {
         char number[TACET_NUMBER_TEXT];
         double radius = RADIUS_PX * sqrt(value / most);
         tacet_number_format_short(value, 3, number);
         canvas_disc(c, at + radius, y + 50, radius, "#5b8fb9", PAPER);
         canvas_text(c, at + 2 * radius + 5, y + 50, style, number);
         at += 2 * radius + canvas_text_width(number, FONT_SMALL, false) + 22;
+        value /= 4;
     }
     bool judged = false;
     for (size_t b = 0; b < f->n_bands; b++)
