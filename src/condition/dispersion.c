@@ -176,7 +176,7 @@ static void integrate(integration *q, const probe *a, const probe *b, int halvin
 static void integrate_interval(integration *q, size_t k)
 {
     const double *f = &q->g->f_hz[k];
-    probe from, to;
+    probe from = {0}, to = {0};
     q->k = k;
     probe_at(q, f[0], &from);
     if (q->status != TACET_OK) return;

@@ -288,11 +288,14 @@ static tacet_status missing(const reader *r, bool of_fire, double load, double r
     bool fuel = r->en->def.cycle.load_by == TACET_LOAD_FUEL;
     char at[64] = "";
     if (isfinite(rpm)) tacet_text(at, sizeof at, ":rpm=%.6g", rpm);
-    return tacet_fail(r->e, TACET_BAD_INPUT,
-                      "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s or a shorter run",
-                      of_fire ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace,
-                      load_key(r), fuel ? load : load / 1e3, at, of_fire ? "after" : "run", run,
-                      next ? "fire" : "skip");
+    // with after=0 and a skip next it may be wanted as what goes before that skip
+    return tacet_fail(
+        r->e, TACET_BAD_INPUT, "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s%s",
+        of_fire ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace, load_key(r),
+        fuel ? load : load / 1e3, at, of_fire ? "after" : "run", run, next ? "fire" : "skip",
+        run == 0 && !next ? ", which also stands before every run of skips, whatever "
+                            "that fire came after"
+                          : " or a shorter run");
 }
 
 // A cycle that fires or skips as the `run`-th, with the cycle before it: the table's chain.

@@ -55,7 +55,7 @@ static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, 
 static tacet_status check_png(FILE *f, tacet_error *e)
 {
     char picture[2][PROBE_MOST];
-    size_t bytes[2];
+    size_t bytes[2] = {0, 0};
     if (!ends_with(f, "\0\0\0\0IEND\xae\x42\x60\x82", 12))
         return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot wrote no whole PNG drawing");
     for (int k = 0; k < 2; k++) {
