@@ -20,7 +20,8 @@ without()
 if [ "${1:-}" = --one ]; then # WORK FILE, in the project's root
     out=$2/$(echo "$3" | tr / _)
     # shellcheck disable=SC2086 # one word a flag
-    nice gcc -O2 -Wall -Wextra -fanalyzer $(without "$3") $flags -c -o /dev/null "$3" >"$out.gcc" 2>&1 ||
+    nice gcc -O2 -Wall -Wextra -fanalyzer $(without "$3") $flags -c -o /dev/null "$3" \
+        >"$out.gcc" 2>&1 ||
         echo "$3: error: gcc ended with $?" >>"$out.gcc"
     case $3 in
     src/*)

@@ -186,7 +186,7 @@ static void order_names(canvas *c, const tacet_figure_orders *f, bool *named)
 static void names(canvas *c, const tacet_figure_orders *f, double high_px)
 {
     double at[NAMES_MOST] = {0}, wish[NAMES_MOST] = {0};
-    const char *name[NAMES_MOST];
+    const char *name[NAMES_MOST] = {NULL};
     char store[NAMES_MOST][96];
     bool is_mode[NAMES_MOST] = {false};
     size_t n = 0;
