@@ -132,7 +132,7 @@ static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition
     unsigned revolutions = c->roll->revolutions;
     size_t n_lines = tacet_model_lines(m, revolutions);
     frozen_torque frozen;
-    tacet_solver_note note;
+    tacet_solver_note note = {.closure = NAN};
     tacet_periodic how = tacet_periodic_default();
     how.revolutions = revolutions;
     how.n_lines = n_lines;
