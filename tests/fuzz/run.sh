@@ -47,11 +47,7 @@ seeds() { # folders whose files a target starts from
 }
 fuzz() {
     local target=$1 longest=400
-    case $target in
-    study | model) longest=8000 ;;
-    traces) longest=12000 ;;
-    book) longest=2000 ;;
-    esac
+    case $target in study | model) longest=8000 ;; traces) longest=12000 ;; book) longest=2000 ;; esac
     mkdir -p $build/corpus/"$target" $build/found/"$target"
     # shellcheck disable=SC2046 # one word a folder
     $build/tests/fuzz/fuzz_"$target" -seed=$seed -max_total_time="$mode" -max_len=$longest \
