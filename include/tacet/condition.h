@@ -11,7 +11,8 @@
 
 typedef struct tacet_model tacet_model;         // shared, read-only
 typedef struct tacet_workspace tacet_workspace; // one a thread; memo slots live here
-// Assembles engine and train, modes, bands and limits; cheap. The study must outlive the model.
+// Assembles engine and train, modes, bands and limits; cheap. The study must outlive the model. e
+// has a place in the study where one key is to blame.
 TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e);
 // Fills the cycle table and the all-fire reference levels, once, before any workspace is created;
 // the model is frozen afterwards and may be shared by threads.

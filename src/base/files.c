@@ -61,7 +61,7 @@ tacet_status tacet_file_read(const char *path, size_t most, tacet_arena *a, char
     size_t used = 0;
     tacet_status status = read_all(from, name, most, &bytes, &used, e);
     if (!standard) fclose(from);
-    if (status) return status;
+    if (status || !bytes) return status;
     if (used > most) {
         bool whole = most >= MIB && most % MIB == 0;
         status = tacet_fail(e, TACET_OUTSIDE_WORLD,

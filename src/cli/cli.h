@@ -183,7 +183,7 @@ typedef struct {
     double last_s;
 } cli_progress;
 cli_progress cli_progress_start(void);
-void cli_progress_step(void *progress, size_t done, size_t of);
+void cli_progress_step(void *who, size_t done, size_t of);
 void cli_progress_end(cli_progress *p); // clears the line
 
 // ---- signals

@@ -25,6 +25,18 @@ static int read_study(const char *path, cli_session *s)
     return cli_exit_of(status);
 }
 
+// What the model refuses at a place in the study, as what the reader refuses there.
+static int refused(const char *path, const tacet_error *e)
+{
+    tacet_problems *one = tacet_problems_create();
+    if (!one) return cli_failed(TACET_NO_MEMORY, NULL);
+    tacet_problems_add(one, false, path, e->line, e->column, "%s", e->text);
+    cli_say_problems(one);
+    tacet_problems_destroy(one);
+    cli_say("%s: 1 error, nothing was done", path);
+    return cli_exit_of(e->status);
+}
+
 int cli_deepen(cli_session *s, cli_depth depth)
 {
     tacet_error e = {.text = ""};
@@ -39,6 +51,7 @@ int cli_deepen(cli_session *s, cli_depth depth)
         cli_say("%s; nothing was written", e.text);
         return CLI_OUTSIDE_WORLD;
     }
+    if (status != TACET_OK && e.line > 0) return refused(cli_study_name(s->study->path), &e);
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
 

@@ -195,6 +195,7 @@ static tacet_status read_file(reader *r, const char *path, bool fired)
     if (!angle) return tacet_fail(r->e, TACET_NO_MEMORY, "no memory for traces");
     status = check_angles(r, &csv, angle);
     if (status == TACET_OK) status = make_room(r, csv.columns);
+    if (!r->trace) return status;
     for (size_t i = 1; i < csv.columns && status == TACET_OK; i++) {
         trace *t = &r->trace[r->n++];
         *t = (trace){
@@ -289,17 +290,20 @@ static void put(tacet_engine *en, const trace *t, const trace *before, unsigned 
     x[HALF_PEAK] = fmax(late, cylinder_peak(t->pressure_Pa, (size_t)(up ? half : half + 180) + 1));
 }
 
-static tacet_status missing(const reader *r, bool fired, double load, double rpm, unsigned run,
+static tacet_status missing(const reader *r, bool of_fire, double load, double rpm, unsigned run,
                             int next)
 {
     bool fuel = r->en->def.cycle.load_by == TACET_LOAD_FUEL;
     char at[64] = "";
     if (isfinite(rpm)) tacet_text(at, sizeof at, ":rpm=%.6g", rpm);
-    return tacet_fail(r->e, TACET_BAD_INPUT,
-                      "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s or a shorter run",
-                      fired ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace,
-                      load_key(r), fuel ? load : load / 1e3, at, fired ? "after" : "run", run,
-                      next ? "fire" : "skip");
+    // with after=0 and a skip next it may be wanted as what goes before that skip
+    return tacet_fail(
+        r->e, TACET_BAD_INPUT, "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s%s",
+        of_fire ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace, load_key(r),
+        fuel ? load : load / 1e3, at, of_fire ? "after" : "run", run, next ? "fire" : "skip",
+        run == 0 && !next ? ", which also stands before every run of skips, whatever "
+                            "that fire came after"
+                          : " or a shorter run");
 }
 
 // A cycle that fires or skips as the `run`-th, with the cycle before it: the table's chain.

@@ -56,7 +56,7 @@ place node_place(const tree_node *node);
 
 // Where a path from the root lies in the file, as deep as the file goes. *whole: all of it is
 // there.
-place place_of_path(const tacet_tree *tree, const char *path, bool *whole, const tree_node **node);
+place place_of_path(const tacet_tree *tree, const char *path, bool *whole, const tree_node **out);
 
 // ---- words for messages
 #define SHOWN_TEXT 64

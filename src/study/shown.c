@@ -7,7 +7,7 @@ const char *shown_text(const char *text, char out[SHOWN_TEXT])
     size_t n = 0, most = SHOWN_TEXT - 6;
     out[n++] = '\'';
     for (; *text && n < most; text++)
-        out[n++] = (unsigned char)*text < 0x20 || *text == 0x7F ? ' ' : *text;
+        out[n++] = (char)((unsigned char)*text < 0x20 || *text == 0x7F ? ' ' : *text);
     if (*text) {
         while (n > 1 && ((unsigned char)out[n - 1] & 0xC0) == 0x80) // no half of a letter
             n--;

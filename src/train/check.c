@@ -36,18 +36,39 @@ static size_t find(const check *c, const char *name)
     return SIZE_MAX;
 }
 
+// "ring, hub, throw1, .."
+static const char *names(const check *c, char out[PATH])
+{
+    size_t used = 0;
+    out[0] = '\0';
+    for (size_t i = 0; i < c->n; i++) {
+        if (!c->name[i]) continue;
+        bool room = used + strlen(c->name[i]) + 8 < PATH;
+        tacet_text(out + used, PATH - used, "%s%s", used ? ", " : "", room ? c->name[i] : "..");
+        if (!room) break;
+        used += strlen(out + used);
+    }
+    return out;
+}
+
 // Index of the node, or SIZE_MAX with a problem said at `path`.
 static size_t resolve(const check *c, const char *name, const char *path)
 {
     if (!name) return SIZE_MAX;
     size_t i = find(c, name);
     if (i != SIZE_MAX) return i;
+    char list[PATH];
     const char *near = tacet_near_name(name, c->name, c->n);
     if (near)
         tacet_report(c->r, false, path, "'%.80s' is no node of the train; near is '%.80s'", name,
                      near);
+    else if (strcmp(name, tacet_train_default().flywheel) == 0)
+        tacet_report(c->r, false, path,
+                     "there is no node '%s'; write flywheel: and the node that it is, one of %s",
+                     name, names(c, list));
     else
-        tacet_report(c->r, false, path, "'%.80s' is no node of the train", name);
+        tacet_report(c->r, false, path, "'%.80s' is no node of the train; it has %s", name,
+                     names(c, list));
     return SIZE_MAX;
 }
 

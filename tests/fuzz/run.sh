@@ -1,5 +1,6 @@
 #!/bin/bash
-# usage: tests/fuzz/run.sh [SECONDS] [TARGET ..]   fuzzes each target for SECONDS (30), two at a time
+# usage: tests/fuzz/run.sh [SECONDS] [TARGET ..]
+#        fuzzes each target for SECONDS (30), two at a time
 #        tests/fuzz/run.sh keep [TARGET ..]        adds what the last runs reached anew to corpus/
 # Builds with clang in ./build-fuzz, where new inputs gather; only `keep` changes the tree. Prints
 # runs, coverage and findings; exit 1 on a finding, which stays in build-fuzz/found/TARGET/.
@@ -23,7 +24,9 @@ ninja -C $build --quiet fuzz-targets tacet
 
 # The keys of a study come from the program itself, the rest by hand.
 {
-    $build/tacet keys --csv | awk -F, 'NR > 1 { n = split($1, part, "."); sub(/\[\]/, "", part[n]); print part[n] }' | sort -u
+    $build/tacet keys --csv |
+        awk -F, 'NR > 1 { n = split($1, part, "."); sub(/\[\]/, "", part[n]); print part[n] }' |
+        sort -u
     printf '%s\n' ': ' '- ' '[]' '{}' '&a ' '*a' '!!' '"' "'" '|' '>' '<<: ' '---' 1e3 0:10:1 null \
         roll-torque link-torque: node-angle: throw1 flywheel .words: x..x
 } | sed 's/[\\"]/\\&/g; s/.*/"&"/' >$build/study.dict
@@ -38,7 +41,9 @@ printf '"%s"\n' pressure_kpa :manifold_kpa= :rpm= :after= :next=fire :next=skip 
 
 seeds() { # folders whose files a target starts from
     ls -d $here/corpus/"$1" $here/found/"$1" 2>/dev/null || true
-    case $1 in study | model) ls -d tests/study/good tests/study/broken patterns tests/cli/studies ;; esac
+    case $1 in
+    study | model) ls -d tests/study/good tests/study/broken patterns tests/cli/studies ;;
+    esac
 }
 fuzz() {
     local target=$1 longest=400 old
@@ -63,7 +68,8 @@ report() {
     for found in "$build/found/$1"/*; do
         [ -f "$found" ] || continue
         wrong=1
-        echo "FOUND by $1: $(grep -aE 'broken promise|runtime error|ERROR:|SUMMARY' "$log" | head -2)"
+        found=$(grep -aE 'broken promise|runtime error|ERROR:|SUMMARY' "$log" | head -2)
+        echo "FOUND by $1: $found"
         echo "  replay: $build/tests/fuzz/fuzz_$1 $found"
     done
     # a run that ended before its time without an input has its reason in the log
