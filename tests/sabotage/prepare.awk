@@ -94,6 +94,6 @@ BEGIN {
 
 END {
     finish()
-    if (!entries) fail("nothing to do")
+    if (!entries) fail(ENVIRON["ONLY"] == "" ? "an empty list" : "no error of that name")
     exit failed
 }
