@@ -207,7 +207,7 @@ static void test_cyclic_variation_of_a_rigid_engine(void **state)
     enum { N = 400 };
     demo d;
     tacet_row row;
-    char text[sizeof rigid];
+    char text[sizeof rigid + 16];
     strcpy(text, rigid);
     demo_replace(text, "cylinder_percent: 50, cyclic_percent: 0",
                  "cylinder_percent: 0, cyclic_percent: 20");
