@@ -34,5 +34,6 @@ gcovr "$build" --root . --filter src/ --csv | awk -F, '
     END { for (i = 1; i <= n; i++) if (order[i] != "in all") row(order[i]); row("in all") }'
 root=$PWD
 cd "$build"
-find . -path '*src_*.gcda' | LC_ALL=C sort | xargs -n 1 gcov -b -t 2>/dev/null |
+find . -name '*.gcda' \( -path '*src_*' -o -path './src/*' \) | LC_ALL=C sort |
+    xargs -n 1 gcov -b -t 2>/dev/null |
     awk -f "$root/tests/uncovered.awk" "$root/tests/uncovered" -

@@ -48,6 +48,7 @@ tacet_arena *tacet_arena_create(void);                 // NULL: no memory
 void tacet_arena_destroy(tacet_arena *a);              // accepts NULL
 void *tacet_arena_alloc(tacet_arena *a, size_t bytes); // zeroed, 64-byte aligned; NULL: no memory
 char *tacet_arena_text(tacet_arena *a, const char *text); // a copy
+bool tacet_arena_was_short(const tacet_arena *a);         // has an allocation from it ever failed?
 
 // ---- files ------------------------------------------------------------------------------------
 // A whole file of at most `most` bytes ("-": standard input) into the arena, a zero byte after it.

@@ -30,12 +30,18 @@ void tacet_candidates_destroy(tacet_candidate *c, size_t n); // the rolls; accep
 
 // ---- result of a screen -----------------------------------------------------------------------
 // Speeds at which the dispersed level of a band is over its limit, worst placement, at the study's
-// demand. Edges to 0.5 rpm or better. Open: the range runs on to where nothing is known, past the
-// end of the screened speeds or where the candidate cannot reach the demand.
+// demand. Edges to 0.5 rpm or better. Open: the range may run on, into where nothing is known.
+typedef enum {
+    TACET_OPEN_NOT,         // an edge
+    TACET_OPEN_SPEEDS,      // the end of the screened speeds
+    TACET_OPEN_UNREACHABLE, // the candidate cannot reach the demand there
+    TACET_OPEN_FAILED,      // there it could not be solved
+    TACET_OPEN_NO_REFERENCE // there all-fire gives no reference
+} tacet_open;
 typedef struct {
     size_t candidate, band;
     double low_rad_per_s, high_rad_per_s;
-    bool low_open, high_open;
+    tacet_open low_open, high_open;
     double worst_margin_db, worst_speed_rad_per_s, leading_order; // at the worst speed met
 } tacet_no_go;
 

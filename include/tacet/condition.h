@@ -11,11 +11,15 @@
 
 typedef struct tacet_model tacet_model;         // shared, read-only
 typedef struct tacet_workspace tacet_workspace; // one a thread; memo slots live here
-// Assembles engine and train, modes, bands and limits; cheap. The study must outlive the model.
+// Assembles engine and train, modes, bands and limits; cheap. The study must outlive the model. e
+// has a place in the study where one key is to blame.
 TACET_USE tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e);
 // Fills the cycle table and the all-fire reference levels, once, before any workspace is created;
 // the model is frozen afterwards and may be shared by threads.
 TACET_USE tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e);
+// From here on prepare looks at *stop between its steps; not 0: it ends with TACET_STOPPED, and the
+// model is as it was created, to be destroyed. NULL: it does not look.
+void tacet_model_watch(tacet_model *m, const volatile int *stop);
 void tacet_model_destroy(tacet_model *m);                             // accepts NULL
 const tacet_study *tacet_model_study(const tacet_model *m);           // borrowed
 const tacet_engine *tacet_model_engine(const tacet_model *m);         // owned by the model

@@ -113,7 +113,8 @@ void tacet_folder_abort(tacet_folder *f); // removes the .tmp; nothing open: not
 bool tacet_folder_wrote(const tacet_folder *f, const char *name); // by this run
 // Removes files of an earlier run that this one did not write, so that a folder never mixes two.
 TACET_USE tacet_status tacet_folder_tidy(tacet_folder *f, tacet_error *e);
-void tacet_folder_close(tacet_folder *f); // accepts NULL; aborts an open file
+void tacet_folder_close(tacet_folder *f); // accepts NULL; aborts an open file; a folder that it
+                                          // made and that holds nothing goes
 
 // ---- figures: plain data, all borrowed
 typedef enum { // of a cell of the map

@@ -52,6 +52,9 @@ TACET_USE tacet_status tacet_study_read_text(const char *text, size_t bytes, con
                                              tacet_problems *problems, tacet_study **out);
 void tacet_study_destroy(tacet_study *s);    // accepts NULL
 const tacet_section *tacet_study_keys(void); // the root of the one table
+// Place in the file of a key, "screen.highest_order", or of the nearest that holds it. False: the
+// study was not read from a text.
+bool tacet_study_place(const tacet_study *s, const char *path, int *line, int *column);
 
 // Every key with its value and where that came from, in table order, for `check`.
 typedef enum {

@@ -13,6 +13,7 @@ typedef struct block {
 
 struct tacet_arena {
     block *last;
+    bool was_short;
 };
 
 tacet_arena *tacet_arena_create(void)
@@ -47,12 +48,18 @@ static block *block_create(size_t bytes)
 
 void *tacet_arena_alloc(tacet_arena *a, size_t bytes)
 {
-    if (bytes > SIZE_MAX / 2) return NULL;
+    if (bytes > SIZE_MAX / 2) {
+        a->was_short = true;
+        return NULL;
+    }
     bytes = (bytes + ALIGNMENT - 1) / ALIGNMENT * ALIGNMENT;
     if (bytes == 0) bytes = ALIGNMENT;
     if (!a->last || a->last->size - a->last->used < bytes) {
         block *b = block_create(bytes);
-        if (!b) return NULL;
+        if (!b) {
+            a->was_short = true;
+            return NULL;
+        }
         b->before = a->last;
         a->last = b;
     }
@@ -66,4 +73,9 @@ char *tacet_arena_text(tacet_arena *a, const char *text)
     size_t bytes = strlen(text) + 1;
     char *copy = tacet_arena_alloc(a, bytes);
     return copy ? memcpy(copy, text, bytes) : NULL;
+}
+
+bool tacet_arena_was_short(const tacet_arena *a)
+{
+    return a->was_short;
 }

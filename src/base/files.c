@@ -10,6 +10,7 @@
 static tacet_status cannot(const char *path, int reason, tacet_error *e)
 {
     char buffer[128];
+    if (reason == ENOMEM) return tacet_fail(e, TACET_NO_MEMORY, "no memory to read %s", path);
     const char *why = reason == EISDIR   ? "it is a folder"
                       : reason == ENOENT ? "there is no such file"
                       : reason == EACCES ? "reading it is not permitted"
@@ -60,7 +61,7 @@ tacet_status tacet_file_read(const char *path, size_t most, tacet_arena *a, char
     size_t used = 0;
     tacet_status status = read_all(from, name, most, &bytes, &used, e);
     if (!standard) fclose(from);
-    if (status) return status;
+    if (status || !bytes) return status;
     if (used > most) {
         bool whole = most >= MIB && most % MIB == 0;
         status = tacet_fail(e, TACET_OUTSIDE_WORLD,

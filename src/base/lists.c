@@ -62,7 +62,7 @@ static tacet_status put_range(list *l, const char *at, const double r[3])
                       "first value to the second");
     size_t count = steps < (double)l->most ? (size_t)floor(steps + STEP_SLACK) + 1 : l->most + 1;
     for (size_t i = 0; i < count; i++) {
-        bool last = fabs((double)i - steps) < STEP_SLACK;
+        bool last = (double)i > steps - STEP_SLACK; // the same slack as in the count
         tacet_status status = put(l, at, last ? to : from + (double)i * step);
         if (status) return status;
     }

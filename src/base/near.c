@@ -7,7 +7,8 @@
 
 static char folded(char c)
 {
-    return c == '-' || c == ' ' ? '_' : (char)tolower((unsigned char)c);
+    if (c == '-' || c == ' ') return '_';
+    return (char)tolower((unsigned char)c);
 }
 
 static unsigned least(unsigned a, unsigned b)

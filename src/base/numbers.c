@@ -78,27 +78,27 @@ static void tidy_power(char *text)
 {
     char *e = strchr(text, 'e');
     if (!e) return;
-    int power = atoi(e + 1);
+    long power = strtol(e + 1, NULL, 10);
     *e = '\0';
     drop_zeros(text);
     size_t n = strlen(text);
-    snprintf(text + n, TACET_NUMBER_TEXT - n, "e%d", power);
+    snprintf(text + n, TACET_NUMBER_TEXT - n, "e%ld", power);
 }
 
-const char *tacet_number_format_short(double value, int significant, char out[TACET_NUMBER_TEXT])
+const char *tacet_number_format_short(double value, int digits, char out[TACET_NUMBER_TEXT])
 {
     if (!isfinite(value)) return strcpy(out, "null");
     if (value == 0) return strcpy(out, "0");
-    if (significant < 1) significant = 1;
-    if (significant > 17) significant = 17;
+    if (digits < 1) digits = 1;
+    if (digits > 17) digits = 17;
     double size = fabs(value);
     if (size >= 1e-3 && size < 1e7) {
-        int decimals = significant - 1 - (int)floor(log10(size));
+        int decimals = digits - 1 - (int)floor(log10(size));
         tacet_text(out, TACET_NUMBER_TEXT, "%.*f", decimals > 0 ? decimals : 0, value);
         drop_zeros(out);
         return out;
     }
-    tacet_text(out, TACET_NUMBER_TEXT, "%.*e", significant - 1, value);
+    tacet_text(out, TACET_NUMBER_TEXT, "%.*e", digits - 1, value);
     tidy_power(out);
     return out;
 }

@@ -1,5 +1,6 @@
 #include "tacet/base.h"
 #include "text.h"
+#include <string.h>
 
 const char *tacet_status_text(tacet_status status)
 {
@@ -8,13 +9,31 @@ const char *tacet_status_text(tacet_status status)
     return (unsigned)status < sizeof text / sizeof *text ? text[status] : "unknown status";
 }
 
+#define LONGEST 8192 // bytes of a message with the longest of paths in it
+#define GAP     " .. "
+
+// A text that is too long loses its middle: a reason stands at the end.
+static void keep_ends(char *out, size_t bytes, const char *text)
+{
+    size_t length = strlen(text), head = (bytes - sizeof GAP) / 2, tail = bytes - sizeof GAP - head;
+    if (length < bytes) {
+        memcpy(out, text, length + 1);
+        return;
+    }
+    memcpy(out, text, head);
+    memcpy(out + head, GAP, sizeof GAP - 1);
+    memcpy(out + head + sizeof GAP - 1, text + length - tail, tail + 1);
+}
+
 tacet_status tacet_fail(tacet_error *e, tacet_status status, const char *format, ...)
 {
     if (e) {
         va_list args;
         va_start(args, format);
+        char text[LONGEST];
+        text_format(text, sizeof text, format, args);
         *e = (tacet_error){.status = status};
-        text_format(e->text, sizeof e->text, format, args);
+        keep_ends(e->text, sizeof e->text, text);
         va_end(args);
     }
     return status;

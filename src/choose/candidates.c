@@ -183,6 +183,7 @@ static tacet_status add_words(builder *b, const char *text)
     tacet_words w;
     tacet_status status =
         tacet_words_find(text, b->study->folder, b->study->path, b->arena, b->problems, &w);
+    if (status == TACET_NO_MEMORY) return no_memory(b->e);
     if (status != TACET_OK)
         return tacet_fail(b->e, status, "screen.patterns: '%s' cannot be used", text);
     for (size_t i = 0; i < w.n && status == TACET_OK; i++) {

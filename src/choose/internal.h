@@ -12,10 +12,11 @@ TACET_USE tacet_status speeds_add(speeds *s, double speed, tacet_arena *a);
 void speeds_sort(speeds *s); // rising, each once (positive speeds)
 
 // What one speed says of one candidate: per band the margin of the worst placement, dB; INFINITY:
-// no line, NAN: nothing known.
+// no line, NAN: nothing known, and why.
 typedef struct {
     double speed;
     double margin_db[TACET_BANDS_MOST], leading_order[TACET_BANDS_MOST];
+    tacet_why why[TACET_BANDS_MOST];
 } sample;
 typedef struct {
     sample *at;

@@ -85,7 +85,10 @@ void sample_take(sample *s, const tacet_row *row)
 {
     for (size_t b = 0; b < row->n_bands; b++) {
         const tacet_band_result *band = &row->bands[b];
-        if (band->verdict == TACET_NO_VERDICT) continue;
+        if (band->verdict == TACET_NO_VERDICT) {
+            s->why[b] = band->why;
+            continue;
+        }
         double margin_db = isnan(band->margin_db) ? INFINITY : band->margin_db;
         if (margin_db >= s->margin_db[b]) continue; // false for a NAN: nothing known yet
         s->margin_db[b] = margin_db;

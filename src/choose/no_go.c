@@ -118,9 +118,23 @@ static double next_look(const no_go_search *q, const sample *a, const sample *b,
     return fmin(fmax(zero + aside, a->speed + narrow / 4), b->speed - narrow / 4);
 }
 
+static tacet_open opening(const no_go_search *q, const sample *beyond)
+{
+    if (!isnan(margin(q, beyond))) return TACET_OPEN_NOT;
+    switch (beyond->why[q->band]) {
+    case TACET_WHY_UNREACHABLE:
+        return TACET_OPEN_UNREACHABLE;
+    case TACET_WHY_NO_REFERENCE:
+        return TACET_OPEN_NO_REFERENCE;
+    default:
+        return TACET_OPEN_FAILED;
+    }
+}
+
 // The speed between two samples, one over and the other not, at which that changes: a break itself
-// where it is one. `open`: on the other side nothing is known.
-static tacet_status find_edge(const no_go_search *q, sample a, sample b, double *speed, bool *open)
+// where it is one. `open`: whether on the other side nothing is known, and why.
+static tacet_status find_edge(const no_go_search *q, sample a, sample b, double *speed,
+                              tacet_open *open)
 {
     // a hair wider than the step aside on both sides, so that a break is not searched for
     const double narrow = fmax(EDGE_RPM, 2 * STEP_ASIDE_RPM) * 1.001 * RAD_PER_S_OF_RPM;
@@ -131,7 +145,7 @@ static tacet_status find_edge(const no_go_search *q, sample a, sample b, double 
         if (status != TACET_OK) return status;
         *(is_over(q, &x) == over ? &a : &b) = x;
     }
-    *open = isnan(margin(q, over ? &b : &a));
+    *open = opening(q, over ? &b : &a);
     *speed = break_between(q, a.speed, b.speed);
     if (isnan(*speed)) *speed = (a.speed + b.speed) / 2;
     return TACET_OK;
@@ -156,8 +170,8 @@ static tacet_status find_range(const no_go_search *q, const samples *known, size
         take_worst(q, &known->at[last], range);
     range->low_rad_per_s = known->at[first].speed;
     range->high_rad_per_s = known->at[last - 1].speed;
-    range->low_open = first == 0;
-    range->high_open = last == known->n;
+    range->low_open = first == 0 ? TACET_OPEN_SPEEDS : TACET_OPEN_NOT;
+    range->high_open = last == known->n ? TACET_OPEN_SPEEDS : TACET_OPEN_NOT;
     if (first > 0)
         status = find_edge(q, known->at[first - 1], known->at[first], &range->low_rad_per_s,
                            &range->low_open);

@@ -60,7 +60,7 @@ static int unknown_option(const cli_command *c, const char *word)
 
 static int unknown_letter(const cli_command *c, int letter)
 {
-    char word[3] = {'-', letter > ' ' && letter < 127 ? (char)letter : '?', '\0'};
+    char word[3] = {'-', (char)(letter > ' ' && letter < 127 ? letter : '?'), '\0'};
     return unknown_option(c, word);
 }
 
@@ -181,10 +181,17 @@ const char *cli_value(const cli_call *call, const char *option)
     return call->value[i] ? call->value[i] : call->command->options[i].fallback;
 }
 
+// Of an option that has a value always, its default at least.
+static const char *text_of(const cli_call *call, const char *option)
+{
+    const char *text = cli_value(call, option);
+    return text ? text : "";
+}
+
 int cli_number(const cli_call *call, const char *option, double low, double high, const char *unit,
                double *out)
 {
-    const char *text = cli_value(call, option);
+    const char *text = text_of(call, option);
     double value;
     char a[TACET_NUMBER_TEXT], b[TACET_NUMBER_TEXT];
     if (tacet_number_parse(text, &value) && value >= low && value <= high) {
@@ -199,7 +206,7 @@ int cli_number(const cli_call *call, const char *option, double low, double high
 
 int cli_choice(const cli_call *call, const char *option, const char *const *choices, int *out)
 {
-    const char *text = cli_value(call, option);
+    const char *text = text_of(call, option);
     char all[256] = "";
     size_t n = 0;
     for (; choices[n]; n++) {

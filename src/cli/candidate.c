@@ -39,7 +39,7 @@ static int not_found(const char *name, const cli_candidate *c)
 {
     const char *names[256];
     size_t n = 0;
-    for (size_t i = 0; i < c->n && n < 256; i++)
+    for (size_t i = 0; c->all && i < c->n && n < 256; i++)
         names[n++] = c->all[i].name;
     const char *near = tacet_near_name(name, names, n);
     if (near) return cli_wrong("--pattern '%s': did you mean '%s'?", name, near);
@@ -80,7 +80,7 @@ int cli_candidate_of(const cli_call *call, const cli_session *s, cli_candidate *
                          TACET_PATTERN_LONGEST);
     else if ((code = create_one(s, density, NULL, out)) == CLI_DONE)
         out->it = &out->all[0];
-    if (code != CLI_DONE) return code;
+    if (code != CLI_DONE || !out->it) return code;
     if (out->it->refused)
         return cli_wrong("%s cannot run on this engine: %s", out->it->name, out->it->refused);
     return CLI_DONE;

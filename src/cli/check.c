@@ -107,8 +107,7 @@ static int run(const cli_call *call)
     if (code == CLI_DONE) code = write_out(call, &s, &m);
     if (code == CLI_DONE && cli_given(call, "strict") && tacet_problems_warnings(s.problems) > 0)
         code = CLI_ANSWER_IS_NO;
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

@@ -11,7 +11,7 @@ typedef struct {
     unsigned *revolutions; // distinct repeats of the candidates, rising
     size_t n_revolutions, n_candidates, n_refused;
 } check_model;
-int check_gather(const cli_session *s, check_model *out);
+int check_gather(const cli_session *s, check_model *m);
 void check_write_text(const check_model *m);
 void check_put_json(tacet_json *j, const check_model *m); // members of an open object
 

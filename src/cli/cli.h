@@ -106,6 +106,7 @@ const char *cli_fraction(unsigned above, unsigned below, char out[24]);
 
 // Cells of a table, row by row; its memory is in the arena. `wrong`: no memory, or too many cells.
 typedef struct {
+    tacet_arena *arena;
     tacet_table table;
     tacet_table_cell *cells;
     size_t n, most;
@@ -118,8 +119,10 @@ void cli_put_text(cli_rows *r, const char *text);
 void cli_accent(cli_rows *r); // marks the cell just put
 // The finished table; NULL: wrong.
 const tacet_table *cli_rows_end(cli_rows *r);
-// Text in the arena; "" when there is no memory.
+// Text in the arena; "" when there is no memory, which cli_arena_end then says.
 const char *cli_text(tacet_arena *a, const char *format, ...) TACET_PRINTF(2, 3);
+// Destroys the arena. The code, or that of a lack of memory if one went unsaid.
+int cli_arena_end(tacet_arena *a, int code);
 
 // ---- a study at work
 typedef enum { CLI_READ, CLI_ASSEMBLED, CLI_PREPARED } cli_depth;
@@ -131,10 +134,11 @@ typedef struct {
     tacet_arena *arena;    // for what the command makes
 } cli_session;
 // Reads a study ("-": standard input), says its problems and goes on to the depth wanted.
-// CLI_DONE, or another exit code with the reason said; cli_close either way.
+// CLI_DONE, or another exit code with the reason said; cli_close either way,
+// whose result is the command's: the code, or that of a lack of memory.
 int cli_open(const char *path, cli_depth depth, cli_session *s);
 int cli_deepen(cli_session *s, cli_depth depth); // from CLI_READ on
-void cli_close(cli_session *s);
+int cli_close(cli_session *s, int code);
 const char *cli_title(const cli_session *s);
 const char *cli_study_name(const char *path); // "-" reads as "standard input"
 
@@ -179,7 +183,7 @@ typedef struct {
     double last_s;
 } cli_progress;
 cli_progress cli_progress_start(void);
-void cli_progress_step(void *progress, size_t done, size_t of);
+void cli_progress_step(void *who, size_t done, size_t of);
 void cli_progress_end(cli_progress *p); // clears the line
 
 // ---- signals

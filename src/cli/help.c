@@ -28,11 +28,11 @@ void cli_option_head(const cli_option *o, size_t size, char *out)
              o->argument ? o->argument : "");
 }
 
-static void write_option(const cli_option *o, FILE *to)
+static void write_option(const cli_option *o, int width, FILE *to)
 {
     char head[80];
     cli_option_head(o, sizeof head, head);
-    fprintf(to, "  %-24s %s", head, o->doc);
+    fprintf(to, "  %-*s %s", width, head, o->doc);
     if (o->fallback) fprintf(to, " (default %s)", o->fallback);
     fputc('\n', to);
 }
@@ -45,9 +45,15 @@ void cli_help(const cli_command *c, FILE *to)
         fprintf(to, "  %s\n      %s\n", e->line, e->what);
     fprintf(to, "\n%s\nUsage: tacet %s%s%s [options]\n", c->about, c->name, *c->operands ? " " : "",
             c->operands);
+    int width = 24;
+    for (const cli_option *o = c->options; o->name; o++) {
+        char head[80];
+        cli_option_head(o, sizeof head, head);
+        if ((int)strlen(head) > width) width = (int)strlen(head);
+    }
     for (const cli_option *o = c->options; o->name; o++)
-        write_option(o, to);
-    write_option(&help, to);
+        write_option(o, width, to);
+    write_option(&help, width, to);
 }
 
 static int run(const cli_call *call)

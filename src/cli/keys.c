@@ -126,8 +126,7 @@ static int run(const cli_call *call)
 {
     tacet_arena *a = tacet_arena_create();
     int code = a ? list(call, a) : cli_failed(TACET_NO_MEMORY, NULL);
-    tacet_arena_destroy(a);
-    return code;
+    return cli_arena_end(a, code);
 }
 
 static const cli_example examples[] = {

@@ -82,6 +82,7 @@ static int close_output(int code)
 int main(int argc, char **argv)
 {
     fill_closed_streams();
+    setvbuf(stderr, NULL, _IOLBF, BUFSIZ); // a line at a time: other programs may write there too
     signal(SIGPIPE, SIG_IGN); // writing tells, and results under -o are written all the same
     signal(SIGXFSZ, SIG_IGN); // a file that may not grow is an error of the write
     gsl_set_error_handler_off();

@@ -26,8 +26,7 @@ static int run(const cli_call *call)
         return cli_wrong("--frequencies needs --response NODE; modes have their own frequencies");
     int code = cli_open(call->operand[0], CLI_ASSEMBLED, &s);
     if (code == CLI_DONE) code = node ? cli_response(call, &s, node) : solve(call, &s);
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

@@ -53,7 +53,7 @@ const char *cli_fraction(unsigned above, unsigned below, char out[24])
 cli_rows cli_rows_start(tacet_arena *a, const char *name, const char *heading,
                         const tacet_table_column *columns, size_t n_columns, size_t most_rows)
 {
-    cli_rows r = {.most = most_rows * n_columns};
+    cli_rows r = {.arena = a, .most = most_rows * n_columns};
     r.cells = tacet_arena_alloc(a, (r.most + 1) * sizeof *r.cells);
     r.wrong = !r.cells;
     r.table = (tacet_table){.name = name,
@@ -90,7 +90,7 @@ void cli_accent(cli_rows *r)
 
 const tacet_table *cli_rows_end(cli_rows *r)
 {
-    if (r->wrong || r->n % r->table.n_columns != 0) return NULL;
+    if (r->wrong || tacet_arena_was_short(r->arena) || r->n % r->table.n_columns != 0) return NULL;
     r->table.n_rows = r->n / r->table.n_columns;
     return &r->table;
 }
@@ -107,4 +107,11 @@ const char *cli_text(tacet_arena *a, const char *format, ...)
     vsnprintf(text, (size_t)length + 1, format, args);
     va_end(args);
     return text;
+}
+
+int cli_arena_end(tacet_arena *a, int code)
+{
+    bool unsaid = a && tacet_arena_was_short(a) && (code == CLI_DONE || code == CLI_ANSWER_IS_NO);
+    tacet_arena_destroy(a);
+    return unsaid ? cli_failed(TACET_NO_MEMORY, NULL) : code;
 }

@@ -40,8 +40,7 @@ static int run(const cli_call *call)
     if (cli_given(call, "cylinders")) {
         tacet_arena *a = tacet_arena_create();
         int code = a ? patterns_of_text(call, text, a) : cli_failed(TACET_NO_MEMORY, NULL);
-        tacet_arena_destroy(a);
-        return code;
+        return cli_arena_end(a, code);
     }
     if (is_pattern(text) || cli_given(call, "maker"))
         return cli_wrong("patterns of '%s' need --cylinders N, the engine's number of cylinders",
@@ -49,8 +48,7 @@ static int run(const cli_call *call)
     cli_session s;
     int code = cli_open(text, CLI_ASSEMBLED, &s);
     if (code == CLI_DONE) code = of_study(call, &s);
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

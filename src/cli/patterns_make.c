@@ -124,7 +124,7 @@ int patterns_of_text(const cli_call *call, const char *text, tacet_arena *a)
 {
     static const char *const strokes_allowed[] = {"4", "2", NULL};
     tacet_maker_def d = tacet_maker_default();
-    tacet_words w;
+    tacet_words w = {.n = 0};
     unsigned seed = 1;
     int two = 0;
     int code = count_option(call, "cylinders", 1, 64, &d.engine_cylinders);

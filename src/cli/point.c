@@ -54,6 +54,7 @@ static int solve(const cli_call *call, const cli_session *s)
     if (code == CLI_DONE && cli_given(call, "referee") && p.row.outcome == TACET_SOLVED) {
         p.refereed = true;
         p.referee_status = tacet_solve_referee(s->model, &p.condition, s->work, &p.agreement);
+        if (p.referee_status == TACET_NO_MEMORY) code = cli_failed(TACET_NO_MEMORY, NULL);
     }
     if (code == CLI_DONE) code = write_out(&p);
     if (code == CLI_DONE && cli_given(call, "output"))
@@ -68,8 +69,7 @@ static int run(const cli_call *call)
     cli_session s;
     int code = cli_open(call->operand[0], CLI_PREPARED, &s);
     if (code == CLI_DONE) code = solve(call, &s);
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

@@ -75,6 +75,7 @@ static int write_file(tacet_folder *f, const point *p, const char *name)
         if (!t) return cli_failed(TACET_NO_MEMORY, NULL);
         tacet_table_write(t, tacet_writer_find("csv"), NULL, to);
     }
+    if (tacet_arena_was_short(p->s->arena)) return cli_failed(TACET_NO_MEMORY, NULL);
     status = tacet_folder_commit(f, &e);
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
@@ -110,6 +111,13 @@ static int draw(point *p, tacet_folder *f)
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
 
+static int tidy(tacet_folder *f)
+{
+    tacet_error e = {.text = ""};
+    tacet_status status = tacet_folder_tidy(f, &e);
+    return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
+}
+
 int point_save(point *p, const char *path)
 {
     tacet_folder *f;
@@ -120,6 +128,7 @@ int point_save(point *p, const char *path)
     bool data = code == CLI_DONE;
     if (data) code = draw(p, f);
     bool drawn = tacet_folder_wrote(f, "bars.svg") || tacet_folder_wrote(f, "bars.png");
+    if (data) code = cli_worse(code, tidy(f)); // drawings of another condition
     tacet_folder_close(f);
     if (data)
         cli_say("look at %s/%slines.csv for every line", path,

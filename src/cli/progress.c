@@ -35,5 +35,6 @@ void cli_progress_step(void *who, size_t done, size_t of)
 void cli_progress_end(cli_progress *p)
 {
     if (p->shown) fputs("\r\033[K", stderr);
+    fflush(stderr);
     p->shown = false;
 }

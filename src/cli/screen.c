@@ -1,6 +1,5 @@
 // tacet screen: the main job.
 #include "cli/cli.h"
-#include <unistd.h>
 
 static const char *const formats[] = {"svg", "png", "none", NULL};
 
@@ -93,9 +92,9 @@ static int run(const cli_call *call)
     tacet_folder *folder = NULL;
     int code = cli_choice(call, "drawings", formats, &format);
     if (code != CLI_DONE) return code;
-    cli_catch_signals();
     cli_folder_name(call, "screen", sizeof path, path);
     code = cli_open(call->operand[0], CLI_READ, &s);
+    cli_catch_signals(); // a study that does not come may be waited for no longer
     if (code == CLI_DONE && *path) code = cli_folder(path, "point.json", &folder);
     if (code == CLI_DONE) {
         double rpm[2];
@@ -105,11 +104,8 @@ static int run(const cli_call *call)
         code = cli_deepen(&s, CLI_PREPARED);
     }
     if (code == CLI_DONE) code = screen_study(call, &s, folder);
-    bool made = folder != NULL;
     tacet_folder_close(folder);
-    if (made) rmdir(path); // only goes when nothing was written
-    cli_close(&s);
-    return code;
+    return cli_close(&s, code);
 }
 
 static const cli_example examples[] = {

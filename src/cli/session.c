@@ -19,10 +19,22 @@ static int read_study(const char *path, cli_session *s)
     cli_say_problems(s->problems);
     if (status == TACET_OK) return CLI_DONE;
     size_t n = tacet_problems_errors(s->problems);
-    if (n == 0) return cli_failed(status, NULL);
+    if (n == 0 || status == TACET_NO_MEMORY) return cli_failed(status, NULL);
     if (status == TACET_BAD_INPUT)
         cli_say("%s: %zu error%s, nothing was done", cli_study_name(path), n, n == 1 ? "" : "s");
     return cli_exit_of(status);
+}
+
+// What the model refuses at a place in the study, as what the reader refuses there.
+static int refused(const char *path, const tacet_error *e)
+{
+    tacet_problems *one = tacet_problems_create();
+    if (!one) return cli_failed(TACET_NO_MEMORY, NULL);
+    tacet_problems_add(one, false, path, e->line, e->column, "%s", e->text);
+    cli_say_problems(one);
+    tacet_problems_destroy(one);
+    cli_say("%s: 1 error, nothing was done", path);
+    return cli_exit_of(e->status);
 }
 
 int cli_deepen(cli_session *s, cli_depth depth)
@@ -31,9 +43,15 @@ int cli_deepen(cli_session *s, cli_depth depth)
     tacet_status status = TACET_OK;
     if (depth >= CLI_ASSEMBLED && !s->model) status = tacet_model_create(s->study, &s->model, &e);
     if (status == TACET_OK && depth == CLI_PREPARED) {
+        tacet_model_watch(s->model, cli_stop());
         status = tacet_model_prepare(s->model, &e);
         if (status == TACET_OK) status = tacet_workspace_create(s->model, &s->work);
     }
+    if (status == TACET_STOPPED) { // the signal is raised again
+        cli_say("%s; nothing was written", e.text);
+        return CLI_OUTSIDE_WORLD;
+    }
+    if (status != TACET_OK && e.line > 0) return refused(cli_study_name(s->study->path), &e);
     return status == TACET_OK ? CLI_DONE : cli_failed(status, &e);
 }
 
@@ -45,13 +63,13 @@ int cli_open(const char *path, cli_depth depth, cli_session *s)
     return code == CLI_DONE ? cli_deepen(s, depth) : code;
 }
 
-void cli_close(cli_session *s)
+int cli_close(cli_session *s, int code)
 {
     tacet_workspace_destroy(s->work);
     tacet_model_destroy(s->model);
     tacet_study_destroy(s->study);
-    tacet_arena_destroy(s->arena);
     tacet_problems_destroy(s->problems);
+    return cli_arena_end(s->arena, code);
 }
 
 int cli_folder(const char *path, const char *foreign, tacet_folder **out)

@@ -130,7 +130,7 @@ static void probe_once(integration *q, probe *p, double f_hz)
 static void probe_at(integration *q, double f_hz, probe *p)
 {
     if (q->status != TACET_OK) return;
-    p->f_hz = f_hz;
+    *p = (probe){.f_hz = f_hz};
     probe_once(q, p, f_hz);
     // exactly on an undamped mode
     if (q->status == TACET_NOT_FINITE) probe_once(q, p, f_hz * (1 + BESIDE_MODE));
@@ -181,14 +181,16 @@ static void integrate(integration *q, const probe *a, const probe *b, int halvin
 static void integrate_interval(integration *q, size_t k)
 {
     const double *f = &q->g->f_hz[k];
-    probe from, to;
+    probe from = {0}, to = {0};
     q->k = k;
     probe_at(q, f[0], &from);
+    if (q->status != TACET_OK) return;
     for (size_t mode = 0; mode < tacet_train_nodes(q->m->train); mode++) {
         double hz = q->m->mode_hz[mode];
         if (!(hz > from.f_hz && hz < f[1])) continue;
         probe_at(q, hz, &to);
-        if (q->status == TACET_OK) integrate(q, &from, &to, CYCLIC_HALVINGS);
+        if (q->status != TACET_OK) return;
+        integrate(q, &from, &to, CYCLIC_HALVINGS);
         from = to;
     }
     probe_at(q, f[1], &to);

@@ -44,8 +44,9 @@ struct tacet_model {
     // then cancels to rounding, aliasing included
     tacet_transform *even[EVEN_CYCLES];
     bool prepared;
-    double *reference;   // [n_bands] all-fire at its worst screened speed; NAN: none
-    cyclic_grid *cyclic; // [n_bands]
+    const volatile int *stop; // NULL: nobody may ask
+    double *reference;        // [n_bands] all-fire at its worst screened speed; NAN: none
+    cyclic_grid *cyclic;      // [n_bands]
 };
 
 typedef struct { // one-slot memo of a speed and demand

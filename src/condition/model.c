@@ -50,17 +50,49 @@ static tacet_status assemble_throws(tacet_model *m, const tacet_train_def *train
     return TACET_OK;
 }
 
+// The failure in e, as at the place of a key in the study.
+static tacet_status blame(const tacet_model *m, const char *path, tacet_status status,
+                          tacet_error *e)
+{
+    int line, column;
+    if (e && tacet_study_place(m->study, path, &line, &column)) {
+        e->line = line;
+        e->column = column;
+    }
+    return status;
+}
+
+// Does a way that does not turn back at link `came` lead from a node to another? `gear` gets the
+// gear link on it that is nearest to the end.
+static bool leads(const tacet_train *t, size_t from, size_t came, size_t to, size_t *gear)
+{
+    if (from == to) return true;
+    for (size_t i = 0; i < tacet_train_links(t); i++) {
+        tacet_link_info l = tacet_train_link_info(t, i);
+        if (i == came || (l.from != from && l.to != from)) continue;
+        if (!leads(t, l.from == from ? l.to : l.from, i, to, gear)) continue;
+        if (*gear == SIZE_MAX && l.gear_ratio != 1) *gear = i;
+        return true;
+    }
+    return false;
+}
+
 // Torque hangs on the crank's angle: no gear between a throw and the flywheel.
 static tacet_status check_throws(const tacet_model *m, tacet_error *e)
 {
     for (size_t t = 0; t < m->n_throws; t++) {
         double ratio = tacet_train_node_ratio(m->train, m->throw_node[t]);
         if (fabs(ratio - 1) <= 1e-12) continue;
-        return tacet_fail(e, TACET_BAD_INPUT,
-                          "cylinders drive node '%s', which turns at %.6g times the speed of the "
-                          "flywheel '%s'; throws turn with it, without a gear in between",
-                          tacet_train_node_name(m->train, m->throw_node[t]), ratio,
-                          tacet_train_node_name(m->train, tacet_train_flywheel(m->train)));
+        size_t gear = SIZE_MAX;
+        char path[64];
+        (void)leads(m->train, m->throw_node[t], SIZE_MAX, tacet_train_flywheel(m->train), &gear);
+        tacet_text(path, sizeof path, "train.links[%zu].gear_ratio", gear);
+        (void)tacet_fail(e, TACET_BAD_INPUT,
+                         "cylinders drive node '%s', which turns at %.6g times the speed of the "
+                         "flywheel '%s'; throws turn with it, without a gear in between",
+                         tacet_train_node_name(m->train, m->throw_node[t]), ratio,
+                         tacet_train_node_name(m->train, tacet_train_flywheel(m->train)));
+        return blame(m, path, TACET_BAD_INPUT, e);
     }
     return TACET_OK;
 }
@@ -119,17 +151,23 @@ static tacet_status cover_bands(tacet_model *m, double lowest_rad_per_s, double 
         double order = ceil(hz / tacet_order_hz(1, lowest_rad_per_s) * (1 - 1e-12));
         m->highest_band_hz = fmax(m->highest_band_hz, hz);
         *least = fmax(*least, order);
-        if (order > stated) // false where none is stated
-            return tacet_fail(e, TACET_BAD_INPUT,
-                              "highest_order %g: at %.4g rpm that is %.4g Hz, and band '%s' is "
-                              "counted up to %.4g Hz; order %g or more is needed",
-                              stated, rpm, tacet_order_hz(stated, lowest_rad_per_s),
-                              m->bands[i].name, hz, order);
-        if (order > ORDER_LARGEST)
-            return tacet_fail(e, TACET_BAD_INPUT,
-                              "band '%s' is counted up to %.4g Hz, at %.4g rpm order %g; lines are "
-                              "computed up to order %g, so screen higher speeds or a lower band",
-                              m->bands[i].name, hz, rpm, order, ORDER_LARGEST);
+        if (order > stated) { // false where none is stated
+            (void)tacet_fail(e, TACET_BAD_INPUT,
+                             "highest_order %g: at %.4g rpm that is %.4g Hz, and band '%s' is "
+                             "counted up to %.4g Hz; order %g or more is needed",
+                             stated, rpm, tacet_order_hz(stated, lowest_rad_per_s),
+                             m->bands[i].name, hz, order);
+            return blame(m, "screen.highest_order", TACET_BAD_INPUT, e);
+        }
+        if (order > ORDER_LARGEST) {
+            char path[64];
+            tacet_text(path, sizeof path, "bands[%zu].high_hz", i);
+            (void)tacet_fail(e, TACET_BAD_INPUT,
+                             "band '%s' is counted up to %.4g Hz, at %.4g rpm order %g; lines are "
+                             "computed up to order %g, so screen higher speeds or a lower band",
+                             m->bands[i].name, hz, rpm, order, ORDER_LARGEST);
+            return blame(m, path, TACET_BAD_INPUT, e);
+        }
     }
     return TACET_OK;
 }
@@ -232,10 +270,10 @@ static tacet_status assemble_lines(tacet_model *m, tacet_error *e)
     }
     status = assemble_even_transforms(m, n, strokes);
     if (status != TACET_OK) return tacet_fail(e, status, "no memory for the transforms");
-    return model_transform(m, m->most_lines, PEAK_OVERSAMPLE)
-               ? TACET_OK
-               : tacet_fail(e, TACET_BAD_INPUT, "highest order %g; at most %d lines in a repeat",
-                            m->highest_order, 1 << (TRANSFORM_FIRST + TRANSFORM_KINDS - 4));
+    if (model_transform(m, m->most_lines, PEAK_OVERSAMPLE)) return TACET_OK;
+    status = tacet_fail(e, TACET_BAD_INPUT, "highest order %g; at most %d lines in a repeat",
+                        m->highest_order, 1 << (TRANSFORM_FIRST + TRANSFORM_KINDS - 4));
+    return blame(m, "screen.highest_order", status, e);
 }
 
 tacet_status tacet_model_create(const tacet_study *s, tacet_model **out, tacet_error *e)
@@ -261,6 +299,21 @@ failed:
     return status;
 }
 
+void tacet_model_watch(tacet_model *m, const volatile int *stop)
+{
+    m->stop = stop;
+}
+
+static bool stopped(const tacet_model *m)
+{
+    return m->stop && *m->stop;
+}
+
+static tacet_status asked_to_stop(tacet_error *e)
+{
+    return tacet_fail(e, TACET_STOPPED, "stopped while the model was prepared");
+}
+
 // All-fire levels at the study's demand at every screened speed; the worst of each band is its
 // reference.
 static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet_error *e)
@@ -272,6 +325,7 @@ static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet
         double speed = screen->speeds_rad_per_s[i];
         tacet_condition c = {.speed_rad_per_s = speed, .roll = m->all_fire};
         c.demand_Nm = tacet_model_demand(m, speed);
+        if (stopped(m)) return asked_to_stop(e);
         tacet_duty duty;
         tacet_solver_note note;
         tacet_band_level level[TACET_BANDS_MOST];
@@ -292,12 +346,14 @@ tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e)
         tacet_engine_prepare(m->engine, (1 - SPEED_MARGIN) * range[0],
                              (1 + SPEED_MARGIN) * range[1], m->study->engine.skip.longest_run, e);
     if (status != TACET_OK) return status;
+    if (stopped(m)) return asked_to_stop(e);
     tacet_workspace *w = NULL;
     status = workspace_build(m, &w);
     if (status != TACET_OK)
         return tacet_fail(e, status, "preparing the model: %s", tacet_status_text(status));
     status = dispersion_prepare(m, w, e);
     if (status == TACET_OK) status = prepare_references(m, w, e);
+    if (status == TACET_OK && stopped(m)) status = asked_to_stop(e);
     tacet_workspace_destroy(w);
     m->prepared = status == TACET_OK;
     return status;

@@ -89,7 +89,7 @@ static void samples_of(tacet_workspace *w, const tacet_transform *t, const tacet
     for (size_t h = 1; h <= s->n_lines; h++) {
         double complex factor = derivative == 0   ? 1
                                 : derivative == 1 ? I * base * (double)h
-                                                  : -base * base * h * h;
+                                                  : -base * base * (double)(h * h);
         q->line[h] = factor * s->line[h];
     }
     tacet_transform_samples_of(t, q, w->samples);
@@ -118,12 +118,13 @@ static void twist_statically(tacet_workspace *w)
 
 // Piston torque of a motion that came from the march: from its actual angles, speeds and
 // accelerations. Scratch: w->angle for a, a' and a'' in turn.
-tacet_status motion_piston(tacet_workspace *w, double W, unsigned revolutions, size_t n_lines)
+tacet_status motion_piston(tacet_workspace *w, double speed_rad_per_s, unsigned revolutions,
+                           size_t n_lines)
 {
     const tacet_model *m = w->m;
     const tacet_transform *t = model_transform(m, n_lines, PEAK_OVERSAMPLE);
     size_t n = tacet_transform_samples(t);
-    double base = W / revolutions;
+    double base = speed_rad_per_s / revolutions;
     twist_statically(w);
     for (size_t i = 0; i < m->n_throws; i++) {
         const tacet_spectrum *angle = &w->motion.angle_rad[m->throw_node[i]];
@@ -137,7 +138,7 @@ tacet_status motion_piston(tacet_workspace *w, double W, unsigned revolutions, s
         if (status != TACET_OK) return status;
         samples_of(w, t, angle, 1, base, w->angle);
         for (size_t k = 0; k < n; k++) {
-            double speed = W + w->angle[k];
+            double speed = speed_rad_per_s + w->angle[k];
             w->torque_at[k] += share - 0.5 * w->slope_at[k] * speed * speed;
         }
         samples_of(w, t, angle, 2, base, w->angle);

@@ -28,10 +28,11 @@ static double interpolate(const double *y, size_t n, double at)
     double whole = floor(at), u = at - whole, sum = 0;
     long long first = (long long)whole - (POINTS / 2 - 1);
     double weight[POINTS];
+    const int middle = POINTS / 2 - 1;
     for (int i = 0; i < POINTS; i++) {
         double product = 1;
         for (int j = 0; j < POINTS; j++)
-            if (j != i) product *= (u + (POINTS / 2 - 1) - j) / (i - j);
+            if (j != i) product *= (u + middle - j) / (i - j);
         weight[i] = product;
     }
     for (int i = 0; i < POINTS; i++) {
@@ -131,7 +132,7 @@ static tacet_status compare_same_model(tacet_workspace *w, const tacet_condition
     unsigned revolutions = c->roll->revolutions;
     size_t n_lines = tacet_model_lines(m, revolutions);
     frozen_torque frozen;
-    tacet_solver_note note;
+    tacet_solver_note note = {.closure = NAN};
     tacet_periodic how = tacet_periodic_default();
     how.revolutions = revolutions;
     how.n_lines = n_lines;

@@ -91,7 +91,7 @@ static tacet_status all_fire_levels(tacet_workspace *w, const tacet_condition *c
     all.roll = w->m->all_fire;
     tacet_duty duty;
     tacet_solver_note note;
-    tacet_band_level level[TACET_BANDS_MOST];
+    tacet_band_level level[TACET_BANDS_MOST] = {0};
     tacet_status status = condition_levels(w, &all, TACET_LEVEL_RIPPLE, &duty, &note, level);
     if (status == TACET_NO_MEMORY) return status;
     memo->levels_solved = status == TACET_OK && duty.reachable;

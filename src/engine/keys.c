@@ -12,7 +12,7 @@ static const char *const trapped[] = {"residual", "burnt", "air", "open", NULL};
 #define CYCLE(member)    .offset = offsetof(tacet_engine_def, cycle.member)
 #define SKIP(member)     .offset = offsetof(tacet_engine_def, skip.member)
 // A section whose members lie side by side in the struct: offsets from the first of them.
-#define WITHIN(type, first, member) .offset = offsetof(type, member) - offsetof(type, first)
+#define WITHIN(type, first, member) .offset = (offsetof(type, member) - offsetof(type, first))
 #define SPAN(type, first, last, last_type)                                                         \
     (offsetof(type, last) + sizeof(last_type) - offsetof(type, first))
 
@@ -288,7 +288,9 @@ static const tacet_field trace_fields[] = {
      .fallback = "",
      .doc = "CSV of skipped cycles, the same with :run=J (place in the run of skips, 1 first; "
             "forever: of a cylinder that never fires) in place of :after and :fuel_mg; the last "
-            "place given stands for all later ones"},
+            "place given stands for all later ones. What the fire before a run of skips came after "
+            "cannot be said: a run follows the fire of :after=0, so give the traces of the runs "
+            "that count most"},
     {0}};
 static const tacet_section trace_section = {
     .name = "traces",

@@ -14,6 +14,11 @@
 #define ANY_NEXT    2
 #define LEAST_KPA   0.1
 #define MOST_KPA    100000.0
+#define LEAST_RPM   1.0
+#define MOST_RPM    100000.0
+#define MOST_FUEL   10.0 // share of the most fuel
+#define MOST_MG     1e9  // of fuel in a cycle
+#define MOST_PLACES 4096 // loads times speeds; one column for each is the widest file
 
 typedef struct {
     bool fired;
@@ -63,9 +68,9 @@ static bool whole(const char *text, unsigned least, unsigned *out)
     return true;
 }
 
-static bool positive(const char *text, double *out)
+static bool between(const char *text, double low, double high, double *out)
 {
-    return tacet_number_parse(text, out) && *out > 0;
+    return tacet_number_parse(text, out) && *out >= low && *out <= high;
 }
 
 // One ":key=value" of a header.
@@ -73,11 +78,16 @@ static const char *read_part(const reader *r, const char *part, trace *t)
 {
     const char *value;
     if ((value = after_key(part, load_key(r)))) {
-        if (!tacet_number_parse(value, &t->load) || t->load < 0) return "the load is no number";
-        if (r->en->def.cycle.load_by == TACET_LOAD_CHARGE) t->load *= 1e3;
+        bool fuel = r->en->def.cycle.load_by == TACET_LOAD_FUEL;
+        if (!between(value, 0, fuel ? MOST_FUEL : MOST_KPA, &t->load))
+            return fuel ? "the load is a number from 0 to 10"
+                        : "the load is a number from 0 to 100000 kPa";
+        if (!fuel) t->load *= 1e3;
         return NULL;
     }
-    if ((value = after_key(part, "rpm"))) return positive(value, &t->rpm) ? NULL : "a bad rpm";
+    if ((value = after_key(part, "rpm")))
+        return between(value, LEAST_RPM, MOST_RPM, &t->rpm) ? NULL
+                                                            : "rpm is a number from 1 to 100000";
     if ((value = after_key(part, "next"))) {
         t->next = strcmp(value, "fire") == 0 ? 1 : strcmp(value, "skip") == 0 ? 0 : -1;
         return t->next >= 0 ? NULL : "next is fire or skip";
@@ -85,9 +95,7 @@ static const char *read_part(const reader *r, const char *part, trace *t)
     if (t->fired && (value = after_key(part, "after")))
         return whole(value, 0, &t->run) ? NULL : "after is a whole number from 0";
     if (t->fired && (value = after_key(part, "fuel_mg")))
-        return tacet_number_parse(value, &t->fuel_mg) && t->fuel_mg >= 0
-                   ? NULL
-                   : "fuel_mg is a number from 0";
+        return between(value, 0, MOST_MG, &t->fuel_mg) ? NULL : "fuel_mg is a number from 0 to 1e9";
     if (!t->fired && (value = after_key(part, "run"))) {
         if (strcmp(value, "forever") == 0) {
             t->run = FOREVER;
@@ -187,6 +195,7 @@ static tacet_status read_file(reader *r, const char *path, bool fired)
     if (!angle) return tacet_fail(r->e, TACET_NO_MEMORY, "no memory for traces");
     status = check_angles(r, &csv, angle);
     if (status == TACET_OK) status = make_room(r, csv.columns);
+    if (!r->trace) return status;
     for (size_t i = 1; i < csv.columns && status == TACET_OK; i++) {
         trace *t = &r->trace[r->n++];
         *t = (trace){
@@ -281,17 +290,20 @@ static void put(tacet_engine *en, const trace *t, const trace *before, unsigned 
     x[HALF_PEAK] = fmax(late, cylinder_peak(t->pressure_Pa, (size_t)(up ? half : half + 180) + 1));
 }
 
-static tacet_status missing(const reader *r, bool fired, double load, double rpm, unsigned run,
+static tacet_status missing(const reader *r, bool of_fire, double load, double rpm, unsigned run,
                             int next)
 {
     bool fuel = r->en->def.cycle.load_by == TACET_LOAD_FUEL;
     char at[64] = "";
     if (isfinite(rpm)) tacet_text(at, sizeof at, ":rpm=%.6g", rpm);
-    return tacet_fail(r->e, TACET_BAD_INPUT,
-                      "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s or a shorter run",
-                      fired ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace,
-                      load_key(r), fuel ? load : load / 1e3, at, fired ? "after" : "run", run,
-                      next ? "fire" : "skip");
+    // with after=0 and a skip next it may be wanted as what goes before that skip
+    return tacet_fail(
+        r->e, TACET_BAD_INPUT, "%s: no column for pressure_kpa:%s=%.6g%s:%s=%u:next=%s%s",
+        of_fire ? r->en->def.cycle.fired_trace : r->en->def.cycle.skipped_trace, load_key(r),
+        fuel ? load : load / 1e3, at, of_fire ? "after" : "run", run, next ? "fire" : "skip",
+        run == 0 && !next ? ", which also stands before every run of skips, whatever "
+                            "that fire came after"
+                          : " or a shorter run");
 }
 
 // A cycle that fires or skips as the `run`-th, with the cycle before it: the table's chain.
@@ -339,6 +351,11 @@ static tacet_status fill(reader *r, tacet_engine *en, unsigned longest)
     if (loads < 2)
         return tacet_fail(r->e, TACET_BAD_INPUT, "%s: fired cycles at %zu load; two are needed",
                           en->def.cycle.fired_trace, loads);
+    if (loads * (speeds ? speeds : 1) > MOST_PLACES)
+        return tacet_fail(r->e, TACET_BAD_INPUT,
+                          "%s: %zu loads at %zu speeds; at most %d of both together, loads times "
+                          "speeds, are allowed",
+                          en->def.cycle.fired_trace, loads, speeds, MOST_PLACES);
     halves h = halves_of(en->def.skip.trapped, longest, false);
     h.fire_next = h.skip_next = true;
     h.again = false;

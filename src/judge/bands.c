@@ -150,14 +150,15 @@ void tacet_band_judge(const tacet_band *b, const tacet_band_level *level,
         tacet_band_no_verdict(TACET_WHY_FAILED, out);
         return;
     }
-    double limit = isnan(b->limit_rms) ? INFINITY : b->limit_rms, reference = NAN;
+    double limit = isnan(b->limit_rms) ? INFINITY : b->limit_rms, reference = NAN, allowed = NAN;
     bool wanted = !isnan(b->over_all_fire_db), missing = false;
     if (wanted) {
         missing = !all_fire_level || !isfinite(*all_fire_level);
         if (!missing) {
             reference = *all_fire_level;
             // fmax, fmin: a term that is NAN drops out
-            limit = fmin(limit, fmax(b->floor_rms, reference * pow(10, b->over_all_fire_db / 20)));
+            allowed = reference * pow(10, b->over_all_fire_db / 20);
+            limit = fmin(limit, fmax(b->floor_rms, allowed));
         }
     }
     *out = (tacet_band_result){.level = *level, .reference = reference, .margin_db = NAN};
@@ -169,7 +170,10 @@ void tacet_band_judge(const tacet_band *b, const tacet_band_level *level,
         out->verdict = TACET_NO_VERDICT;
         out->why = TACET_WHY_NO_REFERENCE;
     } else {
-        out->margin_db = 20 * log10(limit / level->dispersed);
+        // from the reference itself, all-fire has over_all_fire_db to the last bit
+        out->margin_db = limit == allowed
+                             ? b->over_all_fire_db + 20 * log10(reference / level->dispersed)
+                             : 20 * log10(limit / level->dispersed);
         out->verdict = verdict_of(out->margin_db, b->reserve_db);
     }
 }

@@ -10,6 +10,11 @@
 // is. FFTW_ESTIMATE: measured plans differ from run to run, and with them the last bits of a sum.
 static pthread_mutex_t planning = PTHREAD_MUTEX_INITIALIZER;
 
+// A planner that gets no memory ends the process. What it takes, measured with FFTW 3.3.10 (0.3 MB
+// and up to 40 bytes a sample), is seen to be there first, twice over.
+#define PLAN_BYTES        ((size_t)1 << 20)
+#define PLAN_SAMPLE_BYTES 80
+
 struct tacet_transform {
     size_t n;
     fftw_plan to_lines, to_samples; // both in place
@@ -20,6 +25,14 @@ static fftw_complex *as_complex(double *samples)
     return (fftw_complex *)(void *)samples;
 }
 
+static bool may_plan(size_t n_samples)
+{
+    void *volatile enough = malloc(PLAN_BYTES + PLAN_SAMPLE_BYTES * n_samples);
+    bool there = enough != NULL;
+    free(enough);
+    return there;
+}
+
 tacet_status tacet_transform_create(size_t n_samples, tacet_transform **out)
 {
     if (n_samples < 4 || n_samples % 2 || n_samples > MOST_SAMPLES) return TACET_BAD_INPUT;
@@ -27,7 +40,7 @@ tacet_status tacet_transform_create(size_t n_samples, tacet_transform **out)
     if (!t) return TACET_NO_MEMORY;
     t->n = n_samples;
     double *x = tacet_transform_buffer(t);
-    if (x) {
+    if (x && may_plan(n_samples)) {
         pthread_mutex_lock(&planning);
         t->to_lines = fftw_plan_dft_r2c_1d((int)n_samples, x, as_complex(x), FFTW_ESTIMATE);
         t->to_samples = fftw_plan_dft_c2r_1d((int)n_samples, as_complex(x), x, FFTW_ESTIMATE);

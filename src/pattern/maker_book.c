@@ -12,6 +12,7 @@ typedef struct {
     const char *path;
     tacet_problems *problems;
     tacet_words *words;
+    int *name_column; // [most words]
     bool bad, full, no_memory;
 } reader;
 
@@ -111,6 +112,19 @@ static void check_name(reader *r, const entry *x, int line)
         complain(r, line, x->name_column, "a name of more than 256 letters");
 }
 
+// A name that comes before its word is told from a word with a wrong letter.
+static void complain_of_word(reader *r, const entry *x, int line, const tacet_error *e)
+{
+    tacet_pattern p;
+    char what[2 * NAME_LETTERS_MOST];
+    bool turned = x->name && tacet_pattern_parse(x->name, &p, NULL) == TACET_OK;
+    if (turned)
+        tacet_text(what, sizeof what, "a line is a word and then its name: %.64s %.80s", x->name,
+                   x->word);
+    complain(r, line, turned ? x->word_column : x->word_column + e->column - 1,
+             turned ? what : e->text);
+}
+
 static void read_entry(reader *r, const entry *x, int line)
 {
     tacet_pattern p;
@@ -118,7 +132,7 @@ static void read_entry(reader *r, const entry *x, int line)
     bool was_bad = r->bad;
     r->bad = false;
     if (tacet_pattern_parse(x->word, &p, &e) != TACET_OK)
-        complain(r, line, x->word_column + e.column - 1, e.text);
+        complain_of_word(r, x, line, &e);
     else if (tacet_pattern_fires(&p) == 0)
         complain(r, line, x->word_column, "a word that never fires; at least one letter must");
     if (x->name) check_name(r, x, line);
@@ -127,6 +141,7 @@ static void read_entry(reader *r, const entry *x, int line)
         w->pattern[w->n] = p;
         w->name[w->n] = x->name;
         w->comment[w->n] = x->comment;
+        r->name_column[w->n] = x->name_column;
         w->line[w->n++] = line;
     }
     r->bad = r->bad || was_bad;
@@ -185,7 +200,7 @@ static void check_names_unique(reader *r, key *keys)
         char what[NAME_LETTERS_MOST + 80];
         tacet_text(what, sizeof what, "the name '%s' again; line %d has it too", keys[i].name,
                    w->line[keys[i - 1].at]);
-        complain(r, w->line[keys[i].at], 1, what);
+        complain(r, w->line[keys[i].at], r->name_column[keys[i].at], what);
     }
 }
 
@@ -255,10 +270,12 @@ tacet_status tacet_book_read_text(const char *text, size_t bytes, const char *na
     char *copy = tacet_arena_alloc(a, bytes + 1);
     if (!copy) return TACET_NO_MEMORY;
     if (bytes) memcpy(copy, text, bytes);
-    size_t lines = count_lines(copy, bytes);
-    tacet_status status =
-        words_init(out, lines < BOOK_WORDS_MOST ? lines : BOOK_WORDS_MOST, a, NULL);
+    size_t lines = count_lines(copy, bytes),
+           most = lines < BOOK_WORDS_MOST ? lines : BOOK_WORDS_MOST;
+    tacet_status status = words_init(out, most, a, NULL);
     if (status != TACET_OK) return status;
+    r.name_column = tacet_arena_alloc(a, most * sizeof *r.name_column);
+    if (!r.name_column) return TACET_NO_MEMORY;
     out->n = 0;
     read_lines(&r, copy, bytes);
     check_unique(&r);

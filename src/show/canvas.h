@@ -87,7 +87,8 @@ void canvas_end_row(canvas *c);
 void canvas_end_block(canvas *c);
 
 // Moves the n centres in `at` (any order) as little as needed so that they are `pitch` apart and
-// within [low, high]; false when they cannot all fit (nothing moved).
+// within [low, high]; false when they cannot all fit (nothing moved). At most CANVAS_SPREAD_MOST.
+#define CANVAS_SPREAD_MOST 64
 bool canvas_spread(size_t n, double *at, double pitch, double low, double high);
 // Keeps labels that do not touch: places [at - half, at + half] in order of falling weight.
 // keep[n] is set. Returns how many are kept.

@@ -29,10 +29,10 @@ static tacet_status check_svg(FILE *f, tacet_error *e)
 static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, tacet_error *e)
 {
     FILE *script = tmpfile(), *out = tmpfile();
-    tacet_status s = script && out ? TACET_OK
-                                   : tacet_fail(e, TACET_OUTSIDE_WORLD,
-                                                "cannot make a temporary file for a drawing");
-    if (s == TACET_OK) {
+    tacet_status s = TACET_OUTSIDE_WORLD;
+    if (!script || !out) {
+        s = tacet_fail(e, s, "cannot make a temporary file for a drawing");
+    } else {
         fprintf(script,
                 "set terminal pngcairo size 240,160 font 'sans-serif,16'\n"
                 "unset border\nunset tics\nunset key\n%splot [0:1] [0:1] 2\n",
@@ -55,7 +55,7 @@ static tacet_status probe(bool letter, char picture[PROBE_MOST], size_t *bytes, 
 static tacet_status check_png(FILE *f, tacet_error *e)
 {
     char picture[2][PROBE_MOST];
-    size_t bytes[2];
+    size_t bytes[2] = {0, 0};
     if (!ends_with(f, "\0\0\0\0IEND\xae\x42\x60\x82", 12))
         return tacet_fail(e, TACET_OUTSIDE_WORLD, "gnuplot wrote no whole PNG drawing");
     for (int k = 0; k < 2; k++) {
@@ -155,6 +155,10 @@ tacet_status tacet_draw(tacet_folder *folder, const char *stem, const tacet_figu
                     e);
     if (s == TACET_OK) s = how->format->check(to, e);
     if (s == TACET_OK) return tacet_folder_commit(folder, e);
+    int reason = stream_reason(to); // gnuplot says nothing of a full disk
+    if (reason)
+        (void)tacet_fail(e, s, "cannot write %s/%s: %s", tacet_folder_path(folder), drawing,
+                         strerror(reason));
     tacet_folder_abort(folder);
     return s;
 }

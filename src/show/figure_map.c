@@ -110,7 +110,8 @@ static void boxes(canvas *c, const tacet_figure_map *f, const char *block,
 static char letter_of(const tacet_map_cell *cell, const char *letter)
 {
     bool known = cell->limiting >= 0 && cell->limiting < MAP_LIMITING_MOST;
-    char l = known ? letter[cell->limiting] : MAP_LETTER_OTHERS;
+    char l = MAP_LETTER_OTHERS;
+    if (known) l = letter[cell->limiting];
     switch (cell->mark) {
     case TACET_MARK_OVER:
         return l;
@@ -236,7 +237,11 @@ static void assign_letters(const tacet_figure_map *f, char *letter)
         for (size_t i = 0; i < f->n_rows * f->n_speeds && !limits; i++)
             limits = f->cell[i].limiting == (int)l &&
                      (f->cell[i].mark == TACET_MARK_OVER || f->cell[i].mark == TACET_MARK_NEAR);
-        letter[l] = !limits ? 0 : used < sizeof LETTERS - 1 ? LETTERS[used++] : MAP_LETTER_OTHERS;
+        letter[l] = MAP_LETTER_OTHERS;
+        if (!limits)
+            letter[l] = 0;
+        else if (used < sizeof LETTERS - 1)
+            letter[l] = LETTERS[used++];
     }
 }
 

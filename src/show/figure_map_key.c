@@ -67,8 +67,9 @@ static void colour_bar(canvas *c, double x, double y, double reserve_db)
 {
     double width = MAP_KEY_PX - 48, step = width / (MARGIN_HIGH - MARGIN_LOW);
     canvas_text(c, x, y, (canvas_style){.size = FONT_TEXT, .bold = true}, "Worst margin, dB");
-    for (double m = MARGIN_LOW; m < MARGIN_HIGH; m++) {
+    for (int decibel = (int)MARGIN_LOW; decibel < (int)MARGIN_HIGH; decibel++) {
         char colour[16];
+        double m = decibel;
         tacet_mark mark = m < 0            ? TACET_MARK_OVER
                           : m < reserve_db ? TACET_MARK_NEAR
                                            : TACET_MARK_CLEAR;

@@ -13,6 +13,9 @@
 #define ORDERS_LABELED 64
 #define COLOUR_INSIDE  0xa3324a
 #define COLOUR_OUTSIDE 0x5b8fb9
+#define EDGE_BAND      "#c39a45"
+#define EDGE_OTHER     "#8a97a5"
+#define KEY_ROW_PX     26.0
 
 static double level_at(const tacet_figure_orders *f, size_t order, size_t speed)
 {
@@ -53,19 +56,22 @@ static double order_weight(const tacet_figure_orders *f, size_t order)
     return most;
 }
 
+// Fills of bands, those judged on top; then the outlines of all, so that what overlaps shows.
 static void strips(canvas *c, const tacet_figure_orders *f)
 {
-    for (int judged = 0; judged < 2; judged++) // those judged last, on top
+    static const canvas_paint paint[] = {
+        {.fill = FILL_OTHER, .behind = true},
+        {.fill = FILL_BAND, .behind = true},
+        {.border = EDGE_OTHER, .width = 1.2, .behind = true},
+        {.border = EDGE_BAND, .width = 1.2, .behind = true},
+    };
+    for (int pass = 0; pass < 4; pass++)
         for (size_t b = 0; b < f->n_bands; b++) {
             const tacet_figure_band *band = &f->band[b];
-            if (band->judged != (judged == 1) || band->low_hz >= c->y_high) continue;
+            if (band->judged != (pass % 2 == 1) || band->low_hz >= c->y_high) continue;
             double y0 = canvas_y(c, fmin(band->high_hz, c->y_high));
             double y1 = canvas_y(c, fmax(band->low_hz, 0));
-            canvas_box(c, c->left, y0, c->right, y1,
-                       (canvas_paint){.fill = judged ? FILL_BAND : FILL_OTHER,
-                                      .border = judged ? "#d8bd84" : RULE,
-                                      .width = 0.8,
-                                      .behind = true});
+            canvas_box(c, c->left, y0, c->right, y1, paint[pass]);
         }
 }
 
@@ -179,10 +185,10 @@ static void order_names(canvas *c, const tacet_figure_orders *f, bool *named)
 // Names of bands and modes in one column, moved apart where they would touch.
 static void names(canvas *c, const tacet_figure_orders *f, double high_px)
 {
-    double at[NAMES_MOST], wish[NAMES_MOST];
-    const char *name[NAMES_MOST];
+    double at[NAMES_MOST] = {0}, wish[NAMES_MOST] = {0};
+    const char *name[NAMES_MOST] = {NULL};
     char store[NAMES_MOST][96];
-    bool is_mode[NAMES_MOST];
+    bool is_mode[NAMES_MOST] = {false};
     size_t n = 0;
     for (size_t b = 0; b < f->n_bands && n < NAMES_MOST; b++) {
         if (f->band[b].low_hz >= c->y_high) continue;
@@ -206,11 +212,10 @@ static void names(canvas *c, const tacet_figure_orders *f, double high_px)
     for (size_t i = 0; i < n; i++) {
         canvas_line(c, c->right + 3, wish[i], c->right + 24, at[i],
                     (canvas_stroke){is_mode[i] ? INK : INK_FAINT, 1, is_mode[i]});
-        canvas_text(c, c->right + 30, at[i],
-                    (canvas_style){.size = is_mode[i] ? FONT_SMALL : FONT_TEXT,
-
-                                   .most_px = KEY_PX - 46},
-                    name[i]);
+        canvas_text(
+            c, c->right + 30, at[i],
+            (canvas_style){.size = is_mode[i] ? FONT_SMALL : FONT_TEXT, .most_px = KEY_PX - 46},
+            name[i]);
     }
 }
 
@@ -221,7 +226,21 @@ static double round_below(double value)
     return value >= 5 * unit ? 5 * unit : value >= 2 * unit ? 2 * unit : unit;
 }
 
-static void key(canvas *c, const tacet_figure_orders *f, double most, double y)
+static bool has_bands(const tacet_figure_orders *f, bool judged)
+{
+    for (size_t b = 0; b < f->n_bands; b++)
+        if (f->band[b].judged == judged) return true;
+    return false;
+}
+
+static void key_strip(canvas *c, double x, double y, const char *fill, const char *border)
+{
+    canvas_box(c, x, y - 8, x + 24, y + 8,
+               (canvas_paint){.fill = fill, .border = border, .width = 1.2});
+}
+
+// Returns where it ends.
+static double key(canvas *c, const tacet_figure_orders *f, double most, double y)
 {
     char text[160];
     double x = c->right + 30;
@@ -231,20 +250,27 @@ static void key(canvas *c, const tacet_figure_orders *f, double most, double y)
     snprintf(text, sizeof text, "%s rms, shown by area", f->unit);
     canvas_text(c, x, y + 22, style, text);
     double value = most > 0 ? round_below(most) : 0, at = x;
-    for (int i = 0; i < 3 && value > 0; i++, value /= 4) {
+    for (int i = 0; i < 3 && value > 0; i++) {
         char number[TACET_NUMBER_TEXT];
         double radius = RADIUS_PX * sqrt(value / most);
         tacet_number_format_short(value, 3, number);
         canvas_disc(c, at + radius, y + 50, radius, "#5b8fb9", PAPER);
         canvas_text(c, at + 2 * radius + 5, y + 50, style, number);
         at += 2 * radius + canvas_text_width(number, FONT_SMALL, false) + 22;
+        value /= 4;
     }
-    bool judged = false;
-    for (size_t b = 0; b < f->n_bands; b++)
-        judged |= f->band[b].judged;
-    if (!judged) return;
-    canvas_disc(c, x + 8, y + 78, 7, FILL_DARK, PAPER);
-    canvas_text(c, x + 24, y + 78, style, "inside a band judged on it");
+    y += 78;
+    if (has_bands(f, true)) {
+        key_strip(c, x, y, FILL_BAND, EDGE_BAND);
+        canvas_text(c, x + 34, y, style, "band judged on it");
+        canvas_disc(c, x + 12, y += KEY_ROW_PX, 7, FILL_DARK, PAPER);
+        canvas_text(c, x + 34, y, style, "inside such a band");
+        y += KEY_ROW_PX;
+    }
+    if (!has_bands(f, false)) return y;
+    key_strip(c, x, y, FILL_OTHER, EDGE_OTHER);
+    canvas_text(c, x + 34, y, style, "other band");
+    return y + KEY_ROW_PX;
 }
 
 void figure_orders_script(canvas *c, const tacet_figure_orders *f)
@@ -271,7 +297,6 @@ void figure_orders_script(canvas *c, const tacet_figure_orders *f)
     rays(c, f, named);
     mode_lines(c, f, named);
     circles(c, f, most);
-    key(c, f, most, c->top - 34);
-    names(c, f, c->top + 74);
+    names(c, f, key(c, f, most, c->top - 34) + 8);
     canvas_use(c, "orders");
 }

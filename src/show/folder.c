@@ -20,6 +20,7 @@ static const char *const names[] = {"summary.txt",     "runs.csv",        "scree
 
 struct tacet_folder {
     char *path;
+    bool made; // by this run
     int fd;
     FILE *open;  // the file being written, or NULL
     size_t name; // its index
@@ -102,7 +103,8 @@ tacet_status tacet_folder_open(const char *path, tacet_folder **out, tacet_error
         return tacet_fail(e, TACET_NO_MEMORY, "no memory");
     }
     tacet_status s = TACET_OK;
-    if (mkdir(path, 0777) != 0 && errno != EEXIST) s = outside(e, "make folder", path, NULL, errno);
+    f->made = mkdir(path, 0777) == 0;
+    if (!f->made && errno != EEXIST) s = outside(e, "make folder", path, NULL, errno);
     if (s == TACET_OK) {
         f->fd = open(path, O_RDONLY | O_DIRECTORY | O_CLOEXEC);
         if (f->fd < 0) s = outside(e, "open folder", path, NULL, errno);
@@ -142,6 +144,7 @@ tacet_status tacet_folder_begin(tacet_folder *f, const char *name, FILE **out, t
     if (!f->open) {
         int reason = errno;
         if (fd >= 0) close(fd);
+        if (fd >= 0) unlinkat(f->fd, tmp, 0);
         return outside(e, "write", f->path, tmp, reason);
     }
     f->name = i;
@@ -163,18 +166,18 @@ tacet_status tacet_folder_commit(tacet_folder *f, tacet_error *e)
     char tmp[64];
     if (!f->open) return tacet_fail(e, TACET_BAD_INPUT, "no file of the folder is open");
     temporary(f->name, tmp);
-    errno = 0;
-    bool bad = fflush(f->open) != 0 || ferror(f->open) != 0;
-    bad = bad || fsync(fileno(f->open)) != 0;
+    bool bad = tacet_stream_check(f->open, tmp, NULL) != TACET_OK || fsync(fileno(f->open)) != 0;
     int reason = errno;
-    bool bad_close = fclose(f->open) != 0;
-    if (bad_close && !bad) reason = errno;
+    if (fclose(f->open) != 0 && !bad) {
+        bad = true;
+        reason = errno;
+    }
     f->open = NULL;
-    if (!bad && !bad_close && renameat(f->fd, tmp, f->fd, names[f->name]) == 0) {
+    if (!bad && renameat(f->fd, tmp, f->fd, names[f->name]) == 0) {
         f->wrote[f->name] = true;
         return TACET_OK;
     }
-    if (!bad && !bad_close) reason = errno;
+    if (!bad) reason = errno;
     unlinkat(f->fd, tmp, 0);
     return outside(e, "write", f->path, names[f->name], reason ? reason : EIO);
 }
@@ -202,6 +205,7 @@ void tacet_folder_close(tacet_folder *f)
     if (!f) return;
     tacet_folder_abort(f);
     if (f->fd >= 0) close(f->fd);
+    if (f->made) rmdir(f->path); // only goes when nothing was written
     free(f->path);
     free(f);
 }

@@ -1,6 +1,6 @@
 // Which labels fit, and where.
 #include "show/canvas.h"
-#include <stdlib.h>
+#include <math.h>
 
 // Order of places by value: a plain insertion sort, n is a few dozen.
 static void sort_by(size_t n, const double *value, size_t *order)
@@ -49,47 +49,43 @@ static void push_inside(size_t n, double pitch, double low, double high, double 
 
 bool canvas_spread(size_t n, double *at, double pitch, double low, double high)
 {
+    size_t order[CANVAS_SPREAD_MOST];
+    double wish[CANVAS_SPREAD_MOST], place[CANVAS_SPREAD_MOST];
     if (n == 0) return true;
-    if (pitch * (double)(n - 1) > high - low) return false;
-    size_t *order = malloc(n * sizeof *order);
-    double *wish = malloc(n * sizeof *wish), *place = malloc(n * sizeof *place);
-    bool fits = order && wish && place;
-    if (fits) {
-        sort_by(n, at, order);
-        for (size_t i = 0; i < n; i++)
-            wish[i] = at[order[i]];
-        centre_groups(n, wish, pitch, place);
-        push_inside(n, pitch, low, high, place);
-        for (size_t i = 0; i < n; i++)
-            at[order[i]] = place[i];
-    }
-    free(order);
-    free(wish);
-    free(place);
-    return fits;
+    if (n > CANVAS_SPREAD_MOST || pitch * (double)(n - 1) > high - low) return false;
+    sort_by(n, at, order);
+    for (size_t i = 0; i < n; i++)
+        wish[i] = at[order[i]];
+    centre_groups(n, wish, pitch, place);
+    push_inside(n, pitch, low, high, place);
+    for (size_t i = 0; i < n; i++)
+        at[order[i]] = place[i];
+    return true;
+}
+
+// Does label a come before b? The first of equal ones does.
+static bool heavier(const double *weight, size_t a, size_t b)
+{
+    return weight[a] != weight[b] ? weight[a] > weight[b] : a < b;
 }
 
 size_t canvas_thin(size_t n, const double *at, const double *half, const double *weight, bool *keep)
 {
-    size_t kept = 0;
-    bool *seen = calloc(n ? n : 1, sizeof *seen);
+    size_t kept = 0, last = n; // n: none yet
     for (size_t i = 0; i < n; i++)
         keep[i] = false;
-    for (size_t round = 0; seen && round < n; round++) {
-        size_t best = n;
+    for (size_t round = 0; round < n; round++) {
+        size_t next = n;
         for (size_t i = 0; i < n; i++)
-            if (!seen[i] && (best == n || weight[i] > weight[best])) best = i;
-        if (best == n) break;
-        seen[best] = true;
+            if ((last == n || heavier(weight, last, i)) && (next == n || heavier(weight, i, next)))
+                next = i;
+        if (next == n) break;
         bool fits = true;
         for (size_t i = 0; i < n && fits; i++)
-            if (keep[i]) {
-                double gap = at[i] > at[best] ? at[i] - at[best] : at[best] - at[i];
-                fits = gap >= half[i] + half[best];
-            }
-        keep[best] = fits;
+            if (keep[i]) fits = fabs(at[i] - at[next]) >= half[i] + half[next];
+        keep[next] = fits;
         kept += fits;
+        last = next;
     }
-    free(seen);
     return kept;
 }

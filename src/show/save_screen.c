@@ -33,13 +33,15 @@ static tacet_status save_text(const save_job *b, tacet_error *e)
 static tacet_status save_json(const save_job *b, tacet_error *e)
 {
     FILE *to;
+    char path[300];
+    tacet_text(path, sizeof path, "%.200s/screen.json", tacet_folder_path(b->folder));
     tacet_status status = tacet_folder_begin(b->folder, "screen.json", &to, e);
     if (status != TACET_OK) return status;
     tacet_json j = tacet_json_start(to);
     tacet_json_head(&j, "screen", tacet_model_study(b->m), b->s->n_failed ? "some failed" : "ok");
     status = tacet_screen_json(&j, b->m, b->s);
     tacet_json_end_object(&j);
-    if (status == TACET_OK) status = tacet_json_finish(&j, "screen.json", e);
+    if (status == TACET_OK) status = tacet_json_finish(&j, path, e);
     if (status == TACET_OK) return tacet_folder_commit(b->folder, e);
     tacet_folder_abort(b->folder);
     return status == TACET_NO_MEMORY ? tacet_fail(e, status, "screen.json: no memory") : status;

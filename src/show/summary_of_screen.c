@@ -118,6 +118,17 @@ static size_t count_limits(const summary *y, size_t *count)
     return n;
 }
 
+// What the shown ones leave: how many more limit, and how often.
+static void add_rest(summary *y, const char **text, const size_t *count, size_t n_all)
+{
+    size_t more = 0, times = 0;
+    for (size_t i = 0; i < n_all; i++) {
+        more += count[i] > 0;
+        times += count[i];
+    }
+    if (more) add(y, text, screen_text(y->a, ", %zu more (%zu)", more, times));
+}
+
 static void what_limits(summary *y)
 {
     size_t n_bands = tacet_model_bands(y->m), n_all = n_bands + tacet_model_limits(y->m);
@@ -142,6 +153,7 @@ static void what_limits(summary *y)
         add(y, &text, screen_text(y->a, "%s %s (%zu)", k ? "," : "", name, count[best]));
         count[best] = 0;
     }
+    add_rest(y, &text, count, n_all);
     add(y, &text,
         n == 1 ? " of the one condition that is near or over."
                : screen_text(y->a, " of the %zu conditions that are near or over.", n));

@@ -150,14 +150,15 @@ tacet_status screen_summary_table(const tacet_model *m, const tacet_screen *s, t
     for (size_t i = 0; i < s->n_candidates; i++)
         none += !s->candidates[s->notes[i].candidate].refused && s->notes[i].n_none > 0;
     columns[NO_VERDICT].data_only = none == 0; // a column of zeros says nothing to a reader
-    tacet_status status =
-        table_start(a,
-                    &(tacet_table){.name = "summary",
-                                   .heading = "Candidates, by number of grid speeds",
-                                   .columns = columns,
-                                   .n_columns = n,
-                                   .n_rows = s->n_candidates},
-                    out, &row);
+    tacet_status status = table_start(
+        a,
+        &(tacet_table){
+            .name = "summary",
+            .heading = "Candidates, by number of grid speeds; from, to: its widest clear stretch",
+            .columns = columns,
+            .n_columns = n,
+            .n_rows = s->n_candidates},
+        out, &row);
     for (size_t i = 0; status == TACET_OK && i < s->n_candidates; i++)
         summary_row(m, &s->candidates[s->notes[i].candidate], &s->notes[i], &row);
     return status;
@@ -256,10 +257,25 @@ static const tacet_table_column no_go_columns[] = {
     {"from_rpm", "rpm", false, 1, false, "from"},
     {"to_rpm", "rpm", false, 1, false, "to"},
     {"open", NULL, true, 0, false, NULL},
+    {"beyond", NULL, true, 0, false, NULL},
     {"worst_margin_db", "dB", false, 1, false, "worst"},
     {"at_rpm", "rpm", false, 0, false, "at"},
     {"leading_order", NULL, false, -1, false, "order"},
 };
+
+// What lies past the open ends.
+static const char *beyond(const tacet_no_go *g, tacet_arena *a)
+{
+    static const char *const what[] = {[TACET_OPEN_NOT] = "",
+                                       [TACET_OPEN_SPEEDS] = "not screened",
+                                       [TACET_OPEN_UNREACHABLE] = "out of reach",
+                                       [TACET_OPEN_FAILED] = "not solved",
+                                       [TACET_OPEN_NO_REFERENCE] = "no reference"};
+    const char *low = what[g->low_open], *high = what[g->high_open];
+    if (!g->low_open || !g->high_open || g->low_open == g->high_open)
+        return g->low_open ? low : high;
+    return screen_text(a, "%s, %s", low, high);
+}
 
 tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                                 tacet_table *out)
@@ -269,7 +285,7 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
     tacet_status status =
         table_start(a,
                     &(tacet_table){.name = "no-go",
-                                   .heading = "No-go ranges (open: beyond it nothing was judged)",
+                                   .heading = "No-go ranges (open: it may run on beyond)",
                                    .columns = no_go_columns,
                                    .n_columns = N_COLUMNS(no_go_columns),
                                    .n_rows = s->n_no_go},
@@ -281,6 +297,7 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
         put_number(&row, screen_rpm(g->low_rad_per_s));
         put_number(&row, screen_rpm(g->high_rad_per_s));
         put_text(&row, open[(g->low_open ? 1 : 0) + (g->high_open ? 2 : 0)]);
+        put_text(&row, beyond(g, a));
         put_number(&row, g->worst_margin_db);
         put_number(&row, screen_rpm(g->worst_speed_rad_per_s));
         put_number(&row, g->leading_order > 0 ? g->leading_order : NAN);

@@ -86,3 +86,14 @@ char *study_path(const tacet_study *s, const char *path, tacet_arena *a)
     char *out = tacet_arena_alloc(a, bytes);
     return out ? tacet_text(out, bytes, "%s/%s", s->folder, path) : NULL;
 }
+
+bool tacet_study_place(const tacet_study *s, const char *path, int *line, int *column)
+{
+    bool whole;
+    const tree_node *node;
+    if (!s->tree || !s->tree->root) return false;
+    place at = place_of_path(s->tree, path, &whole, &node);
+    *line = at.line;
+    *column = at.column;
+    return true;
+}

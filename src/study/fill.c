@@ -64,9 +64,9 @@ void fill_mark(filler *f, const char *path)
         f->wrong = wrong;
         f->size_wrong = size;
     }
-    f->wrong[f->n_wrong] = strdup(path);
-    if (f->wrong[f->n_wrong])
-        f->n_wrong++;
+    char *copy = strdup(path);
+    if (copy)
+        f->wrong[f->n_wrong++] = copy;
     else
         f->no_memory = true;
 }
@@ -256,7 +256,7 @@ static void all_absent(const tacet_section *s, void *into)
 
 void fill_section(filler *f, const tacet_section *s, const tree_node *node, place at, void *into)
 {
-    if (!node_is_nothing(node) && node->kind != TREE_MAP && !s->shorthand) {
+    if (node && !node_is_nothing(node) && node->kind != TREE_MAP && !s->shorthand) {
         char text[SHOWN_TEXT], list[100], who[128];
         const char *names[MOST_KEYS];
         fill_say(f, false, node_place(node), "%s is %s; a map of keys is needed: %s",

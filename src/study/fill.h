@@ -56,7 +56,7 @@ place node_place(const tree_node *node);
 
 // Where a path from the root lies in the file, as deep as the file goes. *whole: all of it is
 // there.
-place place_of_path(const tacet_tree *tree, const char *path, bool *whole, const tree_node **node);
+place place_of_path(const tacet_tree *tree, const char *path, bool *whole, const tree_node **out);
 
 // ---- words for messages
 #define SHOWN_TEXT 64
@@ -64,7 +64,8 @@ place place_of_path(const tacet_tree *tree, const char *path, bool *whole, const
 const char *shown_node(const tree_node *node, char out[SHOWN_TEXT]);
 const char *shown_text(const char *text, char out[SHOWN_TEXT]);
 #define RANGE_TEXT 96
-const char *range_text(const tacet_field *field, char out[RANGE_TEXT]); // "20 to 1000 mm", or ""
+// "20 to 1000 mm", or ""; for a value that is not in it, or NAN.
+const char *range_text(const tacet_field *field, double value, char out[RANGE_TEXT]);
 // " mm", or "" for a pure number
 const char *unit_text(const char *unit, char out[32]);
 // Names between commas into out, cut with ".." where it is full.

@@ -29,7 +29,7 @@ static const char *key_of(const filler *f, char out[SUBJECT_TEXT])
 static const char *needed(const tacet_field *field, const char *what, char out[160])
 {
     char unit[32], range[RANGE_TEXT];
-    bool ranged = *range_text(field, range);
+    bool ranged = *range_text(field, NAN, range);
     bool united = *unit_text(field->unit, unit);
     if (ranged) return tacet_text(out, 160, "%s is needed, %s", what, range);
     return tacet_text(out, 160, "%s%s%s is needed", what, united ? " in" : "", unit);
@@ -79,7 +79,7 @@ static bool check_range(filler *f, const tacet_field *field, place at, double va
     if (value >= field->low && value <= field->high) return true;
     fill_say(f, false, at, "%s %s%s; allowed are %s%s%s", key_is(f, subject),
              tacet_number_format_short(value, 6, number), unit_text(field->unit, unit),
-             range_text(field, range), meant ? "; numbers take a decimal point: " : "",
+             range_text(field, value, range), meant ? "; numbers take a decimal point: " : "",
              meant ? meant : "");
     return false;
 }
@@ -317,7 +317,8 @@ static bool read_parts(filler *f, const tacet_field *field, const tree_node *nod
     char point[SHOWN_TEXT], subject[SUBJECT_TEXT];
     const char *meant = list ? decimal_comma(node, false, point) : NULL;
     part *parts = tacet_arena_alloc(f->arena, n_parts * sizeof *parts);
-    for (size_t i = 0; parts && i < n_parts; i++) {
+    // no more is read than may be kept: each part of some bytes may stand for many values
+    for (size_t i = 0; parts && i < n_parts && total <= FILL_MOST_VALUES; i++) {
         size_t length = list ? fill_enter_item(f, i) : strlen(f->path);
         good = check_part(f, field, list ? node->child[i] : node, meant, &parts[i]) && good;
         fill_leave(f, length);

@@ -33,6 +33,15 @@ void tacet_study_destroy(tacet_study *s)
     free(s);
 }
 
+// Letters of the path of a book in `text`, which names a book or a word of one; 0: it is a word.
+static size_t book_letters(const char *text)
+{
+    static const char ending[] = ".words";
+    const char *colon = strrchr(text, ':');
+    size_t n = colon ? (size_t)(colon - text) : strlen(text), of_ending = sizeof ending - 1;
+    return n > of_ending && memcmp(text + n - of_ending, ending, of_ending) == 0 ? n : 0;
+}
+
 // The bytes of files that a study names count as its values do. They were read before: only memory
 // can be lacking, or somebody has taken a file away since.
 static tacet_status hash_file(tacet_study *s, const char *name, size_t letters,
@@ -64,9 +73,8 @@ static tacet_status hash_files(tacet_study *s, tacet_problems *problems)
         if (table) status = hash_file(s, table, strlen(table), problems);
     }
     for (size_t i = 0; i < s->screen.n_patterns && !status; i++) {
-        static const char ending[] = ".words";
-        const char *text = s->screen.patterns[i], *end = strstr(text, ending);
-        if (end) status = hash_file(s, text, (size_t)(end - text) + strlen(ending), problems);
+        size_t letters = book_letters(s->screen.patterns[i]);
+        if (letters) status = hash_file(s, s->screen.patterns[i], letters, problems);
     }
     return status;
 }

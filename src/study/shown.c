@@ -7,7 +7,7 @@ const char *shown_text(const char *text, char out[SHOWN_TEXT])
     size_t n = 0, most = SHOWN_TEXT - 6;
     out[n++] = '\'';
     for (; *text && n < most; text++)
-        out[n++] = (unsigned char)*text < 0x20 || *text == 0x7F ? ' ' : *text;
+        out[n++] = (char)((unsigned char)*text < 0x20 || *text == 0x7F ? ' ' : *text);
     if (*text) {
         while (n > 1 && ((unsigned char)out[n - 1] & 0xC0) == 0x80) // no half of a letter
             n--;
@@ -34,16 +34,17 @@ const char *unit_text(const char *unit, char out[32])
     return tacet_text(out, 32, " %s", unit);
 }
 
-#define NO_END 1e12 // ranges that reach so far have no end to speak of
+#define NO_END 1e12 // ranges that reach so far have no end to speak of, but to who is past it
 
-const char *range_text(const tacet_field *field, char out[RANGE_TEXT])
+const char *range_text(const tacet_field *field, double value, char out[RANGE_TEXT])
 {
     char low[TACET_NUMBER_TEXT], high[TACET_NUMBER_TEXT], unit[32];
     unit_text(field->unit, unit);
     if (field->low == 0 && field->high == 0) return strcpy(out, "");
     tacet_number_format_short(field->low, 6, low);
     tacet_number_format_short(field->high, 6, high);
-    if (field->high >= NO_END) return tacet_text(out, RANGE_TEXT, "%s%s or more", low, unit);
+    if (field->high >= NO_END && !(value > field->high))
+        return tacet_text(out, RANGE_TEXT, "%s%s or more", low, unit);
     return tacet_text(out, RANGE_TEXT, "%s to %s%s", low, high, unit);
 }
 

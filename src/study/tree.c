@@ -293,7 +293,11 @@ static tacet_status read_alias(reader *r, const yaml_event_t *event)
     const char *name = (const char *)event->data.alias.anchor;
     bool found;
     size_t at = anchor_place(r, name, &found);
-    if (!found) return refuse(r, line, column, "alias *%.60s has no anchor before it", name);
+    if (!found)
+        return refuse(r, line, column,
+                      "alias *%.60s has no anchor before it: &%.60s and a value; a text that "
+                      "begins with * needs quotes",
+                      name, name);
     const anchor *to = &r->anchors[at];
     if (to->open)
         return refuse(r, line, column, "alias *%.60s lies inside what it stands for", name);

@@ -33,6 +33,9 @@ static const struct {
      "'\\' before a letter that it gives no meaning: use single quotes around a text with '\\'"},
     {"did not find expected <document start>", "only one study may stand in a file"},
     {"did not find expected node content", "a value was expected here"},
+    {"did not find expected alphabetic or numeric character",
+     "& names a value and * repeats it, the name (letters, digits, - and _) close behind; a text "
+     "that begins with one of them needs quotes"},
     {"control characters are not allowed", "a control character; a study is plain text in UTF-8"},
 };
 

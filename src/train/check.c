@@ -10,10 +10,10 @@
 typedef struct {
     const tacet_train_def *d;
     const tacet_reporter *r;
-    const char **name; // nodes, then damper rings; rings' texts live in `ring`
+    const char *name[TRAIN_NODES_MOST]; // nodes, then damper rings; rings' texts live in `ring`
     size_t n;
-    size_t *group; // which nodes hang together
-    char (*ring)[TRAIN_NAME];
+    size_t group[TRAIN_NODES_MOST]; // which nodes hang together
+    char ring[TRAIN_NODES_MOST][TRAIN_NAME];
 } check;
 
 static bool same(const char *a, const char *b)
@@ -36,18 +36,39 @@ static size_t find(const check *c, const char *name)
     return SIZE_MAX;
 }
 
+// "ring, hub, throw1, .."
+static const char *names(const check *c, char out[PATH])
+{
+    size_t used = 0;
+    out[0] = '\0';
+    for (size_t i = 0; i < c->n; i++) {
+        if (!c->name[i]) continue;
+        bool room = used + strlen(c->name[i]) + 8 < PATH;
+        tacet_text(out + used, PATH - used, "%s%s", used ? ", " : "", room ? c->name[i] : "..");
+        if (!room) break;
+        used += strlen(out + used);
+    }
+    return out;
+}
+
 // Index of the node, or SIZE_MAX with a problem said at `path`.
 static size_t resolve(const check *c, const char *name, const char *path)
 {
     if (!name) return SIZE_MAX;
     size_t i = find(c, name);
     if (i != SIZE_MAX) return i;
+    char list[PATH];
     const char *near = tacet_near_name(name, c->name, c->n);
     if (near)
         tacet_report(c->r, false, path, "'%.80s' is no node of the train; near is '%.80s'", name,
                      near);
+    else if (strcmp(name, tacet_train_default().flywheel) == 0)
+        tacet_report(c->r, false, path,
+                     "there is no node '%s'; write flywheel: and the node that it is, one of %s",
+                     name, names(c, list));
     else
-        tacet_report(c->r, false, path, "'%.80s' is no node of the train", name);
+        tacet_report(c->r, false, path, "'%.80s' is no node of the train; it has %s", name,
+                     names(c, list));
     return SIZE_MAX;
 }
 
@@ -186,7 +207,7 @@ static size_t group_of(const check *c, size_t i)
     return i;
 }
 
-static void check_link(const check *c, size_t i)
+static void check_link(check *c, size_t i)
 {
     const tacet_link_def *l = &c->d->links[i];
     char path[PATH];
@@ -221,14 +242,10 @@ static void check_connected(const check *c, size_t flywheel)
     }
 }
 
-static tacet_status gather(check *c)
+static void gather(check *c)
 {
     const tacet_train_def *d = c->d;
     c->n = d->n_nodes + d->n_dampers;
-    c->name = calloc(c->n + 1, sizeof *c->name);
-    c->group = calloc(c->n + 1, sizeof *c->group);
-    c->ring = calloc(d->n_dampers + 1, sizeof *c->ring);
-    if (!c->name || !c->group || !c->ring) return TACET_NO_MEMORY;
     for (size_t i = 0; i < d->n_nodes; i++)
         c->name[i] = d->nodes[i].name;
     for (size_t i = 0; i < d->n_dampers; i++)
@@ -236,10 +253,9 @@ static tacet_status gather(check *c)
             c->name[d->n_nodes + i] = damper_ring_name(&d->dampers[i], c->ring[i]);
     for (size_t i = 0; i < c->n; i++)
         c->group[i] = i;
-    return TACET_OK;
 }
 
-static void check_all(const check *c)
+static void check_all(check *c)
 {
     const tacet_train_def *d = c->d;
     char path[PATH];
@@ -263,16 +279,13 @@ static void check_all(const check *c)
 void tacet_train_def_check(const tacet_train_def *d, const tacet_reporter *r)
 {
     check c = {.d = d, .r = r};
-    if (d->n_nodes == 0)
+    if (d->n_nodes == 0) {
         tacet_report(r, false, "train.nodes", "none; a train has one or more");
-    else if (d->n_nodes + d->n_dampers > TRAIN_NODES_MOST)
+    } else if (d->n_nodes + d->n_dampers > TRAIN_NODES_MOST) {
         tacet_report(r, false, "train.nodes", "%zu with damper rings; at most %d",
                      d->n_nodes + d->n_dampers, TRAIN_NODES_MOST);
-    else if (gather(&c) != TACET_OK)
-        tacet_report(r, false, "train", "no memory to check it");
-    else
+    } else {
+        gather(&c);
         check_all(&c);
-    free(c.name);
-    free(c.group);
-    free(c.ring);
+    }
 }

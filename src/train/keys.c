@@ -45,13 +45,13 @@ static const tacet_section node_section = {
 
 #define THROW_LENGTH(word, member, what)                                                           \
     {                                                                                              \
-        .key = word, .kind = TACET_FIELD_NUMBER, THROW(member), .fallback = "", LENGTH_MM,         \
-        .doc = what                                                                                \
+        .key = (word), .kind = TACET_FIELD_NUMBER, THROW(member), .fallback = "", LENGTH_MM,       \
+        .doc = (what)                                                                              \
     }
 #define THROW_BORE(word, member, what)                                                             \
     {                                                                                              \
-        .key = word, .kind = TACET_FIELD_NUMBER, THROW(member), .fallback = "0", BORE_MM,          \
-        .doc = what                                                                                \
+        .key = (word), .kind = TACET_FIELD_NUMBER, THROW(member), .fallback = "0", BORE_MM,        \
+        .doc = (what)                                                                              \
     }
 
 static const tacet_field throw_fields[] = {

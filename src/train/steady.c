@@ -71,16 +71,15 @@ bool steady_reserve(tacet_train_work *w)
     s->matrix = malloc(square);
     s->scratch = malloc(EXPM_MATRICES * square);
     s->newton = gsl_matrix_alloc(n, n);
-    s->pivots = gsl_permutation_alloc(n);
-    s->right = gsl_vector_alloc(n);
+    s->reflection = gsl_vector_alloc(n);
     s->solution = gsl_vector_alloc(n);
     s->steps = tacet_arena_alloc(w->arena, STEPS_KEPT * n * sizeof(double));
     s->sample = malloc(channels * w->most_samples * sizeof(double));
     s->coupling =
         malloc(SLOW_MODES_MOST * (SLOW_MODES_MOST + 1) / 2 * w->most_samples * sizeof(double));
     return s->step && s->evolve && s->state && s->start && s->defect && s->scale && s->mean &&
-           s->monodromy && s->matrix && s->scratch && s->newton && s->pivots && s->right &&
-           s->solution && s->steps && s->sample && s->coupling;
+           s->monodromy && s->matrix && s->scratch && s->newton && s->reflection && s->solution &&
+           s->steps && s->sample && s->coupling;
 }
 
 void steady_release(tacet_train_work *w)
@@ -89,8 +88,7 @@ void steady_release(tacet_train_work *w)
     if (s->step) gsl_odeiv2_step_free(s->step);
     if (s->evolve) gsl_odeiv2_evolve_free(s->evolve);
     if (s->newton) gsl_matrix_free(s->newton);
-    if (s->pivots) gsl_permutation_free(s->pivots);
-    if (s->right) gsl_vector_free(s->right);
+    if (s->reflection) gsl_vector_free(s->reflection);
     if (s->solution) gsl_vector_free(s->solution);
     free(s->monodromy);
     free(s->matrix);
@@ -371,8 +369,8 @@ static tacet_status make_newton(steady *s)
             gsl_matrix_set(q->newton, i, k,
                            x * (k == root ? q->load_unit : q->scale[k]) / q->scale[i]);
         }
-    int sign;
-    if (gsl_linalg_LU_decomp(q->newton, q->pivots, &sign)) return TACET_NOT_CONVERGED;
+    // by reflections: GSL's elimination allocates, and looks for no failure of that
+    if (gsl_linalg_QR_decomp(q->newton, q->reflection)) return TACET_NOT_CONVERGED;
     for (size_t i = 0; i < n; i++) {
         double pivot = gsl_matrix_get(q->newton, i, i);
         if (!isfinite(pivot)) return TACET_NOT_FINITE;
@@ -407,9 +405,8 @@ static tacet_status correct(steady *s)
     size_t n = q->model.size, root = q->model.root_angle;
     double largest = 0;
     for (size_t i = 0; i < n; i++)
-        gsl_vector_set(q->right, i, -q->defect[i] / q->scale[i]);
-    if (gsl_linalg_LU_solve(q->newton, q->pivots, q->right, q->solution))
-        return TACET_NOT_CONVERGED;
+        gsl_vector_set(q->solution, i, -q->defect[i] / q->scale[i]);
+    if (gsl_linalg_QR_svx(q->newton, q->reflection, q->solution)) return TACET_NOT_CONVERGED;
     learn(q, q->solution);
     if (q->n_steps == STEPS_KEPT) q->n_steps = 0;
     for (size_t i = 0; i < n; i++) {

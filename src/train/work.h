@@ -51,8 +51,7 @@ typedef struct {
     double period_s;
     double *monodromy, *matrix, *scratch;
     gsl_matrix *newton;
-    gsl_permutation *pivots;
-    gsl_vector *right, *solution;
+    gsl_vector *reflection, *solution; // of newton; right-hand side, then the step
     double *coupling; // of slow modes, [SLOW_MODES_MOST (SLOW_MODES_MOST + 1) / 2 * most_samples]
     double *sample;   // [(n + links + 1) * most_samples]: speeds, link torques, flywheel's angle
     double *steps;    // [STEPS_KEPT * size] corrections taken, over the scales

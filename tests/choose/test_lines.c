@@ -127,12 +127,29 @@ static void test_sample_take(void **state)
     assert_true(isnan(s.margin_db[4]));
 }
 
+// Why nothing is known goes with the speed.
+static void test_sample_says_why(void **state)
+{
+    (void)state;
+    static const tacet_why why[] = {TACET_WHY_UNREACHABLE, TACET_WHY_FAILED,
+                                    TACET_WHY_NO_REFERENCE};
+    sample s = sample_blank(100);
+    tacet_row row = {.n_bands = 3};
+    for (int b = 0; b < 3; b++)
+        tacet_band_no_verdict(why[b], &row.bands[b]);
+    sample_take(&s, &row);
+    for (int b = 0; b < 3; b++) {
+        assert_true(isnan(s.margin_db[b]));
+        assert_int_equal(s.why[b], why[b]);
+    }
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_mark_lines),  cmocka_unit_test(test_enter_and_leave),
         cmocka_unit_test(test_cross),       cmocka_unit_test(test_speeds_sort),
-        cmocka_unit_test(test_sample_take),
+        cmocka_unit_test(test_sample_take), cmocka_unit_test(test_sample_says_why),
     };
     return cmocka_run_group_tests(tests, set_up, tear_down);
 }

@@ -241,7 +241,8 @@ static void test_open_ends(void **state)
     assert_int_equal(find(&v, 700, 1000, 100, &found), TACET_OK);
     assert_int_equal(found.n, 1);
     assert_range(&found.at[0], 700, 1000, 1e-9);
-    assert_true(found.at[0].low_open && found.at[0].high_open);
+    assert_int_equal(found.at[0].low_open, TACET_OPEN_SPEEDS);
+    assert_int_equal(found.at[0].high_open, TACET_OPEN_SPEEDS);
     tacet_arena_destroy(v.arena);
 }
 
@@ -260,8 +261,8 @@ static void test_open_to_the_unknown(void **state)
     assert_int_equal(find(&v, 700, 1400, 50, &found), TACET_OK);
     assert_int_equal(found.n, 1);
     assert_range(&found.at[0], 931.7, 1200, 0.1);
-    assert_true(found.at[0].low_open);
-    assert_false(found.at[0].high_open);
+    assert_int_equal(found.at[0].low_open, TACET_OPEN_FAILED);
+    assert_int_equal(found.at[0].high_open, TACET_OPEN_NOT);
     tacet_arena_destroy(v.arena);
 }
 

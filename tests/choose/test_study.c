@@ -113,7 +113,7 @@ static void test_order_nine_sevenths(void **state)
                 roll = &k.screen->no_go[j];
             }
         assert_non_null(roll);
-        assert_true(roll->low_open);
+        assert_int_equal(roll->low_open, TACET_OPEN_SPEEDS);
         assert_false(roll->high_open);
         assert_near(roll->high_rad_per_s / RPM, 882, 0.005, 0);
         assert_near(roll->leading_order, 9. / 7, 1e-12, 0);

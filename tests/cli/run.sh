@@ -1,8 +1,8 @@
 #!/bin/sh
 # usage: sh run.sh CASES TACET ROOT [JSON_PATHS]
 # Runs the commands of a case file in a scratch folder and compares.
-#   $ command      run by sh; `tacet` is TACET; tests/cli/studies is copied in, patterns/ and
-#                  tests/cli/json are linked, `json-paths` is JSON_PATHS
+#   $ command      run by sh; `tacet` is TACET; the folder `studies` beside the cases' own is copied
+#                  in, patterns/ and tests/cli/json are linked, `json-paths` is JSON_PATHS
 #   = 2            its exit code (0 when not said)
 #   > text         its standard output, line by line; none: must be empty
 #   ! text         its standard error, line by line; none: must be empty
@@ -17,7 +17,7 @@ trap 'chmod -R u+w "$scratch"; rm -rf "$scratch"' EXIT
 mkdir "$scratch/bin" "$scratch/desk"
 ln -s "$tacet" "$scratch/bin/tacet"
 [ $# -lt 4 ] || ln -s "$(realpath "$4")" "$scratch/bin/json-paths"
-cp "$root"/tests/cli/studies/* "$scratch/desk/"
+cp "$(dirname "$cases")"/../studies/* "$scratch/desk/"
 ln -s "$root/patterns" "$scratch/desk/patterns"
 ln -s "$root/tests/cli/json" "$scratch/desk/json"
 cd "$scratch/desk"

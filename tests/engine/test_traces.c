@@ -268,6 +268,30 @@ static char *made(const char *head, int n, double kpa)
     return out;
 }
 
+// Each column of its own load at any speed, or of its own speed: every load is there at every
+// speed.
+static void test_traces_too_many_places(void **state)
+{
+    (void)state;
+    static char head[8000] = "angle_deg", keep[20000];
+    char *at = head + strlen(head);
+    for (int i = 1; i <= 65; i++)
+        at += sprintf(at, ",pressure_kpa:manifold_kpa=%d", i);
+    for (int i = 1; i <= 65; i++)
+        at += sprintf(at, ",pressure_kpa:manifold_kpa=1:rpm=%d", 100 * i);
+    memcpy(keep, made("angle_deg,pressure_kpa", 1, 200), sizeof keep);
+    FILE *f = opened("fired.csv");
+    fprintf(f, "%s\n", head);
+    for (int deg = -360; deg <= 360; deg += 5) {
+        fprintf(f, "%d", deg);
+        for (int i = 0; i < 130; i++)
+            fputs(",9", f);
+        fputc('\n', f);
+    }
+    assert_int_equal(fclose(f), 0);
+    refused(NULL, keep, "fired.csv: 65 loads at 65 speeds; at most 4096");
+}
+
 #define TWO "angle_deg,pressure_kpa:manifold_kpa=30,pressure_kpa:manifold_kpa=90"
 static void test_traces_refused(void **state)
 {
@@ -286,6 +310,11 @@ static void test_traces_refused(void **state)
     refused(made("angle_deg,pressure_kpa:manifold_kpa=30:run=2", 1, 200), keep, "allowed are");
     refused(made("angle_deg,pressure_kpa:manifold_kpa=30:next=maybe", 1, 200), keep,
             "next is fire or skip");
+    // numbers that overflow when they are turned into SI units or interpolated
+    refused(made("angle_deg,pressure_kpa:manifold_kpa=1e306", 1, 200), keep, "0 to 100000 kPa");
+    refused(made("angle_deg,pressure_kpa:manifold_kpa=9:rpm=1e300", 1, 200), keep, "1 to 100000");
+    refused(made("angle_deg,pressure_kpa:manifold_kpa=9:rpm=0", 1, 200), keep, "1 to 100000");
+    refused(made("angle_deg,pressure_kpa:manifold_kpa=9:fuel_mg=1e308", 1, 200), keep, "0 to 1e9");
     refused(keep, made("angle_deg,pressure_kpa:run=2", 1, 200),
             "no column for pressure_kpa:manifold_kpa=30:run=1:next=fire");
     refused(keep, made("angle_deg,pressure_kpa:run=0", 1, 200), "a whole number from 1");
@@ -325,10 +354,9 @@ static void test_traces_plain(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(test_traces_of_the_model),
-        cmocka_unit_test(test_traces_two_stroke),
-        cmocka_unit_test(test_traces_refused),
-        cmocka_unit_test(test_traces_plain),
+        cmocka_unit_test(test_traces_of_the_model),    cmocka_unit_test(test_traces_two_stroke),
+        cmocka_unit_test(test_traces_refused),         cmocka_unit_test(test_traces_plain),
+        cmocka_unit_test(test_traces_too_many_places),
     };
     return cmocka_run_group_tests(tests, make_folder, remove_folder);
 }

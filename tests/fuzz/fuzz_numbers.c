@@ -34,7 +34,7 @@ static void check_format(double value)
     REQUIRE(tacet_number_format(value, text) == text && strlen(text) < sizeof text);
     REQUIRE(tacet_number_parse(text, &back));
     REQUIRE(back == value);
-    for (int figures = 1; figures <= 17; figures++) {
+    for (int figures = 1; figures <= 17; figures += 4) {
         tacet_number_format_short(value, figures, text);
         REQUIRE(memchr(text, '\0', sizeof text));
         double half_of_last = 0.5001 * pow(10, 1 - figures) + 1e-15;

@@ -3,8 +3,9 @@
 #include "cli/cli.h"
 #include "fuzz.h"
 
-#define MOST_WORDS     24
-#define LONGEST_SEARCH 20
+#define MOST_WORDS       24
+#define LONGEST_SEARCH   20
+#define MOST_FREQUENCIES 500
 
 static cli_session study; // read once, assembled
 
@@ -83,9 +84,14 @@ static int candidate(const cli_call *call, const cli_session *s)
 // worth the time of a fuzzer.
 static bool is_slow(const cli_call *call)
 {
-    const char *maker = cli_value(call, "maker");
     unsigned fires, length = 0;
-    if (call->command == &cli_modes_command) return !cli_given(call, "frequencies");
+    if (call->command == &cli_modes_command) {
+        const char *text = cli_value(call, "frequencies");
+        double v[3] = {0, 0, 1};
+        if (text && sscanf(text, "%lf:%lf:%lf", &v[0], &v[1], &v[2]) < 3) return false;
+        return !text || !(v[1] <= MOST_FREQUENCIES * v[2]);
+    }
+    const char *maker = cli_value(call, "maker");
     return maker && strcmp(maker, "necklaces") == 0 && call->n_operands &&
            tacet_density_parse(call->operand[0], &fires, &length) && length > LONGEST_SEARCH;
 }

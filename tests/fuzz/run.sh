@@ -1,5 +1,6 @@
 #!/bin/bash
-# usage: tests/fuzz/run.sh [SECONDS] [TARGET ..]   fuzzes each target for SECONDS (30), two at a time
+# usage: tests/fuzz/run.sh [SECONDS] [TARGET ..]
+#        fuzzes each target for SECONDS (30), two at a time
 #        tests/fuzz/run.sh keep [TARGET ..]        adds what the last runs reached anew to corpus/
 # Builds with clang in ./build-fuzz, where new inputs gather; only `keep` changes the tree. Prints
 # runs, coverage and findings; exit 1 on a finding, which stays in build-fuzz/found/TARGET/.
@@ -23,7 +24,9 @@ ninja -C $build --quiet fuzz-targets tacet
 
 # The keys of a study come from the program itself, the rest by hand.
 {
-    $build/tacet keys --csv | awk -F, 'NR > 1 { n = split($1, part, "."); sub(/\[\]/, "", part[n]); print part[n] }' | sort -u
+    $build/tacet keys --csv |
+        awk -F, 'NR > 1 { n = split($1, part, "."); sub(/\[\]/, "", part[n]); print part[n] }' |
+        sort -u
     printf '%s\n' ': ' '- ' '[]' '{}' '&a ' '*a' '!!' '"' "'" '|' '>' '<<: ' '---' 1e3 0:10:1 null \
         roll-torque link-torque: node-angle: throw1 flywheel .words: x..x
 } | sed 's/[\\"]/\\&/g; s/.*/"&"/' >$build/study.dict
@@ -38,15 +41,20 @@ printf '"%s"\n' pressure_kpa :manifold_kpa= :rpm= :after= :next=fire :next=skip 
 
 seeds() { # folders whose files a target starts from
     ls -d $here/corpus/"$1" $here/found/"$1" 2>/dev/null || true
-    case $1 in study | model) ls -d tests/study/good tests/study/broken patterns tests/cli/studies ;; esac
+    case $1 in
+    study | model) ls -d tests/study/good tests/study/broken patterns tests/cli/studies ;;
+    esac
 }
 fuzz() {
-    local target=$1 longest=400
+    local target=$1 longest=400 old
     case $target in study | model) longest=8000 ;; traces) longest=12000 ;; book) longest=2000 ;; esac
     mkdir -p $build/corpus/"$target" $build/found/"$target"
+    for old in "$build/found/$target"/*; do # findings that were mended since
+        [ ! -f "$old" ] || ! $build/tests/fuzz/fuzz_"$target" "$old" >/dev/null 2>&1 || rm "$old"
+    done
     # shellcheck disable=SC2046 # one word a folder
     $build/tests/fuzz/fuzz_"$target" -seed=$seed -max_total_time="$mode" -max_len=$longest \
-        -timeout=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
+        -timeout=60 -report_slow_units=60 -rss_limit_mb=1500 -malloc_limit_mb=256 -print_final_stats=1 \
         $([ -f $build/"$target".dict ] && echo -dict=$build/"$target".dict) \
         -artifact_prefix=$build/found/"$target"/ \
         $build/corpus/"$target" $(seeds "$target") >$build/"$target".log 2>&1 || true
@@ -60,7 +68,8 @@ report() {
     for found in "$build/found/$1"/*; do
         [ -f "$found" ] || continue
         wrong=1
-        echo "FOUND by $1: $(grep -aE 'broken promise|runtime error|ERROR:|SUMMARY' "$log" | head -2)"
+        found=$(grep -aE 'broken promise|runtime error|ERROR:|SUMMARY' "$log" | head -2)
+        echo "FOUND by $1: $found"
         echo "  replay: $build/tests/fuzz/fuzz_$1 $found"
     done
     # a run that ended before its time without an input has its reason in the log
@@ -70,7 +79,9 @@ report() {
 if [ "$mode" = keep ]; then
     for target; do
         mkdir -p $here/corpus/"$target"
-        $build/tests/fuzz/fuzz_"$target" -merge=1 $here/corpus/"$target" $build/corpus/"$target"
+        # shellcheck disable=SC2046 # one word a folder
+        $build/tests/fuzz/fuzz_"$target" -merge=1 -use_counters=0 -set_cover_merge=1 \
+            $here/corpus/"$target" $build/corpus/"$target" $(seeds "$target")
     done
     exit
 fi

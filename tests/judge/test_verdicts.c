@@ -131,6 +131,20 @@ static void test_reference_not_finite_or_not_asked(void **state)
     assert_true(isnan(r.reference));
 }
 
+// The reference's own level has the margin that the study states, to the last bit.
+static void test_margin_of_the_reference(void **state)
+{
+    (void)state;
+    tacet_band b = {.limit_rms = NAN, .over_all_fire_db = 6, .floor_rms = 1e-9, .reserve_db = 3};
+    for (int i = 1; i <= 1000; i++) {
+        double reference = 0.37 * i;
+        tacet_band_level level = {.nominal = 1, .dispersed = reference, .has_line = true};
+        tacet_band_result r;
+        tacet_band_judge(&b, &level, &reference, &r);
+        assert_true(r.margin_db == 6);
+    }
+}
+
 static double limit_of(double limit_rms, double db, double floor, double reference)
 {
     tacet_band b = {
@@ -213,6 +227,7 @@ int main(void)
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_truth_table),
         cmocka_unit_test(test_reference_not_finite_or_not_asked),
+        cmocka_unit_test(test_margin_of_the_reference),
         cmocka_unit_test(test_limit_resolves),
         cmocka_unit_test(test_edges_of_the_verdict),
         cmocka_unit_test(test_result_keeps_its_level),

@@ -92,9 +92,19 @@ static void test_book_all_problems(void **state)
     assert_problem(0, false, 1, 3, "letter '0' at position 3");
     assert_problem(1, false, 2, 3, "never fires");
     assert_problem(2, false, 3, 5, "':' in a name");
-    assert_problem(3, false, 5, 1, "the name 'same' again; line 4");
+    assert_problem(3, false, 5, 8, "the name 'same' again; line 4");
     assert_problem(4, true, 6, 1, "the same pattern as in line 5");
     assert_problem(5, false, 7, 2, "byte 0x01");
+}
+
+static void test_book_name_before_word(void **state)
+{
+    (void)state;
+    tacet_words w;
+    assert_int_equal(read_text("x. one\n  half ..x\nhalf full\n", &w), TACET_BAD_INPUT);
+    assert_int_equal(tacet_problems_kept(problems), 2);
+    assert_problem(0, false, 2, 3, "a line is a word and then its name: ..x half");
+    assert_problem(1, false, 3, 1, "letter 'h' at position 1");
 }
 
 static void test_book_same_word_is_a_warning(void **state)
@@ -298,6 +308,8 @@ int main(void)
     const struct CMUnitTest tests[] = {
         TEST(test_book),
         TEST(test_book_all_problems),
+
+        TEST(test_book_name_before_word),
         TEST(test_book_same_word_is_a_warning),
         TEST(test_book_empty),
         TEST(test_book_limits),

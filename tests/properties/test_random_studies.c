@@ -134,6 +134,55 @@ static void check_work(trial *t, const subject *s, const tacet_row *row)
                 1e-6);
 }
 
+// Reciprocating inertia m x'^2 of the exact slider-crank at crank angle `a` from piston top: the
+// piston pin runs at e beside the crank's axis, on the side to which the crank pin moves, so with
+// the pin at phi from upright x' = r sin phi + (r sin phi - e) r cos phi / sqrt(l^2 - (r sin phi -
+// e)^2), and top is where crank and rod are in line, sin phi = e / (l + r).
+static double inertia_of(const plan *p, double a)
+{
+    double r = p->stroke_mm / 2e3, l = p->rod_mm * 1e-3, e = p->offset_mm * 1e-3;
+    double phi = a + asin(e / (l + r)), side = r * sin(phi) - e;
+    double rise = r * sin(phi) + side * r * cos(phi) / sqrt(l * l - side * side);
+    return p->mass_kg * rise * rise;
+}
+
+// At constant speed W what drives a throw is gas torque less J'/2 W^2 of its cylinders: its lines
+// by quadrature against those that the solution was made from.
+static void check_drive(trial *t, const subject *s)
+{
+    enum { SAMPLES = 8192, LINES = 12 };
+    static double angle[SAMPLES], gas[SAMPLES], sum[SAMPLES];
+    const tacet_response *r = tacet_workspace_response(s->d.work);
+    const tacet_engine *en = tacet_model_engine(s->d.model);
+    const char *node = tacet_train_node_name(r->train, r->throw_node[0]);
+    double W = r->speed_rad_per_s, off = 0, largest = 0, mean_inertia = 0;
+    memset(sum, 0, sizeof sum);
+    for (unsigned slot = 0; slot < s->p.cylinders; slot++) {
+        if (strcmp(tacet_engine_node(en, slot), node) != 0) continue;
+        for (int k = 0; k < SAMPLES; k++)
+            angle[k] = 2 * M_PI * s->roll->revolutions * k / SAMPLES;
+        tacet_engine_gas_torque(en, tacet_workspace_engine(s->d.work), slot, SAMPLES, angle, gas);
+        for (int k = 0; k < SAMPLES; k++) {
+            double a = angle[k] - tacet_engine_firing_angle(en, slot), h = 1e-4;
+            double slope = (inertia_of(&s->p, a + h) - inertia_of(&s->p, a - h)) / (2 * h);
+            sum[k] += gas[k] - 0.5 * slope * W * W;
+            mean_inertia += inertia_of(&s->p, a) / SAMPLES;
+        }
+    }
+    for (size_t n = 1; n <= LINES; n++) {
+        double complex line = 0;
+        double w = W / r->revolutions * (double)n;
+        for (int k = 0; k < SAMPLES; k++)
+            line += 2 * sum[k] * cexp(-I * (2 * M_PI * (double)n * k / SAMPLES)) / SAMPLES;
+        double complex drive =
+            r->piston_torque_Nm[0].line[n] -
+            mean_inertia * w * w * r->motion->angle_rad[r->throw_node[0]].line[n];
+        off = fmax(off, cabs(line - drive));
+        largest = fmax(largest, cabs(line));
+    }
+    trial_below(t, "what drives a throw at constant speed", off / largest, 2e-3);
+}
+
 // Band level from the lines, and rms of the lines against that of samples (Parseval).
 static void check_levels(trial *t, const subject *s, const tacet_row *row)
 {
@@ -353,6 +402,7 @@ static void run(trial *t)
             check_finite(t, r, &row);
             check_energy(t, &s, TACET_LEVEL_CONSTANT, false);
             check_work(t, &s, &row);
+            check_drive(t, &s);
             check_levels(t, &s, &row);
             trial_below(t, "roll torque is loss of momentum", demo_roll_mismatch(&s.d), 1e-9);
             check_turned_word(t, &s, &row);
@@ -373,5 +423,5 @@ static void run(trial *t)
 
 int main(int argc, char **argv)
 {
-    return trial_run(argc, argv, 1, 24, run);
+    return trial_run(argc, argv, 1, 32, run);
 }

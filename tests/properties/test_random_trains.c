@@ -7,7 +7,13 @@
 
 typedef long double complex wide;
 
-static const train_wish any = {.most_nodes = 24};
+// Every tenth train may be a large one.
+static const train_wish any = {.most_nodes = 24}, large = {.most_nodes = 100};
+
+static const train_wish *wish_of(const trial *t)
+{
+    return t->seed % 10 ? &any : &large;
+}
 
 // ---- one random load case -----------------------------------------------------------------------
 
@@ -203,7 +209,7 @@ static double motions_apart(const rig *a, const rig *b)
 static void check_scaling(trial *t, chance train, chance load, const rig *r)
 {
     double s = chance_log(&t->chance, 1e-3, 1e3), speed;
-    bench_train *b = random_train(train, &any);
+    bench_train *b = random_train(train, wish_of(t));
     for (size_t i = 0; i < b->d.n_nodes; i++) {
         b->node[i].inertia_kgm2 *= s;
         b->node[i].damping_Nms_per_rad *= s;
@@ -230,7 +236,7 @@ static void check_scaling(trial *t, chance train, chance load, const rig *r)
 // One gear turned the other way round: what lies beyond it turns backwards, and nothing else.
 static void check_sense(trial *t, chance train, chance load, const rig *r)
 {
-    bench_train *b = random_train(train, &any);
+    bench_train *b = random_train(train, wish_of(t));
     double speed;
     if (b->d.n_links == 0) {
         free(b);
@@ -259,7 +265,7 @@ static void check_sense(trial *t, chance train, chance load, const rig *r)
 // Nodes, links and throws in another order.
 static void check_order(trial *t, chance train, chance load, const rig *r)
 {
-    bench_train *b = random_train(train, &any);
+    bench_train *b = random_train(train, wish_of(t));
     unsigned n = (unsigned)b->d.n_nodes, m = (unsigned)b->d.n_links;
     unsigned to[TRAINS_MOST], link_to[TRAINS_MOST];
     double speed;
@@ -267,7 +273,7 @@ static void check_order(trial *t, chance train, chance load, const rig *r)
         to[i] = link_to[i] = i;
     chance_permute(&t->chance, to, n);
     chance_permute(&t->chance, link_to, m);
-    bench_train *copy = random_train(train, &any); // its names stay where they are
+    bench_train *copy = random_train(train, wish_of(t)); // its names stay where they are
     for (unsigned i = 0; i < n; i++)
         b->node[to[i]] = copy->node[i];
     for (unsigned i = 0; i < m; i++)
@@ -286,7 +292,8 @@ static void check_order(trial *t, chance train, chance load, const rig *r)
             worst =
                 fmax(worst, lines_apart(&q->m.link_torque_Nm[at], &r->m.link_torque_Nm[e], 1, 0));
         }
-        trial_below(t, "the order of the file does not matter", worst, 1e-9);
+        // rounding is magnified next to a mode without damping: 1e-9 in one train of a thousand
+        trial_below(t, "the order of the file does not matter", worst, 1e-8);
     }
     rig_free(q);
     free(copy);
@@ -407,7 +414,7 @@ static void check_march(trial *t)
 static void run(trial *t)
 {
     chance train = t->chance, load = {.state = t->seed ^ 0x5bd1e995u}, kept = load;
-    bench_train *b = random_train(train, &any);
+    bench_train *b = random_train(train, wish_of(t));
     double speed;
     random_train_write(t, b);
     rig *r = loaded(b, &load, &speed);

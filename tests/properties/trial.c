@@ -1,4 +1,5 @@
 #include "trial.h"
+#include <signal.h>
 #include <stdarg.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -68,6 +69,13 @@ void trial_count(const char *what)
 }
 
 static const trial *unfinished;
+static volatile sig_atomic_t stopped;
+
+static void stop(int signal) // after the trial in hand
+{
+    (void)signal;
+    stopped = 1;
+}
 
 static void print_unfinished(void) // an assertion outside the properties ended the program
 {
@@ -89,13 +97,15 @@ static void print_tally(void)
 
 int trial_run(int argc, char **argv, uint64_t first, unsigned n, void (*run)(trial *t))
 {
-    unsigned broken = 0;
+    unsigned broken = 0, done = 0;
     if (argc > 1) first = strtoull(argv[1], NULL, 10);
     if (argc > 1) n = argc > 2 ? (unsigned)strtoul(argv[2], NULL, 10) : 1;
     if (atexit(print_unfinished)) return 2;
     setvbuf(stdout, NULL, _IOLBF, 0);
-    for (unsigned i = 0; i < n; i++) {
-        trial t = {.seed = first + i, .chance = {.state = first + i}};
+    signal(SIGINT, stop);
+    signal(SIGTERM, stop);
+    for (; done < n && !stopped; done++) {
+        trial t = {.seed = first + done, .chance = {.state = first + done}};
         trial_write(&t, "# seed %llu\n", (unsigned long long)t.seed);
         unfinished = &t;
         run(&t);
@@ -107,6 +117,6 @@ int trial_run(int argc, char **argv, uint64_t first, unsigned n, void (*run)(tri
         free(t.text);
     }
     print_tally();
-    printf("%u trials, %u broken\n", n, broken);
-    return broken ? 1 : 0;
+    printf("%u trials, %u broken\n", done, broken);
+    return broken || done < n ? 1 : 0;
 }

@@ -2,8 +2,8 @@
 # usage: page.sh TESTS-FOLDER
 # The page of witnesses (published/README.md) keeps up with the tests and with the program:
 # - every file and test function that it names exists: `folder/file: function, function` between
-#   backquotes. Functions of a C file must stand in it twice, defined and run, so that the page cannot
-#   lean on a test that is never called;
+#   backquotes. Functions of a C file must stand in it twice, defined and run, so that the page
+#   cannot lean on a test that is never called;
 # - every number in the JSON (json_paths of cli/json), every column and every quantity stands in it,
 #   between backquotes.
 set -eu
@@ -11,7 +11,8 @@ cd "$1"
 page=published/README.md
 status=0
 
-tr '\n' ' ' <"$page" | grep -o '`[a-z_]*/[a-z_./0-9]*\.[a-z]*\(:[a-z_0-9, ]*\)\{0,1\}`' | tr -d '`' |
+tr '\n' ' ' <"$page" |
+    grep -o '`[a-z_]*/[a-z_./0-9]*\.[a-z]*\(:[a-z_0-9, ]*\)\{0,1\}`' | tr -d '`' |
     awk -F': *' '
         function count(file, name,   line, n) {
             while ((getline line < file) > 0)
@@ -27,7 +28,9 @@ tr '\n' ' ' <"$page" | grep -o '`[a-z_]*/[a-z_./0-9]*\.[a-z]*\(:[a-z_0-9, ]*\)\{
             for (i = 1; i <= n; i++) {
                 names++
                 sub(/ *$/, "", name[i])
-                if (count($1, name[i]) < ($1 ~ /\.c$/ ? 2 : 1)) { print $1 ": no test " name[i]; wrong++ }
+                if (count($1, name[i]) >= ($1 ~ /\.c$/ ? 2 : 1)) continue
+                print $1 ": no test " name[i]
+                wrong++
             }
         }
         END {

@@ -1,8 +1,8 @@
 # The list of errors -> a folder an entry below SCRATCH with name, file, tests (program and test a
 # line) and copy.c, the file with its error; and a folder healthy-<n> for each program, with an
 # untouched copy and all tests of that program. Folders go to SCRATCH/errors and SCRATCH/healthy.
-# Environment: SOURCE, SCRATCH, ONLY (names between blanks; empty: all). Fails when the list does not
-# fit the source.
+# Environment: SOURCE, SCRATCH, ONLY (names between blanks; empty: all). Fails when the list does
+# not fit the source.
 
 function fail(text) {
     print "sabotage: " (entry["name"] == "" ? "line " NR : entry["name"]) ": " text
@@ -94,6 +94,6 @@ BEGIN {
 
 END {
     finish()
-    if (!entries) fail("nothing to do")
+    if (!entries) fail(ENVIRON["ONLY"] == "" ? "an empty list" : "no error of that name")
     exit failed
 }

@@ -79,9 +79,11 @@ static void test_summary_table(void **state)
 static void test_no_go_table(void **state)
 {
     (void)state;
-    expect_csv("no-go", "candidate,band,from_rpm,to_rpm,open,worst_margin_db,at_rpm,leading_order\n"
-                        "1/2,pump coupling,900,918.25,below,-6.25,900,1.5\n"
-                        "\"outer, \"\"pair\"\"\",pump coupling,940,960,both ends,-2,950,1\n");
+    expect_csv("no-go",
+               "candidate,band,from_rpm,to_rpm,open,beyond,worst_margin_db,at_rpm,leading_order\n"
+               "1/2,pump coupling,900,918.25,below,not screened,-6.25,900,1.5\n"
+               "\"outer, \"\"pair\"\"\",pump coupling,940,960,both ends,\"out of reach, not "
+               "solved\",-2,950,1\n");
 }
 
 static void test_agreement_table(void **state)

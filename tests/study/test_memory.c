@@ -9,6 +9,7 @@
 static long left = -1;  // allocations that still succeed; -1: all
 static bool fail_once;  // only one fails, or all from there on
 static bool has_failed; // one did
+static size_t asked;    // bytes of all allocations of the arenas
 
 static bool fails(void)
 {
@@ -47,6 +48,7 @@ void *__real_aligned_alloc(size_t alignment, size_t bytes);
 void *__wrap_aligned_alloc(size_t alignment, size_t bytes);
 void *__wrap_aligned_alloc(size_t alignment, size_t bytes)
 {
+    asked += bytes;
     return fails() ? NULL : __real_aligned_alloc(alignment, bytes);
 }
 
@@ -120,9 +122,31 @@ static void test_broken_studies(void **state)
     check_each("broken/name-twice.yaml");
 }
 
+// Twelve letters stand for 99901 values; a list of many such is refused before it is filled.
+static void test_ranges_in_a_list(void **state)
+{
+    (void)state;
+    static char text[8192] = "screen: {speeds_rpm: [";
+    for (size_t i = 0; i < 500; i++)
+        strcat(text, "10:1009:0.01, ");
+    strcat(text, "10]}\n");
+    tacet_problems *p = tacet_problems_create();
+    tacet_study *s = NULL;
+    bool said = false;
+    asked = 0;
+    assert_int_equal(tacet_study_read_text(text, strlen(text), "study.yaml", p, &s),
+                     TACET_BAD_INPUT);
+    for (size_t i = 0; i < tacet_problems_kept(p); i++)
+        said |= strstr(tacet_problems_at(p, i)->text, "more than 100000 values") != NULL;
+    tacet_problems_destroy(p);
+    assert_true(said);
+    if (asked > 10u << 20) fail_msg("%zu bytes for a file of %zu", asked, strlen(text));
+}
+
 static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_good_study),
     cmocka_unit_test(test_broken_studies),
+    cmocka_unit_test(test_ranges_in_a_list),
 };
 
 int main(int argc, char **argv)

@@ -7,6 +7,7 @@
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/stat.h>
 #include <unistd.h>
 
 static const char *good_folder; // tests/study/good
@@ -210,6 +211,27 @@ static void test_fingerprint_counts_books(void **state)
     assert_true(before == fingerprint_of(study));
 }
 
+// A folder may be named as a book is, and a book so twice over.
+static void test_book_in_a_folder_of_its_name(void **state)
+{
+    (void)state;
+    char inside[64];
+    snprintf(inside, sizeof inside, "%s/all.words", folder);
+    assert_int_equal(mkdir(inside, 0700), 0);
+    write_file("all.words/own.words.words", "x.  half\n");
+    char study[64];
+    strcpy(study,
+           write_file("study.yaml", minimal_with("  patterns: [x., all.words/own.words.words, "
+                                                 "'all.words/own.words.words:half']\n")));
+    uint64_t before = fingerprint_of(study);
+    write_file("all.words/own.words.words", "x.  half\nx..  third\n");
+    assert_true(before != fingerprint_of(study));
+    snprintf(inside, sizeof inside, "%s/all.words/own.words.words", folder);
+    assert_int_equal(unlink(inside), 0);
+    *strrchr(inside, '/') = '\0';
+    assert_int_equal(rmdir(inside), 0);
+}
+
 static void refuse(const char *path, tacet_status status, int line, const char *text)
 {
     tacet_problems *p = tacet_problems_create();
@@ -349,6 +371,7 @@ static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_full_has_every_key),
     cmocka_unit_test(test_where_values_come_from),
     cmocka_unit_test(test_fingerprint_counts_books),
+    cmocka_unit_test(test_book_in_a_folder_of_its_name),
     cmocka_unit_test(test_files_that_are_none),
     cmocka_unit_test(test_standard_input),
     cmocka_unit_test(test_text),

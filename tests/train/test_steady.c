@@ -72,6 +72,22 @@ static void test_same_model(void **state)
     check_same_model(r, 1300);
 }
 
+// The march carries the arms of lossy links in pairs: one, two and three of them.
+static void test_any_number_of_lossy_links(void **state)
+{
+    (void)state;
+    const double J[] = {0.1, 0.2, 0.3, 0.5}, k[] = {2e4, 3e4, 5e4};
+    const size_t first[] = {0};
+    for (size_t links = 1; links <= 3; links++) {
+        bench_train *b = bench_chain(links + 1, J, k);
+        for (size_t e = 0; e < links; e++)
+            b->link[e].loss_factor = 0.2;
+        rig *r = rig_new(b, 1, first, 1, 24);
+        some_torque(r);
+        check_same_model(r, 900);
+    }
+}
+
 // The start is the harmonic solution, which a frozen march has only to confirm. Without it: lines
 // far fewer than the torque has make a poor start, and the march must find the same lines all the
 // same.
@@ -339,6 +355,7 @@ static void test_what_goes_wrong(void **state)
 
 static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_same_model),
+    cmocka_unit_test(test_any_number_of_lossy_links),
     cmocka_unit_test(test_shooting_from_a_poor_start),
     cmocka_unit_test(test_two_inertias),
     cmocka_unit_test(test_rigid_is_exact),
