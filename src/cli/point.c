@@ -99,8 +99,10 @@ const cli_command cli_point_command = {
     .operands = "STUDY",
     .doc = "one pattern at one speed and torque, in full",
     .about = "The verdict comes first, then charge and fuel, bands, limits, and the largest lines "
-             "of every\njudged quantity beside those of the engine firing on all cylinders. With "
-             "--strict the exit code\nis 1 when the verdict is not clear.\n",
+             "of every\njudged quantity beside those of the engine firing on all cylinders. Bands "
+             "tell also what one\ndead cylinder would do. With a body: the mount forces by order, "
+             "what reaches each point by which\npath, and comfort. With --strict the exit code is "
+             "1 when the verdict is not clear.\n",
     .examples = examples,
     .options = options,
     .least_operands = 1,

@@ -13,6 +13,9 @@ typedef struct { // lines of one quantity, of the condition and of all-fire
     double *reference_amplitude;           // [n]; 0: all-fire has no such order
 } point_quantity;
 
+typedef struct point_body point_body; // point_body.h
+#define POINT_EXPOSURE_H 8            // hours without a break that a vibration dose is told for
+
 typedef struct {
     const cli_call *call;
     const cli_session *s;
@@ -23,6 +26,8 @@ typedef struct {
     tacet_row row, all_fire;
     point_quantity *quantity; // what bands and limits judge, and roll torque
     size_t n_quantities;      // 0: not solved
+    tacet_one_dead one_dead;
+    point_body *body; // NULL: the study has none
     bool refereed;
     tacet_status referee_status;
     tacet_agreement agreement;
@@ -30,6 +35,10 @@ typedef struct {
 
 // Solves every placement and keeps the worst, with the lines of every quantity beside all-fire's.
 int point_solve(point *p);
+// Band levels of all-fire and with one cylinder dead, beside the condition's.
+double point_all_fire_level(const point *p, size_t band); // NAN: not known
+void point_write_one_dead(const point *p);
+void point_one_dead_json(tacet_json *j, const point *p);
 int point_write_text(const point *p);
 int point_write_csv(const point *p); // a line of a quantity a row
 int point_write_json(const point *p, FILE *to);

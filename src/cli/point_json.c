@@ -1,5 +1,5 @@
 // How tacet point writes its condition as JSON, and its folder.
-#include "cli/point.h"
+#include "cli/point_body.h"
 #include <math.h>
 #include <string.h>
 
@@ -57,6 +57,8 @@ int point_write_json(const point *p, FILE *to)
     tacet_row_json(&j, p->s->model, &p->condition, &p->row, a, why);
     tacet_json_put_number(&j, "nearest_reachable_nm", point_reachable_Nm(p)); // null: see reach
     put_quantities(&j, p);
+    point_body_json(&j, p);
+    point_one_dead_json(&j, p);
     return cli_end_json(&j);
 }
 

@@ -1,5 +1,5 @@
 // Solving the condition of tacet point.
-#include "cli/point.h"
+#include "cli/point_body.h"
 #include <math.h>
 
 static const char *quantity_name(const point *p, tacet_quantity_ref q)
@@ -117,17 +117,32 @@ static int take_lines(point *p, const reference *kept)
     return CLI_DONE;
 }
 
+static int solve_one_dead(point *p)
+{
+    tacet_status status =
+        tacet_solve_one_dead(p->s->model, &p->condition, p->level, p->s->work, &p->one_dead);
+    return status == TACET_OK ? CLI_DONE : cli_failed(status, NULL);
+}
+
 int point_solve(point *p)
 {
     int code = list_quantities(p);
+    if (code == CLI_DONE) code = point_body_start(p);
     if (code != CLI_DONE) return code;
     reference *kept = tacet_arena_alloc(p->s->arena, (p->n_quantities + 1) * sizeof *kept);
     if (!kept) return cli_failed(TACET_NO_MEMORY, NULL);
     code = solve_one(p, tacet_model_all_fire(p->s->model), &p->all_fire);
-    if (code == CLI_DONE && p->all_fire.outcome == TACET_SOLVED) code = take_reference(p, kept);
+    if (code == CLI_DONE && p->all_fire.outcome == TACET_SOLVED) {
+        code = take_reference(p, kept);
+        point_body_all_fire(p);
+    }
+    if (code == CLI_DONE) code = solve_one_dead(p);
     if (code == CLI_DONE) code = solve_worst(p);
     if (code != CLI_DONE) return code;
-    if (p->row.outcome == TACET_SOLVED) return take_lines(p, kept);
+    if (p->row.outcome == TACET_SOLVED) {
+        code = take_lines(p, kept);
+        return code == CLI_DONE ? point_body_take(p) : code;
+    }
     p->n_quantities = 0;
     return CLI_DONE;
 }

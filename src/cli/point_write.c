@@ -1,5 +1,5 @@
 // How tacet point writes its condition as text and CSV.
-#include "cli/point.h"
+#include "cli/point_body.h"
 #include <math.h>
 #include <string.h>
 
@@ -11,6 +11,8 @@ static const tacet_table_column band_columns[] = {
     {.name = "margin", .unit = "dB", .decimals = 1},
     {.name = "level", .unit = "rms", .decimals = -1},
     {.name = "limit", .unit = "rms", .decimals = -1},
+    {.name = "all fire", .unit = "rms", .decimals = -1},
+    {.name = "one dead", .unit = "rms", .decimals = -1},
     {.name = "unit", .text = true},
     {.name = "order", .text = true},
     {.name = "at", .unit = "Hz", .decimals = 1},
@@ -118,6 +120,8 @@ static int write_bands(const point *p)
         cli_put(&rows, b->margin_db);
         cli_put(&rows, b->level.dispersed);
         cli_put(&rows, b->limit);
+        cli_put(&rows, point_all_fire_level(p, i));
+        cli_put(&rows, p->one_dead.level[i]);
         cli_put_text(&rows, tacet_model_quantity_unit(p->s->model, band->of));
         cli_put_text(&rows, isfinite(order) ? order_text(p, b->level.leading_line) : NULL);
         cli_put(&rows, isfinite(order) ? tacet_order_hz(order, p->row.speed_rad_per_s) : NAN);
@@ -126,7 +130,9 @@ static int write_bands(const point *p)
     }
     const tacet_table *t = cli_rows_end(&rows);
     if (!t) return cli_failed(TACET_NO_MEMORY, NULL);
-    if (t->n_rows > 0) cli_write_table(p->call, t);
+    if (t->n_rows == 0) return CLI_DONE;
+    cli_write_table(p->call, t);
+    point_write_one_dead(p);
     return CLI_DONE;
 }
 
@@ -281,6 +287,8 @@ int point_write_text(const point *p)
     write_duty(p);
     int code = write_bands(p);
     if (code == CLI_DONE) code = write_limits(p);
+    if (code == CLI_DONE) code = point_write_mounts(p);
+    if (code == CLI_DONE) code = point_write_people(p);
     const tacet_table *t = point_lines(p, LINES_SHOWN, &rows);
     if (!t) return cli_failed(TACET_NO_MEMORY, NULL);
     fputc('\n', stdout);
