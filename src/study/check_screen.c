@@ -170,7 +170,7 @@ void check_screen(checker *c)
 }
 
 // ---- files
-static void check_trace(checker *c, const char *path, const char *key, const char *name)
+static void check_csv(checker *c, const char *path, const char *key, const char *name)
 {
     tacet_error e;
     tacet_csv csv;
@@ -187,8 +187,13 @@ static void check_trace(checker *c, const char *path, const char *key, const cha
 void check_files(checker *c)
 {
     const tacet_cycle_def *d = &c->study->engine.cycle;
+    const tacet_body_def *body = &c->study->body;
+    char path[64];
     check_patterns(c);
+    for (size_t i = 0; i < body->n_paths && !fill_is_wrong(c->f, "body"); i++)
+        check_csv(c, tacet_text(path, sizeof path, "body.paths[%zu].table", i), "table",
+                  body->paths[i].table);
     if (fill_is_wrong(c->f, "cycle.kind") || d->kind != TACET_CYCLE_TRACES) return;
-    check_trace(c, "cycle.traces.fired", "fired", d->fired_trace);
-    check_trace(c, "cycle.traces.skipped", "skipped", d->skipped_trace);
+    check_csv(c, "cycle.traces.fired", "fired", d->fired_trace);
+    check_csv(c, "cycle.traces.skipped", "skipped", d->skipped_trace);
 }
