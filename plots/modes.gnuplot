@@ -1,6 +1,7 @@
 # Modes of the body: each row a box as centre, edges left and right, bottom and top; a block for each
 # direction. Moves are solid and grow darker, turns are hatched.
 unset xtics
+set xzeroaxis linetype 1 linecolor rgb '#5f6b7a' linewidth 1
 set format y '%g %%'
 plot \
   $x using 1:2:3:4:5:6 with boxxyerror fillcolor rgb '#dbe7f1' fillstyle solid border linecolor rgb '#24507a' linewidth 1, \

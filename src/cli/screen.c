@@ -130,7 +130,9 @@ const cli_command cli_screen_command = {
              "at which\nlevels go over their limits, ranks what is clear by fuel, and solves the "
              "worst conditions again\nby a second method. The folder gets map, orders, bars and "
              "repeat (drawings), summary.txt,\nruns.csv, summary.csv, ranking.csv, no-go.csv, "
-             "agreement.csv, levels.csv and screen.json.\nWith --strict the exit code is 1 when "
+             "agreement.csv, levels.csv and screen.json;\nof a study with a body on mounts also "
+             "modes, forces and "
+             "paths (drawings).\nWith --strict the exit code is 1 when "
              "some speed has no clear pattern.\n",
     .examples = examples,
     .options = options,

@@ -6,22 +6,24 @@
 #include <math.h>
 #include <string.h>
 
-#define TOP_PX      122.0
-#define BOTTOM_PX   686.0
-#define GAP_PX      26.0
-#define HEAD_PX     78.0 // of a panel, above its rows
-#define ROW_MOST    40.0
-#define ROW_LEAST   15.0
-#define NAME_PX     210.0
-#define COLUMN_PX   178.0 // the least that a column needs
-#define COLUMN_MOST 330.0
-#define NUMBER_PX   66.0 // beside a bar
+#define TOP_PX       122.0
+#define BOTTOM_PX    686.0
+#define GAP_PX       26.0
+#define HEAD_PX      78.0 // of a panel, above its rows
+#define ROW_MOST     40.0
+#define ROW_LEAST    15.0
+#define NAME_PX      210.0
+#define COLUMN_PX    178.0 // the least that a column needs
+#define COLUMN_MOST  330.0
+#define COLUMNS_MOST 8
+#define NUMBER_PX    66.0 // beside a bar
 
 typedef struct {
     double x0, y0, x1;
     double row_px, first_x, column_px;
     size_t n_rows, n_columns;
-    double low, high; // of shares
+    size_t column[COLUMNS_MOST]; // sums that are shown
+    double low, high;            // of shares
 } panel;
 
 // Height of the tallest panel, up to an even share of the drawing.
@@ -38,11 +40,26 @@ static void find_range(const tacet_figure_point *point, panel *p)
     p->low = p->high = 0;
     for (size_t k = 0; k < p->n_columns; k++)
         for (size_t r = 0; r < p->n_rows; r++)
-            if (isfinite(point->sum[k].share[r])) {
-                p->low = fmin(p->low, point->sum[k].share[r]);
-                p->high = fmax(p->high, point->sum[k].share[r]);
+            if (isfinite(point->sum[p->column[k]].share[r])) {
+                p->low = fmin(p->low, point->sum[p->column[k]].share[r]);
+                p->high = fmax(p->high, point->sum[p->column[k]].share[r]);
             }
     if (!(p->high > p->low)) p->high = 1;
+}
+
+// The first sum and the largest of the others, in the order given.
+static void pick_columns(const tacet_figure_point *point, size_t fit, panel *p)
+{
+    size_t n = point->n_sums < fit ? point->n_sums : fit;
+    p->n_columns = 0;
+    if (n > COLUMNS_MOST) n = COLUMNS_MOST;
+    for (size_t k = 0; k < point->n_sums; k++) {
+        size_t larger = 0;
+        for (size_t i = 1; i < point->n_sums; i++)
+            larger += point->sum[i].level_rms > point->sum[k].level_rms ||
+                      (point->sum[i].level_rms >= point->sum[k].level_rms && i < k);
+        if (k == 0 || larger + 1 < n) p->column[p->n_columns++] = k;
+    }
 }
 
 static void lay_out(const tacet_figure_paths *f, size_t i, panel *p)
@@ -56,7 +73,7 @@ static void lay_out(const tacet_figure_paths *f, size_t i, panel *p)
     p->x1 = p->x0 + width;
     p->first_x = p->x0 + names;
     size_t fit = (size_t)((width - names) / COLUMN_PX);
-    p->n_columns = point->n_sums < fit ? point->n_sums : fit;
+    pick_columns(point, fit, p);
     p->column_px = fmin((width - names) / (double)(p->n_columns ? p->n_columns : 1), COLUMN_MOST);
     p->row_px = (height - HEAD_PX) / (double)(point->n_paths ? point->n_paths : 1);
     p->row_px = fmin(fmax(p->row_px, ROW_LEAST), ROW_MOST);
@@ -85,7 +102,7 @@ static void bars(canvas *c, const tacet_figure_paths *f, const panel *panels, bo
         for (size_t k = 0; k < panels[i].n_columns; k++)
             for (size_t r = 0; r < panels[i].n_rows; r++) {
                 const panel *p = &panels[i];
-                double share = f->point[i].sum[k].share[r], half = 0.36 * p->row_px;
+                double share = f->point[i].sum[p->column[k]].share[r], half = 0.36 * p->row_px;
                 double x0 = share_x(p, k, fmin(share, 0)), x1 = share_x(p, k, fmax(share, 0));
                 double y = CANVAS_HEIGHT - row_y(p, r);
                 if (!isfinite(share) || share == 0 || (share > 0) != adds) continue;
@@ -99,7 +116,7 @@ static void bars(canvas *c, const tacet_figure_paths *f, const panel *panels, bo
 
 static void column_head(canvas *c, const panel *p, const tacet_figure_point *point, size_t k)
 {
-    const tacet_figure_sum *sum = &point->sum[k];
+    const tacet_figure_sum *sum = &point->sum[p->column[k]];
     char text[160], order[TACET_NUMBER_TEXT], hz[TACET_NUMBER_TEXT], level[TACET_NUMBER_TEXT];
     double x = p->first_x + p->column_px * (double)k + 8;
     canvas_style style = {.size = FONT_SMALL, .bold = true, .most_px = p->column_px - 12};
@@ -123,7 +140,7 @@ static void column(canvas *c, const panel *p, const tacet_figure_point *point, s
     column_head(c, p, point, k);
     canvas_line(c, zero, p->y0 + HEAD_PX, zero, end, (canvas_stroke){INK, 1, false});
     for (size_t r = 0; r < p->n_rows; r++) {
-        double share = point->sum[k].share[r];
+        double share = point->sum[p->column[k]].share[r];
         if (!isfinite(share)) continue;
         const char *digits = text_fixed(100 * share, fabs(share) < 9.995 ? 1 : 0, number);
         snprintf(text, sizeof text, "%s%s %%", *digits == '-' || share == 0 ? "" : "+", digits);
@@ -169,7 +186,7 @@ static void key(canvas *c)
                    .fill = FILL_DARK, .hatching = HATCH_RISING, .border = FILL_DARK, .width = 1});
     canvas_text(c, x + 36, y, style, "takes away from it");
     canvas_text(c, CANVAS_WIDTH - 24, y, (canvas_style){.anchor = ANCHOR_RIGHT, .size = FONT_SMALL},
-                "rms over the columns: of equal cylinders, without dispersion");
+                "rms over the columns: without dispersion; in brackets: with it, and the limit");
 }
 
 void figure_paths_script(canvas *c, const tacet_figure_paths *f)

@@ -166,12 +166,10 @@ static const char *at_text(const point_job *j, const tacet_row *row, const char 
     if (!j->band || !isfinite(row->bands[j->at->band].margin_db))
         return screen_text(j->s->arena, "at %s rpm and %s N m", rpm, torque);
     const tacet_band_result *b = &row->bands[j->at->band];
-    return screen_text(j->s->arena,
-                       "at %s rpm and %s N m: %s, margin %s dB (%s %s rms with dispersion, limit "
-                       "%s)",
-                       rpm, torque, j->band->name, text_fixed(b->margin_db, 1, margin),
-                       tacet_number_format_short(b->level.dispersed, 3, level), unit,
-                       tacet_number_format_short(b->limit, 3, limit));
+    return screen_text(j->s->arena, "at %s rpm and %s N m: margin %s dB in %s (%s of %s %s rms)",
+                       rpm, torque, text_fixed(b->margin_db, 1, margin), j->band->name,
+                       tacet_number_format_short(b->level.dispersed, 3, level),
+                       tacet_number_format_short(b->limit, 3, limit), unit);
 }
 
 static tacet_status one_point(point_job *j, tacet_figure_point *out, tacet_error *e)

@@ -166,7 +166,7 @@ tacet_status tacet_solve(const tacet_model *m, const tacet_condition *c, tacet_l
         each[k]->revolutions = r->revolutions;
         each[k]->mean = 50;
         for (size_t h = 1; h <= n; h++)
-            each[k]->line[h] = standin_amplitude(r, h);
+            each[k]->line[h] = standin_amplitude(r, h) * cexp(I * m->phase_rad);
     }
     w->response = (tacet_response){
         .piston_torque_Nm = w->pistons, .n_throws = 2, .revolutions = r->revolutions, .n_lines = n};

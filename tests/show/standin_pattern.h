@@ -12,6 +12,7 @@ struct tacet_model {
     tacet_roll *all_fire;
     bool all_fire_reachable;
     bool no_body;
+    double phase_rad; // of every line
 };
 struct tacet_workspace {
     const tacet_model *model;
@@ -24,7 +25,7 @@ struct tacet_workspace {
 // lines and 0.25 times it on even ones, the second the rest; of those to the knee, path k brings
 // k / 36 (k = 0 .. 8).
 // Amplitude (peak) of line h of a roll's drawn quantity: 1 / h of a pattern; all-fire has 2 at
-// order 3 and nothing else. Phase 0; mean 50.
+// order 3 and nothing else. Mean 50.
 double standin_amplitude(const tacet_roll *r, size_t h);
 
 #endif

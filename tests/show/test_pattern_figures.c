@@ -235,6 +235,7 @@ static void test_paths(void **state)
                                 .roll = source.roll,
                                 .speed_rad_per_s = 1000 * RPM,
                                 .demand_Nm = 300};
+    model.phase_rad = 0.7;
     assert_int_equal(tacet_paths_of_points(&source, &at, 1, &f, &e), TACET_OK);
     assert_int_equal(f.n_points, 1);
     const tacet_figure_point *p = &f.point[0];
