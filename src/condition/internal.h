@@ -46,6 +46,8 @@ struct tacet_model {
     bool prepared;
     double *reference;   // [n_bands] all-fire at its worst screened speed; NAN: none
     cyclic_grid *cyclic; // [n_bands]
+    double *bend_hz;     // [n_bends] rising: where |H|^2 may have peaks and corners
+    size_t n_bends;
 };
 
 typedef struct { // one-slot memo of a speed and demand
