@@ -66,15 +66,33 @@ static const char four[] =
     "  - {name: mean, quantity: \"mount-force:left:z\", statistic: mean, value: 1000}\n"
     "screen: {speeds_rpm: [1200, 2000], brake_torque_nm: 90}                              \n";
 
-static void open_four(demo *d, const char *rotation, const char *output)
+// 0: clockwise, the load outside; 1: counterclockwise, the load housed. Opened once, only read.
+static demo of_four[2];
+
+static int open_both(void **state)
 {
-    char *text = calloc(1, 8192);
-    strcpy(text, four);
-    demo_replace(text, "ROTATION", rotation);
-    demo_replace(text, "OUTPUT", output);
-    demo_replace(text, "OUTPUT", output);
-    demo_open_text(d, text);
-    free(text);
+    static const char *const rotation[] = {"clockwise", "counterclockwise"}, *const output[] = {
+                                                                                 "outside",
+                                                                                 "powertrain"};
+    (void)state;
+    for (int i = 0; i < 2; i++) {
+        char *text = calloc(1, 8192);
+        strcpy(text, four);
+        demo_replace(text, "ROTATION", rotation[i]);
+        demo_replace(text, "OUTPUT", output[i]);
+        demo_replace(text, "OUTPUT", output[i]);
+        demo_open_text(&of_four[i], text);
+        free(text);
+    }
+    return 0;
+}
+
+static int close_both(void **state)
+{
+    (void)state;
+    for (int i = 0; i < 2; i++)
+        demo_close(&of_four[i]);
+    return 0;
 }
 
 static tacet_row solve(demo *d, const char *word, double rpm, tacet_level level)
@@ -106,15 +124,11 @@ static const tacet_spectrum *quantity(demo *d, const char *name)
 static void test_roll_torque_of_a_backward_gearbox(void **state)
 {
     (void)state;
-    static const char *const output[] = {"outside", "powertrain"};
     for (int i = 0; i < 2; i++) {
-        demo d;
-        open_four(&d, i ? "counterclockwise" : "clockwise", output[i]);
-        (void)solve(&d, "x.x", 1300, TACET_LEVEL_RIPPLE);
-        assert_near(demo_roll_mismatch(&d), 0, 1e-9, 0);
-        (void)solve(&d, "xx.", 1700, TACET_LEVEL_CONSTANT);
-        assert_near(demo_roll_mismatch(&d), 0, 1e-9, 0);
-        demo_close(&d);
+        (void)solve(&of_four[i], "x.x", 1300, TACET_LEVEL_RIPPLE);
+        assert_near(demo_roll_mismatch(&of_four[i]), 0, 1e-9, 0);
+        (void)solve(&of_four[i], "xx.", 1700, TACET_LEVEL_CONSTANT);
+        assert_near(demo_roll_mismatch(&of_four[i]), 0, 1e-9, 0);
     }
 }
 
@@ -138,14 +152,13 @@ static tacet_status four_harmonics(const void *who, size_t throw_index, size_t n
 static void test_roll_torque_of_a_march(void **state)
 {
     (void)state;
-    demo d;
-    open_four(&d, "clockwise", "outside");
-    const tacet_train *t = tacet_model_train(d.model);
-    const double W = 150, own = tacet_engine_mean_inertia(tacet_model_engine(d.model));
-    size_t node[4], lines = 40, n = tacet_model_throws(d.model);
+    demo *d = &of_four[0];
+    const tacet_train *t = tacet_model_train(d->model);
+    const double W = 150, own = tacet_engine_mean_inertia(tacet_model_engine(d->model));
+    size_t node[4], lines = 40, n = tacet_model_throws(d->model);
     assert_int_equal(n, 4);
     for (size_t i = 0; i < n; i++)
-        node[i] = tacet_model_throw_node(d.model, i);
+        node[i] = tacet_model_throw_node(d->model, i);
     tacet_periodic how = tacet_periodic_default();
     how.revolutions = 2, how.n_lines = lines, how.frozen = true, how.tolerance = 1e-11;
     how.most_passes = 60;
@@ -156,8 +169,7 @@ static void test_roll_torque_of_a_march(void **state)
     assert_int_equal(tacet_train_motion_init(&motion, t, lines, a), TACET_OK);
     assert_int_equal(tacet_train_work_create(t, 400, n, &work), TACET_OK);
     assert_int_equal(
-        tacet_train_steady(t, W, n, node, four_harmonics, &d, &how, work, &motion, &note),
-        TACET_OK);
+        tacet_train_steady(t, W, n, node, four_harmonics, d, &how, work, &motion, &note), TACET_OK);
     tacet_spectrum piston[4], roll;
     for (size_t i = 0; i < n; i++) {
         double phase = 1.3 * (double)i;
@@ -180,10 +192,9 @@ static void test_roll_torque_of_a_march(void **state)
                               .revolutions = 2,
                               .n_lines = lines};
     assert_int_equal(tacet_quantity_find("roll-torque")->spectrum(&r, 0, &roll), TACET_OK);
-    assert_near(demo_roll_mismatch_of(&d, &r, &roll), 0, 1e-9, 0);
+    assert_near(demo_roll_mismatch_of(d, &r, &roll), 0, 1e-9, 0);
     tacet_train_work_destroy(work);
     tacet_arena_destroy(a);
-    demo_close(&d);
 }
 
 // What leaves is carried by the mounts, at rest with the static stiffness; a housed load carries
@@ -191,22 +202,19 @@ static void test_roll_torque_of_a_march(void **state)
 static void test_mean_roll_is_what_leaves(void **state)
 {
     (void)state;
-    demo d;
-    open_four(&d, "clockwise", "outside");
-    (void)solve(&d, "x.x", 1300, TACET_LEVEL_RIPPLE);
-    double leaves = quantity(&d, "link-torque:leaves")->mean / 1.3;
+    demo *d = &of_four[0];
+    (void)solve(d, "x.x", 1300, TACET_LEVEL_RIPPLE);
+    double leaves = quantity(d, "link-torque:leaves")->mean / 1.3;
     assert_true(leaves < -40); // against the crank: 90 N m through -1.6
-    assert_near(quantity(&d, "roll-torque")->mean, -leaves, 0, 1e-9);
+    assert_near(quantity(d, "roll-torque")->mean, -leaves, 0, 1e-9);
     tacet_six q, unit = {0, 0, 0, 1, 0, 0};
-    assert_int_equal(tacet_body_static(tacet_model_body(d.model), unit, q), TACET_OK);
+    assert_int_equal(tacet_body_static(tacet_model_body(d->model), unit, q), TACET_OK);
     double force = 230e3 * (q[2] + q[3] * 0.310 - q[4] * -0.180); // right, not turned
-    assert_near(quantity(&d, "mount-force:right:z")->mean, -leaves * force, 0, 1e-9);
-    demo_close(&d);
-    open_four(&d, "clockwise", "powertrain");
-    (void)solve(&d, "x.x", 1300, TACET_LEVEL_RIPPLE);
-    assert_near(quantity(&d, "roll-torque")->mean, 0, 1e-7, 0);
-    assert_near(quantity(&d, "mount-force:left:z")->mean, 0, 1e-6, 0);
-    demo_close(&d);
+    assert_near(quantity(d, "mount-force:right:z")->mean, -leaves * force, 0, 1e-9);
+    d = &of_four[1];
+    (void)solve(d, "x.x", 1300, TACET_LEVEL_RIPPLE);
+    assert_near(quantity(d, "roll-torque")->mean, 0, 1e-7, 0);
+    assert_near(quantity(d, "mount-force:left:z")->mean, 0, 1e-6, 0);
 }
 
 // ---- the whole powertrain -----------------------------------------------------------------------
@@ -315,17 +323,14 @@ static void balances(demo *d, double direction)
 static void test_mounts_carry_roll_shaking_and_inertia(void **state)
 {
     (void)state;
-    demo d;
-    open_four(&d, "clockwise", "outside");
-    (void)solve(&d, "x.x.x", 1300, TACET_LEVEL_RIPPLE);
-    balances(&d, 1);
-    (void)solve(&d, "x", 1900, TACET_LEVEL_RIPPLE);
-    balances(&d, 1);
-    demo_close(&d);
-    open_four(&d, "counterclockwise", "powertrain");
-    (void)solve(&d, "x.x.x", 1300, TACET_LEVEL_RIPPLE);
-    balances(&d, -1);
-    demo_close(&d);
+    demo *d = &of_four[0];
+    (void)solve(d, "x.x.x", 1300, TACET_LEVEL_RIPPLE);
+    balances(d, 1);
+    (void)solve(d, "x", 1900, TACET_LEVEL_RIPPLE);
+    balances(d, 1);
+    d = &of_four[1];
+    (void)solve(d, "x.x.x", 1300, TACET_LEVEL_RIPPLE);
+    balances(d, -1);
 }
 
 // Shaking belongs to speed and masses: the same bits for every word.
@@ -333,12 +338,11 @@ static void test_shaking_knows_no_pattern(void **state)
 {
     (void)state;
     static const char *const words[] = {"x", "x.x", "..x.x"};
-    demo d;
+    demo *d = &of_four[0];
     double complex order[3][25];
-    open_four(&d, "clockwise", "outside");
     for (int i = 0; i < 3; i++) {
-        (void)solve(&d, words[i], 1500, TACET_LEVEL_RIPPLE);
-        const tacet_spectrum *s = quantity(&d, "shaking:pitch");
+        (void)solve(d, words[i], 1500, TACET_LEVEL_RIPPLE);
+        const tacet_spectrum *s = quantity(d, "shaking:pitch");
         for (size_t k = 1; k <= 24; k++)
             order[i][k] = s->line[k * s->revolutions];
         for (size_t h = 1; h <= s->n_lines; h++)
@@ -347,7 +351,6 @@ static void test_shaking_knows_no_pattern(void **state)
     assert_true(cabs(order[0][1]) > 1 && cabs(order[0][2]) > 1);
     for (size_t k = 1; k <= 24; k++)
         assert_true(order[1][k] == order[0][k] && order[2][k] == order[0][k]);
-    demo_close(&d);
 }
 
 static void test_same_bits_in_any_order_and_with_a_fresh_workspace(void **state)
@@ -359,16 +362,15 @@ static void test_same_bits_in_any_order_and_with_a_fresh_workspace(void **state)
     } at[] = {{"x", 1200}, {"x.x", 1200}, {"x.x", 2000},
               {"x", 2000}, {".x", 1200},  {"x.x.x", 1530}};
     enum { N = sizeof at / sizeof *at };
-    demo d;
+    demo *d = &of_four[0];
     tacet_row first[N], again, fresh;
-    open_four(&d, "clockwise", "outside");
     for (int i = 0; i < N; i++)
-        first[i] = solve(&d, at[i].word, at[i].rpm, TACET_LEVEL_RIPPLE);
+        first[i] = solve(d, at[i].word, at[i].rpm, TACET_LEVEL_RIPPLE);
     for (int i = 0; i < N; i++) {
         int j = (i * 5 + 3) % N;
-        again = solve(&d, at[j].word, at[j].rpm, TACET_LEVEL_RIPPLE);
-        demo own = d;
-        assert_int_equal(tacet_workspace_create(d.model, &own.work), TACET_OK);
+        again = solve(d, at[j].word, at[j].rpm, TACET_LEVEL_RIPPLE);
+        demo own = *d;
+        assert_int_equal(tacet_workspace_create(d->model, &own.work), TACET_OK);
         fresh = solve(&own, at[j].word, at[j].rpm, TACET_LEVEL_RIPPLE);
         tacet_workspace_destroy(own.work);
         for (size_t b = 0; b < again.n_bands; b++) {
@@ -378,7 +380,6 @@ static void test_same_bits_in_any_order_and_with_a_fresh_workspace(void **state)
         assert_true(again.limits[0].value == first[j].limits[0].value);
         assert_true(fresh.limits[0].value == first[j].limits[0].value);
     }
-    demo_close(&d);
 }
 
 // ---- cycles that differ, and sharp answers of body and paths ------------------------------------
@@ -567,4 +568,8 @@ static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_paths_that_cancel),
     cmocka_unit_test(test_undamped_mounts),
 };
-TEST_MAIN(tests)
+
+int main(void)
+{
+    return cmocka_run_group_tests(tests, open_both, close_both);
+}
