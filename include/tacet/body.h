@@ -131,6 +131,10 @@ typedef struct {
 } tacet_body_modes;
 // Undamped, stiffness of each mode taken at its own frequency by iteration. No mounts: six zeros.
 TACET_USE tacet_status tacet_body_modes_of(const tacet_body *b, tacet_body_modes *out);
+// Frequencies, rising, at which an answer of the body may have a peak or a corner: its modes,
+// resonances of its paths, rows of their tables and of its mounts' curves. Memory of the arena.
+TACET_USE tacet_status tacet_body_bends(const tacet_body *b, tacet_arena *a, double **out_hz,
+                                        size_t *n);
 // q = K_static^-1 load; TACET_BAD_INPUT: the mounts do not hold the body.
 TACET_USE tacet_status tacet_body_static(const tacet_body *b, const tacet_six load, tacet_six q);
 // Axis about which a free body starts to turn under a torque about the crank: I^-1 e_x, unit

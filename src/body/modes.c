@@ -7,6 +7,7 @@
 
 #define PASSES  60
 #define SETTLED 1e-9 // change of a frequency over itself
+#define FREE    1e-12
 
 typedef struct {
     gsl_matrix *k, *m, *vector;
@@ -121,19 +122,44 @@ tacet_status tacet_body_modes_of(const tacet_body *b, tacet_body_modes *out)
     return status;
 }
 
+// Gauss on a symmetric matrix of ones along the diagonal, b -> x. A pivot is what is left of a
+// stiffness when the members before it are free to give way: rounding of 0, some motion is free.
+static bool solve_held(double a[6][6], double b[6])
+{
+    for (int i = 0; i < 6; i++) {
+        if (!(a[i][i] > FREE)) return false;
+        for (int k = i + 1; k < 6; k++) {
+            double by = a[k][i] / a[i][i];
+            for (int j = i; j < 6; j++)
+                a[k][j] -= by * a[i][j];
+            b[k] -= by * b[i];
+        }
+    }
+    for (int i = 5; i >= 0; i--) {
+        for (int j = i + 1; j < 6; j++)
+            b[i] -= a[i][j] * b[j];
+        b[i] /= a[i][i];
+    }
+    return true;
+}
+
 tacet_status tacet_body_static(const tacet_body *b, const tacet_six load, tacet_six q)
 {
-    double complex k[36], x[6];
-    double least = INFINITY, most = 0;
+    double complex k[36];
+    double a[6][6], scale[6], x[6];
     tacet_body_stiffness(b, 0, k);
     for (int i = 0; i < 6; i++) {
-        x[i] = load[i];
-        least = fmin(least, cabs(k[7 * i]));
-        most = fmax(most, cabs(k[7 * i]));
+        if (!(creal(k[7 * i]) > 0)) return TACET_BAD_INPUT;
+        scale[i] = 1 / sqrt(creal(k[7 * i]));
     }
-    if (!(least > 1e-12 * most) || !six_solve(k, x)) return TACET_BAD_INPUT;
+    for (int i = 0; i < 6; i++) {
+        x[i] = load[i] * scale[i];
+        for (int j = 0; j < 6; j++)
+            a[i][j] = creal(k[6 * i + j]) * scale[i] * scale[j];
+    }
+    if (!solve_held(a, x)) return TACET_BAD_INPUT;
     for (int i = 0; i < 6; i++)
-        q[i] = creal(x[i]);
+        q[i] = x[i] * scale[i];
     return TACET_OK;
 }
 

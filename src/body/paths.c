@@ -19,11 +19,16 @@ static double complex resonance(const tacet_resonance_def *d, double f_hz)
 
 static double complex table_at(const body_table *t, double f_hz)
 {
-    size_t k = 1;
+    size_t low = 0, k = t->n - 1;
     if (!(f_hz >= t->hz[0]) || f_hz > t->hz[t->n - 1]) return 0;
-    while (k + 1 < t->n && t->hz[k] < f_hz)
-        k++;
     if (t->n == 1) return t->value[0];
+    while (k - low > 1) {
+        size_t middle = low + (k - low) / 2;
+        if (t->hz[middle] < f_hz)
+            low = middle;
+        else
+            k = middle;
+    }
     double part = (f_hz - t->hz[k - 1]) / (t->hz[k] - t->hz[k - 1]);
     return t->value[k - 1] + part * (t->value[k] - t->value[k - 1]);
 }

@@ -15,7 +15,9 @@ int modes_find_body(modes *m)
     double range[2];
     cli_screened_rpm(m->s, range);
     const double weight[6] = {0, 0, -tacet_body_def_of(b)->mass_kg * GRAVITY_M_PER_S2, 0, 0, 0};
-    const double turn[6] = {0, 0, 0, 1, 0, 0};
+    // with the crank's rotation, as the roll torque counts
+    double about_x = tacet_engine_def_of(tacet_model_engine(m->s->model))->rotation == 0 ? 1 : -1;
+    const double turn[6] = {0, 0, 0, about_x, 0, 0};
     m->held = tacet_body_static(b, weight, m->sag) == TACET_OK &&
               tacet_body_static(b, turn, m->turn) == TACET_OK;
     tacet_body_torque_roll_axis(b, m->roll_axis);
@@ -79,7 +81,7 @@ int modes_write_body(const cli_call *call, const modes *m)
     if (m->held)
         printf("Weight lowers the centre of gravity by %.3g mm; a mean torque of 100 N m about the "
                "crank turns the body by %.3g deg.\n",
-               -1e3 * m->sag[2], 100 * m->turn[3] * 180 / M_PI);
+               -1e3 * m->sag[2], 100 * fabs(m->turn[3]) * 180 / M_PI);
     else
         printf("The mounts do not hold the body: it has no static deflection.\n");
     return code;

@@ -1,11 +1,16 @@
 // Transfers from each throw to each band's quantity, and what unequal cylinders and cycles add.
 #include "condition/internal.h"
 #include <math.h>
+#include <stdlib.h>
+#include <string.h>
 
 #define CYCLIC_SPACING  0.25 // orders at the lowest screened speed between grid frequencies
 #define CYCLIC_LEAST    24   // intervals
 #define CYCLIC_BEND     1e-3 // of |H|^2 between neighbouring probes that is left to Simpson's rule
 #define CYCLIC_HALVINGS 20   // of a grid interval at most: peaks down to a millionth of it
+#define CYCLIC_PIECES   4000 // that a peak or zero may take; more, and |H|^2 is rounding, no curve
+#define ROUNDED_PIECES  32   // then
+#define ENDLESS_SHARE   1e-3 // of the band's integral in a piece too small to halve: a pole
 #define BESIDE_MODE     1e-9 // relative
 
 // Quantity of a band for unit torque on one throw, constant speed, lines of `revolutions` at
@@ -105,9 +110,12 @@ typedef struct {
     tacet_workspace *w;
     const tacet_band *band;
     const cyclic_grid *g;
-    double *integral;  // [n_throws * n] of |H|^2 under the hat of each grid frequency
-    size_t k;          // interval from f_hz[k] to f_hz[k + 1]
-    double endless_hz; // where |H|^2 keeps rising however near one looks; 0: nowhere
+    double *integral; // [n_throws * n] of |H|^2 under the hat of each grid frequency
+    size_t k;         // interval from f_hz[k] to f_hz[k + 1]
+    size_t pieces_left, pieces_most;
+    // The largest of the pieces that were still rough when they could be halved no more. A corner
+    // or a zero of |H|^2 leaves nearly nothing there, a pole leaves more than all else.
+    double rough, rough_hz;
     tacet_status status;
 } integration;
 
@@ -136,19 +144,22 @@ static void probe_at(integration *q, double f_hz, probe *p)
     if (q->status == TACET_NOT_FINITE) probe_once(q, p, f_hz * (1 + BESIDE_MODE));
 }
 
-// Adds Simpson's rule over a..middle..b, times the two hats that share the interval.
-static void add_piece(integration *q, const probe *a, const probe *middle, const probe *b)
+// Adds Simpson's rule over a..middle..b, times the two hats that share the interval; returns what
+// all throws add.
+static double add_piece(integration *q, const probe *a, const probe *middle, const probe *b)
 {
     const double *f = &q->g->f_hz[q->k];
     const probe *at[3] = {a, middle, b};
-    double width = f[1] - f[0];
+    double width = f[1] - f[0], sum = 0;
     for (size_t t = 0; t < q->m->n_throws; t++)
         for (int i = 0; i < 3; i++) {
             double part = (b->f_hz - a->f_hz) / 6 * (i == 1 ? 4 : 1) * at[i]->square[t];
             double rise = (at[i]->f_hz - f[0]) / width;
+            sum += part;
             q->integral[t * q->g->n + q->k] += part * (1 - rise);
             q->integral[t * q->g->n + q->k + 1] += part * rise;
         }
+    return sum;
 }
 
 // Is |H|^2 between a and b a parabola, near enough?
@@ -167,16 +178,28 @@ static void integrate(integration *q, const probe *a, const probe *b, int halvin
     probe_at(q, (a->f_hz + b->f_hz) / 2, &middle);
     if (q->status != TACET_OK) return;
     bool is_smooth = smooth(q, a, &middle, b);
-    if (halvings == 0 && !is_smooth) q->endless_hz = middle.f_hz;
-    if (halvings == 0 || is_smooth) {
-        add_piece(q, a, &middle, b);
+    if (halvings == 0 || q->pieces_left == 0 || is_smooth) {
+        double part = add_piece(q, a, &middle, b);
+        if (halvings > 0 || is_smooth || part <= q->rough) return;
+        q->rough = part;
+        q->rough_hz = middle.f_hz;
         return;
     }
+    q->pieces_left--;
     integrate(q, a, &middle, halvings - 1);
     integrate(q, &middle, b, halvings - 1);
 }
 
-// One interval of the grid, piece by piece between the modes in it, so that no peak is stepped
+// Where the lines of the quantity cancel, |H|^2 is their rounding and rough however near one looks:
+// one interval shows it, and the others of the band need not be looked at so closely.
+static void integrate_between(integration *q, const probe *a, const probe *b)
+{
+    q->pieces_left = q->pieces_most;
+    if (q->status == TACET_OK) integrate(q, a, b, CYCLIC_HALVINGS);
+    if (q->pieces_left == 0) q->pieces_most = ROUNDED_PIECES;
+}
+
+// One interval of the grid, piece by piece between the bends in it, so that no peak is stepped
 // over.
 static void integrate_interval(integration *q, size_t k)
 {
@@ -185,16 +208,16 @@ static void integrate_interval(integration *q, size_t k)
     q->k = k;
     probe_at(q, f[0], &from);
     if (q->status != TACET_OK) return;
-    for (size_t mode = 0; mode < tacet_train_nodes(q->m->train); mode++) {
-        double hz = q->m->mode_hz[mode];
+    for (size_t i = 0; i < q->m->n_bends; i++) {
+        double hz = q->m->bend_hz[i];
         if (!(hz > from.f_hz && hz < f[1])) continue;
         probe_at(q, hz, &to);
         if (q->status != TACET_OK) return;
-        integrate(q, &from, &to, CYCLIC_HALVINGS);
+        integrate_between(q, &from, &to);
         from = to;
     }
     probe_at(q, f[1], &to);
-    if (q->status == TACET_OK) integrate(q, &from, &to, CYCLIC_HALVINGS);
+    integrate_between(q, &from, &to);
 }
 
 static size_t intervals(const tacet_model *m, const tacet_band *b)
@@ -219,7 +242,7 @@ static tacet_status prepare_band(tacet_model *m, tacet_workspace *w, size_t b, t
     g->n = n + 1;
     g->f_hz = tacet_arena_alloc(m->arena, g->n * sizeof *g->f_hz);
     g->H = tacet_arena_alloc(m->arena, g->n * m->n_throws * sizeof *g->H);
-    integration q = {.m = m, .w = w, .band = band, .g = g, .status = TACET_OK};
+    integration q = {.m = m, .w = w, .band = band, .g = g, .pieces_most = CYCLIC_PIECES};
     q.integral = tacet_arena_alloc(m->arena, g->n * m->n_throws * sizeof *q.integral);
     if (!g->f_hz || !g->H || !q.integral)
         return tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
@@ -230,12 +253,15 @@ static tacet_status prepare_band(tacet_model *m, tacet_workspace *w, size_t b, t
     if (q.status != TACET_OK)
         return tacet_fail(e, q.status, "response in band '%s': %s", band->name,
                           tacet_status_text(q.status));
-    if (q.endless_hz > 0)
+    double whole = 0;
+    for (size_t i = 0; i < m->n_throws * g->n; i++)
+        whole += q.integral[i];
+    if (q.rough > ENDLESS_SHARE * whole)
         return tacet_fail(e, TACET_BAD_INPUT,
                           "band '%s' holds an undamped mode at %.4g Hz, at which cycle-to-cycle "
-                          "variation has no bound; give its links damping, or set "
+                          "variation has no bound; give its links or mounts damping, or set "
                           "engine.dispersion.cyclic_percent: 0",
-                          band->name, q.endless_hz);
+                          band->name, q.rough_hz);
     for (size_t t = 0; t < m->n_throws; t++)
         for (size_t k = 0; k < g->n; k++) {
             double hat = width / (double)n * (k == 0 || k == n ? 0.5 : 1);
@@ -244,10 +270,34 @@ static tacet_status prepare_band(tacet_model *m, tacet_workspace *w, size_t b, t
     return TACET_OK;
 }
 
+static int rising(const void *a, const void *b)
+{
+    double x = *(const double *)a, y = *(const double *)b;
+    return (x > y) - (x < y);
+}
+
+static tacet_status find_bends(tacet_model *m)
+{
+    size_t nodes = tacet_train_nodes(m->train), of_body = 0;
+    double *body_hz = NULL;
+    tacet_status status = TACET_OK;
+    if (m->body) status = tacet_body_bends(m->body, m->arena, &body_hz, &of_body);
+    if (status != TACET_OK) return status;
+    m->n_bends = nodes + of_body;
+    m->bend_hz = tacet_arena_alloc(m->arena, m->n_bends * sizeof *m->bend_hz);
+    if (!m->bend_hz) return TACET_NO_MEMORY;
+    memcpy(m->bend_hz, m->mode_hz, nodes * sizeof *m->bend_hz);
+    if (of_body) memcpy(m->bend_hz + nodes, body_hz, of_body * sizeof *m->bend_hz);
+    qsort(m->bend_hz, m->n_bends, sizeof *m->bend_hz, rising);
+    return TACET_OK;
+}
+
 tacet_status dispersion_prepare(tacet_model *m, tacet_workspace *w, tacet_error *e)
 {
-    tacet_status status = TACET_OK;
     bool wanted = m->study->engine.cyclic_dispersion > 0;
+    tacet_status status = wanted ? find_bends(m) : TACET_OK;
+    if (status != TACET_OK)
+        return tacet_fail(e, status, "the modes of the body: %s", tacet_status_text(status));
     for (size_t b = 0; b < m->n_bands && status == TACET_OK && wanted; b++)
         status = prepare_band(m, w, b, e);
     return status;

@@ -47,6 +47,8 @@ struct tacet_model {
     const volatile int *stop; // NULL: nobody may ask
     double *reference;        // [n_bands] all-fire at its worst screened speed; NAN: none
     cyclic_grid *cyclic;      // [n_bands]
+    double *bend_hz;          // [n_bends] rising: where |H|^2 may have peaks and corners
+    size_t n_bends;
 };
 
 typedef struct { // one-slot memo of a speed and demand

@@ -130,6 +130,57 @@ static void test_no_mounts_six_zeros(void **state)
     tacet_body_destroy(body);
 }
 
+// One mount, or two in line with their turns: some motion stays free, and no rounding holds it.
+static void test_what_does_not_hold(void **state)
+{
+    (void)state;
+    const double at[2][3] = {{0.31, -0.22, 0.17}, {0.62, -0.44, 0.34}}, k[3] = {1e5, 1.3e5, 2e5};
+    const double weight[6] = {0, 0, -1, 0, 0, 0};
+    double q[6];
+    for (size_t n = 1; n <= 2; n++) {
+        bench_body b;
+        bench_body_new(&b, 190, (tacet_inertia_def){9.5, 6.2, 9.0, -1.1, -0.6, 0.4});
+        for (size_t i = 0; i < n; i++) {
+            bench_mount(&b, "m", at[i], k);
+            bench_turn(&b, i, 0.3, -0.7, 1.1);
+        }
+        tacet_body *body = body_of(&b, NULL);
+        assert_int_equal(tacet_body_static(body, weight, q), TACET_BAD_INPUT);
+        tacet_body_destroy(body);
+        if (n < 2) continue;
+        bench_mount(&b, "m", (double[]){-0.1, 0.4, 0.2}, k); // now it is held
+        body = body_of(&b, NULL);
+        assert_int_equal(tacet_body_static(body, weight, q), TACET_OK);
+        tacet_body_destroy(body);
+    }
+}
+
+// Where answers may bend: modes, resonances, corners of curves, rising and each once.
+static void test_bends(void **state)
+{
+    (void)state;
+    bench_body b;
+    forwarder_body(&b);
+    tacet_resonance_def of_path[2] = {{27, 0.06, NAN, 60000}, {4.6, 0.18, NAN, 9000}};
+    tacet_point_def point = {"seat", TACET_POINT_ACCELERATION, TACET_WEIGHTING_NONE};
+    tacet_path_def path[2] = {{"front-left", 2, "seat", 1, of_path, 2, NULL},
+                              {"front-right", 2, "seat", -1, of_path, 2, NULL}};
+    double hz[2] = {3, 80}, k[2] = {540e3, 540e3};
+    b.mount[0].z_N_per_m = (tacet_curve){hz, k, 2};
+    b.def.points = &point, b.def.n_points = 1, b.def.paths = path, b.def.n_paths = 2;
+    tacet_body *body = body_of(&b, NULL);
+    tacet_arena *a = tacet_arena_create();
+    const double expected[10] = {3, 4.6, 5.02, 5.96, 8.04, 8.98, 10.49, 14.54, 27, 80};
+    double *got;
+    size_t n;
+    assert_int_equal(tacet_body_bends(body, a, &got, &n), TACET_OK);
+    assert_int_equal(n, 10);
+    for (size_t i = 0; i < n; i++)
+        assert_near(got[i], expected[i], 0.005, 0);
+    tacet_arena_destroy(a);
+    tacet_body_destroy(body);
+}
+
 // The whole turned by one rotation: other axes, same modes. Positions, tensor and mounts' axes turn
 // with it: I' = R I R^T, and Rx(a) Ry(b) Rz(c) is what a mount's own turn means.
 static void test_turned_axes_same_modes(void **state)
@@ -245,6 +296,8 @@ static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_three_mounts_with_products_of_inertia),
     cmocka_unit_test(test_leaning_pair),
     cmocka_unit_test(test_no_mounts_six_zeros),
+    cmocka_unit_test(test_what_does_not_hold),
+    cmocka_unit_test(test_bends),
     cmocka_unit_test(test_turned_axes_same_modes),
     cmocka_unit_test(test_demo_bodies),
     cmocka_unit_test(test_stiffness_over_frequency),

@@ -122,19 +122,23 @@ static double complex from_momentum(const demo *d, const tacet_response *r, size
     return sum;
 }
 
+double demo_roll_mismatch_of(const demo *d, const tacet_response *r, const tacet_spectrum *roll)
+{
+    double largest = 0, off = 0;
+    for (size_t h = 1; h <= roll->n_lines; h++) {
+        largest = fmax(largest, cabs(roll->line[h]));
+        off = fmax(off, cabs(roll->line[h] - from_momentum(d, r, h)));
+    }
+    assert_true(largest > 10);
+    return off / largest;
+}
+
 double demo_roll_mismatch(const demo *d)
 {
     const tacet_spectrum *roll;
     tacet_quantity_ref of = {.what = tacet_quantity_find("roll-torque")};
     assert_int_equal(tacet_workspace_quantity(d->work, of, &roll, NULL), TACET_OK);
-    double largest = 0, off = 0;
-    for (size_t h = 1; h <= roll->n_lines; h++) {
-        largest = fmax(largest, cabs(roll->line[h]));
-        off =
-            fmax(off, cabs(roll->line[h] - from_momentum(d, tacet_workspace_response(d->work), h)));
-    }
-    assert_true(largest > 10);
-    return off / largest;
+    return demo_roll_mismatch_of(d, tacet_workspace_response(d->work), roll);
 }
 
 tacet_roll *demo_roll(const demo *d, const char *word)

@@ -21,6 +21,7 @@ void demo_close(demo *d);
 // Roll torque of the workspace's response as judged against -d/dt of what the housed bodies hold of
 // momentum, less the torque that leaves: largest difference of a line over the largest line.
 double demo_roll_mismatch(const demo *d);
+double demo_roll_mismatch_of(const demo *d, const tacet_response *r, const tacet_spectrum *roll);
 tacet_roll *demo_roll(const demo *d, const char *word);
 tacet_condition demo_condition(const demo *d, const tacet_roll *roll, double speed_rpm);
 #endif
