@@ -2,7 +2,7 @@
 # usage: sh tests/sabotage/run.sh BUILD SOURCE [NAME..]   all errors of the list, or those named
 #        sh tests/sabotage/run.sh fits SOURCE             only: does the list fit the source?
 # Each error of tests/sabotage/list is put into a copy of its file. The copy is compiled with the
-# flags of the build and linked with a test program in front of the core library, whose own object
+# flags of the build and linked with a test program in front of the library, whose own object
 # of that file is then not asked for. The tests named must fail by an assertion; before, the same
 # link with untouched copies must pass. Nothing is written but in a scratch folder.
 set -eu
@@ -24,7 +24,11 @@ object_of() { # src/room/file.c: as the build calls its object
 }
 
 compile() { # FILE COPY OBJECT
-    command=$(command_of "libtacet-core.a.p/$(object_of "$1")")
+    case $1 in
+    src/show/*) made=src/show/libtacet-show.a.p/${1##*/}.o ;;
+    *) made=libtacet-core.a.p/$(object_of "$1") ;;
+    esac
+    command=$(command_of "$made")
     case $command in
     *" -MD "*) ;;
     *) echo "how is $1 compiled? $command" && return 1 ;;
