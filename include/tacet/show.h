@@ -169,6 +169,7 @@ typedef struct { // 2: order lines over speed
     const double *order;     // [n_orders]
     size_t n_orders;         // up to TACET_FIGURE_ORDERS_MOST
     const double *level_rms; // [n_orders * n_speeds]; NAN: not reachable at that speed
+    double highest_hz;       // end of the axis; 0: past the highest band
     const tacet_figure_band *band;
     size_t n_bands;
     const tacet_figure_mode *mode;

@@ -31,6 +31,7 @@ static double hz_at(const tacet_figure_orders *f, size_t order, double rpm)
 static double highest_hz(const tacet_figure_orders *f)
 {
     double high = 0, most = 0;
+    if (f->highest_hz > 0) return f->highest_hz;
     for (size_t b = 0; b < f->n_bands; b++)
         high = fmax(high, 1.12 * f->band[b].high_hz);
     for (size_t o = 0; o < f->n_orders; o++)

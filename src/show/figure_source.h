@@ -15,6 +15,10 @@ tacet_figure_band *figure_bands(const tacet_figure_source *s, size_t *n);
 TACET_USE tacet_status figure_solve(const tacet_figure_source *s, const tacet_roll *roll,
                                     double speed_rad_per_s, double demand_Nm, tacet_row *row,
                                     tacet_error *e);
+// As tacet_orders_of_pattern, drawn up to a frequency (INFINITY: all of it), or as far as the
+// largest line needs where `largest` is set.
+TACET_USE tacet_status figure_orders_below(const tacet_figure_source *s, double hz, bool largest,
+                                           tacet_figure_orders *out, tacet_error *e);
 // Lines under this share of the largest (-50 dB) are not drawn: they are the rounding and the
 // half orders of nearly equal cylinders, too small to see.
 #define FIGURE_LEAST_SHARE 3e-3

@@ -77,9 +77,23 @@ static double drawn_hz(const tacet_model *m)
     return high > 0 ? high : INFINITY;
 }
 
+// Past the place of the largest line of all.
+static double largest_hz(const tacet_figure_source *s, size_t n_lines, const double *level)
+{
+    const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
+    double most = 0, hz = 0;
+    for (size_t h = 1; h <= n_lines; h++)
+        for (size_t i = 0; i < d->n_speeds; i++)
+            if (level[(h - 1) * d->n_speeds + i] > most) {
+                most = level[(h - 1) * d->n_speeds + i];
+                hz = tacet_order_hz((double)h / s->roll->revolutions, d->speeds_rad_per_s[i]);
+            }
+    return 1.12 * hz;
+}
+
 // The lines that are drawn: the largest within the drawing, rising.
 static size_t pick_lines(const tacet_figure_source *s, size_t n_lines, const double *level,
-                         double *order, double *drawn)
+                         double highest_hz, double *order, double *drawn)
 {
     const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
     size_t n = d->n_speeds, used = 0;
@@ -87,8 +101,8 @@ static size_t pick_lines(const tacet_figure_source *s, size_t n_lines, const dou
     bool *picked = tacet_arena_alloc(s->arena, (n_lines + 1) * sizeof *picked);
     if (!weight || !picked) return SIZE_MAX;
     for (size_t h = 1; h <= n_lines; h++)
-        weight[h - 1] = largest_below(&level[(h - 1) * n], d, (double)h / s->roll->revolutions,
-                                      drawn_hz(s->model));
+        weight[h - 1] =
+            largest_below(&level[(h - 1) * n], d, (double)h / s->roll->revolutions, highest_hz);
     figure_pick_largest(n_lines, weight, ORDERS_DRAWN, picked);
     for (size_t h = 1; h <= n_lines; h++) {
         if (!picked[h - 1]) continue;
@@ -100,6 +114,12 @@ static size_t pick_lines(const tacet_figure_source *s, size_t n_lines, const dou
 
 tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_orders *out,
                                      tacet_error *e)
+{
+    return figure_orders_below(s, drawn_hz(s->model), false, out, e);
+}
+
+tacet_status figure_orders_below(const tacet_figure_source *s, double hz, bool largest,
+                                 tacet_figure_orders *out, tacet_error *e)
 {
     const tacet_screen_def *d = &tacet_model_study(s->model)->screen;
     size_t n_lines = tacet_model_lines(s->model, s->roll->revolutions), n = d->n_speeds;
@@ -120,6 +140,8 @@ tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_
     if (status != TACET_OK) return tacet_fail(e, status, "modes: %s", tacet_status_text(status));
     status = levels_over_speed(s, n_lines, level, e);
     if (status != TACET_OK) return status;
+    if (largest) hz = fmax(hz, largest_hz(s, n_lines, level));
+    out->highest_hz = isfinite(hz) ? hz : 0;
     for (size_t i = 0; i < n; i++)
         rpm[i] = screen_rpm(d->speeds_rad_per_s[i]);
     out->mode = mode;
@@ -127,7 +149,7 @@ tacet_status tacet_orders_of_pattern(const tacet_figure_source *s, tacet_figure_
     out->quantity = screen_quantity_name(s->model, s->of, s->arena);
     out->subtitle =
         screen_text(s->arena, "Order lines of %s over speed, at the study's torque", pattern);
-    out->n_orders = pick_lines(s, n_lines, level, order, drawn);
+    out->n_orders = pick_lines(s, n_lines, level, hz, order, drawn);
     bool whole = out->band && out->quantity && out->subtitle && out->n_orders != SIZE_MAX;
     return whole ? TACET_OK : figure_no_memory(e);
 }

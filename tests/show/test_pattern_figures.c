@@ -201,8 +201,8 @@ static void test_modes_of_body(void **state)
     assert_int_equal(tacet_modes_of_body(&model, source.arena, &f, &e), TACET_BAD_INPUT);
 }
 
-// The same lines as the order drawing, with the body's modes: a second direction is named from
-// 15 % on.
+// As the order drawing, with the body's modes (a second direction is named from 15 % on). It ends
+// at 1.12 x 20 Hz; line 18 is at 21.43 Hz at 1000 rpm, line 19 at 22.62 Hz.
 static void test_forces(void **state)
 {
     (void)state;
@@ -210,8 +210,10 @@ static void test_forces(void **state)
     tacet_figure_orders f;
     tacet_error e = {0};
     model.band[1].kind = TACET_BAND_DRIVELINE;
+    model.band[0].counted_high_hz = 20;
     assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_OK);
-    assert_int_equal(f.n_orders, 9);
+    assert_near(f.highest_hz, 22.4, 0, 1e-12);
+    assert_int_equal(f.n_orders, 18);
     assert_near(f.level_rms[2 * 3 + 1], sqrt(0.5) / 3, 0, 1e-14);
     assert_int_equal(f.n_modes, 6);
     for (size_t i = 0; i < 6; i++) {
@@ -219,8 +221,34 @@ static void test_forces(void **state)
         assert_near(f.mode[i].hz, 5.0 + (double)i, 0, 0);
     }
     assert_int_equal(f.n_bands, 1);
+    // no band that mounts reach: up to 1.3 times the last mode, line 10 is at 11.90 Hz at 1000 rpm
+    model.band[0].kind = TACET_BAND_DRIVELINE;
+    source.of = (tacet_quantity_ref){&roll_torque, 1};
+    assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_OK);
+    assert_int_equal(f.n_bands, 0);
+    assert_near(f.highest_hz, 13, 0, 1e-12);
+    assert_int_equal(f.n_orders, 10);
     model.no_body = true;
     assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_BAD_INPUT);
+}
+
+// The only line, order 3, is at 50 Hz at the lowest speed in reach: the axis goes past it.
+static void test_forces_reach_the_largest_line(void **state)
+{
+    (void)state;
+    tacet_figure_orders f;
+    tacet_error e = {0};
+    tacet_roll *own = NULL;
+    memcpy(&own, &source.roll, sizeof own);
+    tacet_roll_destroy(own);
+    set_pattern("x", "1");
+    assert_int_equal(tacet_forces_of_pattern(&source, &f, &e), TACET_OK);
+    assert_near(f.highest_hz, 56, 0, 1e-12);
+    assert_int_equal(f.n_orders, 1);
+    assert_near(f.order[0], 3, 0, 1e-15);
+    assert_int_equal(tacet_orders_of_pattern(&source, &f, &e), TACET_OK);
+    assert_near(f.highest_hz, 11.2, 0, 1e-12);
+    assert_int_equal(f.n_orders, 0);
 }
 
 // At 1000 rpm lines 3 to 8 (3.57 to 9.52 Hz) lie in the band of 3 to 10 Hz; each is 1 / h. The part
@@ -307,6 +335,7 @@ int main(void)
         EACH(test_repeat_of_fixed_cylinders),
         EACH(test_modes_of_body),
         EACH(test_forces),
+        EACH(test_forces_reach_the_largest_line),
         EACH(test_paths),
         EACH(test_paths_without_band),
     };
