@@ -112,8 +112,8 @@ function file_ends() {
 }
 
 BEGIN {
-    n = split("rad deg s ms h rpm krpm krpm2 hz m mm m2 mm2 m3 m4 kg g mg kgm2 N Nm Nms W J mj K " \
-        "k Pa kPa MPa GPa pa kpa mpa gpa db percent nm nms", u, " ")
+    n = split("rad deg s ms h rpm krpm krpm2 hz m mm m2 mm2 m3 m4 s2 kg g mg kgm kgmm kgm2 " \
+        "N Nm Nms W J mj K k Pa kPa MPa GPa pa kpa mpa gpa db percent nm nms", u, " ")
     for (i = 1; i <= n; i++) unit[u[i]] = 1
     double_word = "(^|[ (,]+)(const )?(double|tacet_curve)( complex)? +"
 }

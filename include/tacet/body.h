@@ -91,9 +91,9 @@ typedef struct tacet_body_def {
     size_t n_paths;
     const char *folder; // tables are relative to it; NULL: the working folder
 } tacet_body_def;
-const tacet_section *tacet_body_keys(void);
-tacet_body_def tacet_body_default(void); // no body
-bool tacet_body_def_given(const tacet_body_def *d);
+const tacet_section *tacet_body_keys(void);         // section `body` of a study
+tacet_body_def tacet_body_default(void);            // no body
+bool tacet_body_def_given(const tacet_body_def *d); // false: the study has none
 // An inertia that no body can have, lists that are not three long, unknown mounts and points,
 // stiffness that is not positive, a path without resonance or table or with both, ..
 void tacet_body_def_check(const tacet_body_def *d, const tacet_reporter *r);
@@ -103,15 +103,16 @@ typedef struct tacet_body tacet_body; // frozen, shared
 // Borrows d and what it points to; reads the tables. en: geometry, firing angles, rotation.
 TACET_USE tacet_status tacet_body_create(const tacet_body_def *d, const tacet_engine *en,
                                          tacet_body **out, tacet_error *e);
-void tacet_body_destroy(tacet_body *b); // accepts NULL
-size_t tacet_body_mounts(const tacet_body *b);
-size_t tacet_body_points(const tacet_body *b);
-size_t tacet_body_places(const tacet_body *b);
-size_t tacet_body_paths(const tacet_body *b);
-const char *tacet_body_mount_name(const tacet_body *b, size_t mount);
-const char *tacet_body_point_name(const tacet_body *b, size_t point);
-const char *tacet_body_place_name(const tacet_body *b, size_t place);
-const tacet_body_def *tacet_body_def_of(const tacet_body *b);
+void tacet_body_destroy(tacet_body *b);        // accepts NULL
+size_t tacet_body_mounts(const tacet_body *b); // how many
+size_t tacet_body_points(const tacet_body *b); // how many
+size_t tacet_body_places(const tacet_body *b); // how many
+size_t tacet_body_paths(const tacet_body *b);  // how many
+// Names as in the study.
+const char *tacet_body_mount_name(const tacet_body *b, size_t mount); // mount < tacet_body_mounts
+const char *tacet_body_point_name(const tacet_body *b, size_t point); // point < tacet_body_points
+const char *tacet_body_place_name(const tacet_body *b, size_t place); // place < tacet_body_places
+const tacet_body_def *tacet_body_def_of(const tacet_body *b);         // what it was created from
 
 typedef double tacet_six[6];
 typedef double complex tacet_six_complex[6];
@@ -145,8 +146,8 @@ void tacet_body_torque_roll_axis(const tacet_body *b, double axis[3]);
 // Load of reciprocating and rotating masses at constant speed about the centre of gravity, over
 // W^2 (kg m; kg m2), on twice the order: halves[k] is order k / 2, k = 1 .. TACET_SHAKING_HALVES.
 // Exact from the slider-crank. It does not depend on the pattern.
+const tacet_six_complex *tacet_body_shaking(const tacet_body *b);
 #define TACET_SHAKING_HALVES 48
-const double complex (*tacet_body_shaking(const tacet_body *b))[6];
 
 // Motion per line of a repeat; memory of the caller, made once.
 typedef struct {
@@ -157,6 +158,7 @@ typedef struct {
     tacet_six_complex *shaken; // [n_lines + 1] q of the shaking loads at this speed
     tacet_six roll_static;     // order 0 of the first; NAN: the mounts do not hold the body
 } tacet_body_response;
+// Reserves n_lines up to most_lines.
 TACET_USE tacet_status tacet_body_response_init(tacet_body_response *r, size_t most_lines,
                                                 tacet_arena *a);
 // TACET_NOT_FINITE: an undamped mode is driven exactly at its own frequency.

@@ -36,10 +36,11 @@ double tacet_model_highest_order(const tacet_model *m, bool *limited);
 // All-fire reference level of a band at its worst screened speed; NAN: unreachable at every one.
 double tacet_model_reference(const tacet_model *m, size_t band);
 size_t tacet_model_lines(const tacet_model *m, unsigned revolutions); // lines of a repeat
+// Names and units that may depend on the study's body.
 const char *tacet_model_quantity_text(const tacet_model *m, tacet_quantity_ref q,
                                       char out[TACET_QUANTITY_TEXT]);
-const char *tacet_model_limit_unit(const tacet_model *m, size_t limit);
-const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q);
+const char *tacet_model_limit_unit(const tacet_model *m, size_t limit); // "MPa", "1/h", ..
+const char *tacet_model_quantity_unit(const tacet_model *m, tacet_quantity_ref q); // "N", ..
 double tacet_model_demand(const tacet_model *m,
                           double speed_rad_per_s); // of the study at a speed, N m
 size_t tacet_model_throws(const tacet_model *m);   // driven nodes
@@ -113,9 +114,10 @@ const tacet_engine_work *tacet_workspace_engine(const tacet_workspace *w);
 // Spectrum of any quantity of the last solved condition into workspace memory; peaks on request.
 TACET_USE tacet_status tacet_workspace_quantity(tacet_workspace *w, tacet_quantity_ref q,
                                                 const tacet_spectrum **out, tacet_peaks *peaks);
-// The same of one path's share, and comfort at a point of acceleration.
+// The same of one path's share.
 TACET_USE tacet_status tacet_workspace_path(tacet_workspace *w, size_t path,
                                             const tacet_spectrum **out);
+// Comfort at a point of acceleration.
 TACET_USE tacet_status tacet_workspace_comfort(tacet_workspace *w, size_t point,
                                                tacet_comfort *out);
 

@@ -71,9 +71,10 @@ const char *tacet_quantity_text(tacet_quantity_ref q, const tacet_train *t,
                                 const tacet_body_def *body, char out[TACET_QUANTITY_TEXT]);
 // Of cab and shaking it depends on the target.
 const char *tacet_quantity_unit(tacet_quantity_ref q, const tacet_body_def *body);
-// Targets of a kind (TACET_TARGET_..) and their names; nodes and links need the train, the others
-// the body.
+// Targets of a kind (TACET_TARGET_..) and what they are called; nodes and links need the train, the
+// others the body.
 size_t tacet_target_count(int target, const tacet_train *t, const tacet_body_def *body);
+// The name of one, i < tacet_target_count: "coupling", "left:z", ..
 const char *tacet_target_text(int target, size_t i, const tacet_train *t,
                               const tacet_body_def *body, char out[TACET_QUANTITY_TEXT]);
 const char *tacet_target_kind(int target); // "node", "link", "mount and axis", ..
@@ -221,6 +222,7 @@ typedef struct {
     double *cycles; // TACET_RAIN_SCRATCH numbers a sample and one; NULL: no limit counts cycles
 } tacet_limit_scratch;
 #define TACET_RAIN_SCRATCH 5
+// Statistic of the quantity against the limit; a value that is not finite: TACET_NOT_FINITE.
 TACET_USE tacet_status tacet_limit_judge(const tacet_limit *l, const tacet_response *r,
                                          double reserve_db, const tacet_limit_scratch *scratch,
                                          tacet_limit_result *out);
@@ -244,7 +246,7 @@ typedef struct {
 // s: acceleration, already weighted; no lines: all 0.
 void tacet_comfort_of(const tacet_spectrum *s, const tacet_transform *transform, double *buffer,
                       tacet_comfort *out);
-double tacet_vibration_dose(const tacet_comfort *c, double seconds); // VDV, m/s^1.75
+double tacet_vibration_dose(const tacet_comfort *c, double time_s); // VDV, m/s^1.75
 // Annex C's words for a total value in m/s2, "not uncomfortable" .. "extremely uncomfortable";
 // its ranges overlap on purpose: up to two apply, `second` may be NULL or gets NULL.
 const char *tacet_comfort_words(double total_m_per_s2, const char **second);
@@ -252,12 +254,12 @@ const char *tacet_comfort_words(double total_m_per_s2, const char **second);
 double tacet_total_value(const double k[3], const double weighted_rms[3]);
 
 // ---- strength ----------------------------------------------------------------------------------
-// Rainflow counting of ASTM E1049-85 5.4.4: series[n] -> cycles with range, mean and count (0.5 or
-// 1) in the order in which they close; points between reversals and repeated ones do not count.
-// Returns how many (fewer than n). `stack` and `out` hold n.
 typedef struct {
     double range, mean, count;
 } tacet_rain;
+// Rainflow counting of ASTM E1049-85 5.4.4: series[n] -> cycles with range, mean and count (0.5 or
+// 1) in the order in which they close; points between reversals and repeated ones do not count.
+// Returns how many (fewer than n). `stack` and `out` hold n.
 size_t tacet_rainflow(size_t n, const double *series, double *stack, tacet_rain *out);
 // A closed repeat, samples[n] of one period: counted from its largest value on around to it again,
 // so that every cycle is whole (5.4.5). `series`, `stack` and `out` hold n + 1.

@@ -343,14 +343,14 @@ TACET_USE tacet_status tacet_modes_of_body(const tacet_model *m, tacet_arena *a,
 // reach (kinds mount and cab).
 TACET_USE tacet_status tacet_forces_of_pattern(const tacet_figure_source *s,
                                                tacet_figure_orders *out, tacet_error *e);
-// What the paths bring to points, each at a condition of its own; `of` and `roll` of the source are
-// not used.
 typedef struct {
     size_t point;
     size_t band; // judged on the point; SIZE_MAX: none
     const tacet_roll *roll;
     double speed_rad_per_s, demand_Nm;
 } tacet_point_condition;
+// What the paths bring to points, each at a condition of its own; `of` and `roll` of the source are
+// not used.
 TACET_USE tacet_status tacet_paths_of_points(const tacet_figure_source *s,
                                              const tacet_point_condition *at, size_t n_points,
                                              tacet_figure_paths *out, tacet_error *e);

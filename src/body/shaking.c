@@ -96,7 +96,7 @@ void shaking_assemble(tacet_body *b, const tacet_engine *en)
     }
 }
 
-const double complex (*tacet_body_shaking(const tacet_body *b))[6]
+const tacet_six_complex *tacet_body_shaking(const tacet_body *b)
 {
     return b->shaking;
 }

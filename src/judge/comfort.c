@@ -26,9 +26,9 @@ void tacet_comfort_of(const tacet_spectrum *s, const tacet_transform *transform,
         out->crest_factor <= CREST_MOST && out->fourth_power <= FOURTH_MOST * rms;
 }
 
-double tacet_vibration_dose(const tacet_comfort *c, double seconds)
+double tacet_vibration_dose(const tacet_comfort *c, double time_s)
 {
-    return c->fourth_power * sqrt(sqrt(seconds));
+    return c->fourth_power * sqrt(sqrt(time_s));
 }
 
 const char *tacet_comfort_words(double total, const char **second)
