@@ -41,6 +41,20 @@ bool tacet_limit_counts_cycles(const tacet_limit *l)
     return l->statistic == TACET_STAT_DAMAGE || l->statistic == TACET_STAT_REVERSED;
 }
 
+// Puts what lies between two samples into the higher, or lower, one of them: the vertex of the
+// parabola through it and its neighbours.
+static void raise_turns(size_t n, double *y)
+{
+    double first = y[0], before = y[n - 1];
+    for (size_t i = 0; i < n; i++) {
+        double here = y[i], after = i + 1 < n ? y[i + 1] : first;
+        double bend = before + after - 2 * here;
+        if ((here - before) * (after - here) < 0)
+            y[i] = here - (after - before) * (after - before) / (8 * bend);
+        before = here;
+    }
+}
+
 // Rainflow of the closed repeat.
 static tacet_status of_cycles(const tacet_limit *l, const tacet_response *r,
                               const tacet_limit_scratch *q, double *out)
@@ -51,11 +65,14 @@ static tacet_status of_cycles(const tacet_limit *l, const tacet_response *r,
     tacet_rain *rain = (tacet_rain *)(void *)(stack + n + 1);
     tacet_link_info link = tacet_train_link_info(r->train, l->of.target);
     tacet_transform_samples_of(q->transform, q->spectrum, q->buffer);
+    raise_turns(n, q->buffer);
     size_t cycles = tacet_rainflow_repeat(n, q->buffer, series, stack, rain);
     double repeats_per_h = 3600 * r->speed_rad_per_s / (2 * M_PI * r->revolutions), largest = 0;
-    for (size_t i = 0; i < cycles; i++)
-        largest = fmax(largest,
-                       tacet_reversed_amplitude(&link.fatigue, 0.5 * rain[i].range, rain[i].mean));
+    for (size_t i = 0; i < cycles; i++) {
+        double a = tacet_reversed_amplitude(&link.fatigue, 0.5 * rain[i].range, rain[i].mean);
+        if (!(a <= largest)) largest = a; // NAN stays to be seen
+        if (isnan(a)) break;
+    }
     *out = l->statistic == TACET_STAT_REVERSED
                ? largest
                : repeats_per_h * tacet_miner_sum(&link.fatigue, cycles, rain);

@@ -1,4 +1,5 @@
 #include "hand_train.h"
+#include <math.h>
 
 size_t tacet_train_nodes(const tacet_train *t)
 {
@@ -48,6 +49,7 @@ bool tacet_train_node_housed(const tacet_train *t, size_t node)
 tacet_link_info tacet_train_link_info(const tacet_train *t, size_t link)
 {
     return (tacet_link_info){
+        .fatigue = t->fatigue ? *t->fatigue : (tacet_fatigue_def){.amplitude_MPa = NAN},
         .from = t->link[link].from,
         .to = t->link[link].to,
         .stiffness_Nm_per_rad = t->link[link].stiffness_Nm_per_rad,

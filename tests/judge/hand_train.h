@@ -8,6 +8,7 @@
 
 struct tacet_train {
     size_t n_nodes, n_links, flywheel, load;
+    const tacet_fatigue_def *fatigue; // of every link; NULL: not stated
     struct {
         const char *name;
         double inertia_kgm2, damping_Nms_per_rad, ratio;

@@ -2,11 +2,14 @@
 #include "near.h"
 #include "tacet/judge.h"
 #include <math.h>
+#include <stdlib.h>
 #include <string.h>
 
 #define LINES 6
 
+static const tacet_fatigue_def steel = {40, 1e6, 5, 100, TACET_MEAN_GOODMAN};
 static const tacet_train train = {
+    .fatigue = &steel,
     .n_nodes = 2,
     .n_links = 1,
     .node = {{"flywheel", 1, 0, 1, true}, {"load", 1, 0, 1, false}},
@@ -155,6 +158,36 @@ static void test_zero_is_clear(void **state)
     bench_clear(&b);
 }
 
+// A cosine of 20 MPa on a mean of 10 with its tops halfway between two of its 16 samples: Goodman
+// 20 / (1 - 10 / 100) = 22.222 MPa, four times a repeat of two revolutions; by Miner at 100 rad/s
+// 3600 * 100 / (4 pi) repeats an hour of 4 (22.222 / 40)^5 / 1e6.
+static void test_cycles_between_samples(void **state)
+{
+    (void)state;
+    bench b;
+    bench_init(&b);
+    size_t n = tacet_transform_samples(b.t);
+    assert_int_equal(n, 64);
+    b.torque.mean = 50;
+    b.torque.line[4] = 100 * cexp(I * M_PI / 16);
+    double *cycles = calloc(TACET_RAIN_SCRATCH * (n + 1), sizeof *cycles);
+    const tacet_limit_scratch scratch = {&b.scratch, b.t, b.x, cycles};
+    const double expected[2] = {20 / 0.9,
+                                3600 * 100 / (4 * M_PI) * 4 * pow(20 / 0.9 / 40, 5) / 1e6};
+    for (int i = 0; i < 2; i++) {
+        tacet_limit l =
+            limit_of("link-stress:coupling", i ? TACET_STAT_DAMAGE : TACET_STAT_REVERSED, 30);
+        tacet_limit_result r;
+        assert_int_equal(tacet_limit_judge(&l, &b.r, 3, &scratch, &r), TACET_OK);
+        assert_near(r.value, expected[i], 0, i ? 5e-3 : 1e-3);
+        b.torque.line[3] = NAN;
+        assert_int_equal(tacet_limit_judge(&l, &b.r, 3, &scratch, &r), TACET_NOT_FINITE);
+        b.torque.line[3] = 0;
+    }
+    free(cycles);
+    bench_clear(&b);
+}
+
 static void test_not_finite_is_refused(void **state)
 {
     (void)state;
@@ -221,6 +254,7 @@ int main(void)
         cmocka_unit_test(test_quantities_with_one_statistic),
         cmocka_unit_test(test_verdicts),
         cmocka_unit_test(test_zero_is_clear),
+        cmocka_unit_test(test_cycles_between_samples),
         cmocka_unit_test(test_not_finite_is_refused),
         cmocka_unit_test(test_create_refuses),
         cmocka_unit_test(test_no_verdict),
