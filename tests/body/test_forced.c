@@ -106,6 +106,35 @@ static void test_reciprocity_static_and_free_limits(void **state)
     tacet_body_destroy(body);
 }
 
+// At rest the static stiffness stands where it is stated, without loss, else the dynamic one at its
+// lowest frequency.
+static void test_static_stiffness_at_rest(void **state)
+{
+    (void)state;
+    bench_body b;
+    bench_body_new(&b, 200, (tacet_inertia_def){8, 14, 16, 0, 0, 0});
+    b.loss = 0.1;
+    for (int i = 0; i < 4; i++)
+        bench_mount(&b, "m", (double[]){i & 1 ? .3 : -.3, i & 2 ? .2 : -.2, 0},
+                    (double[]){1e5, 1e5, 2.5e5});
+    double hz[2] = {2, 90}, k[2] = {1.5e5, 4e5};
+    for (int i = 0; i < 4; i++) {
+        b.mount[i].static_z_N_per_m = 1e5;
+        b.mount[i].y_N_per_m = (tacet_curve){hz, k, 2};
+    }
+    tacet_body *body = body_of(&b, NULL);
+    const tacet_six load = {0, 60, 100, 0, 0, 0};
+    tacet_six q;
+    assert_int_equal(tacet_body_static(body, load, q), TACET_OK);
+    assert_near(q[2], 100 / 4e5, 0, 1e-12);
+    assert_near(q[1], 60 / 6e5, 0, 1e-12);
+    const tacet_six_complex up = {0, 0, 1, 0, 0, 0};
+    assert_near(cabs(tacet_body_mount_force(body, 0, 2, 0, up) - 1e5), 0, 1e-6, 0);
+    assert_near(cabs(tacet_body_mount_force(body, 0, 2, 1, up) - 2.5e5 * (1 + 0.1 * I)), 0, 1e-6,
+                0);
+    tacet_body_destroy(body);
+}
+
 // Mounts symmetric about the vertical plane of the crank: a torque about it moves neither x nor z,
 // and does not pitch, exactly.
 static void test_symmetric_mounts_decouple(void **state)
@@ -203,6 +232,7 @@ static const struct CMUnitTest tests[] = {
     cmocka_unit_test(test_bounce_is_one_degree_of_freedom),
     cmocka_unit_test(test_mount_forces_balance_load_and_inertia),
     cmocka_unit_test(test_reciprocity_static_and_free_limits),
+    cmocka_unit_test(test_static_stiffness_at_rest),
     cmocka_unit_test(test_symmetric_mounts_decouple),
     cmocka_unit_test(test_shaking_on_its_lines),
     cmocka_unit_test(test_paths_add_up),

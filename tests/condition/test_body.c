@@ -509,8 +509,8 @@ static void test_a_table_may_end_in_a_band(void **state)
     assert_true(file >= 0);
     FILE *f = fdopen(file, "w");
     assert_non_null(f);
-    fputs("hz,real,imaginary\n5,1e-3,0\n9.2,2e-3,1e-3\n9.3,0,0\n13.7,0,0\n13.72,4e-3,0\n"
-          "13.74,0,0\n20.013,1e-3,-5e-4\n",
+    fputs("hz,real,imaginary\n5,1e-3,0\n9.2,2e-3,1e-3\n9.3,0,0\n13.73,0,0\n13.85,0.1,0\n"
+          "13.97,0,0\n14.9,0,0\n20.013,1e-3,-5e-4\n",
           f);
     fclose(f);
     snprintf(paths, sizeof paths, "{mount: a, to: seat, table: %s}", path);
