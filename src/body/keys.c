@@ -21,12 +21,12 @@ static const char *const axes[] = {"x", "y", "z", NULL};
 #define MOMENT(word, what)                                                                         \
     {                                                                                              \
         .key = #word, .kind = TACET_FIELD_NUMBER, INERTIA(word), .unit = "kg m2", .low = 1e-6,     \
-        .high = 1e8, .doc = what                                                                   \
+        .high = 1e8, .doc = (what)                                                                 \
     }
 #define PRODUCT(word, what)                                                                        \
     {                                                                                              \
         .key = #word, .kind = TACET_FIELD_NUMBER, INERTIA(word), .unit = "kg m2", .fallback = "0", \
-        .low = -1e8, .high = 1e8, .doc = what                                                      \
+        .low = -1e8, .high = 1e8, .doc = (what)                                                    \
     }
 static const tacet_field inertia_fields[] = {
     MOMENT(xx, "about the axis along the crank"),
@@ -43,13 +43,13 @@ static const tacet_section inertia_section = {.name = "inertia_kgm2",
 
 #define DYNAMIC(word, member, what)                                                                \
     {                                                                                              \
-        .key = word, .kind = TACET_FIELD_CURVE, MOUNT(member), .unit = "N/mm", .x_unit = "Hz",     \
-        .low = 1e-3, .high = 1e8, .doc = what                                                      \
+        .key = (word), .kind = TACET_FIELD_CURVE, MOUNT(member), .unit = "N/mm", .x_unit = "Hz",   \
+        .low = 1e-3, .high = 1e8, .doc = (what)                                                    \
     }
 #define STATIC(word, member, what)                                                                 \
     {                                                                                              \
-        .key = word, .kind = TACET_FIELD_NUMBER, MOUNT(member), .unit = "N/mm", .fallback = "",    \
-        .low = 1e-3, .high = 1e8, .doc = what                                                      \
+        .key = (word), .kind = TACET_FIELD_NUMBER, MOUNT(member), .unit = "N/mm", .fallback = "",  \
+        .low = 1e-3, .high = 1e8, .doc = (what)                                                    \
     }
 static const tacet_field mount_fields[] = {
     {.key = "name", .kind = TACET_FIELD_NAME, MOUNT(name), .doc = "what quantities call it"},
@@ -243,9 +243,9 @@ static const tacet_section path_section = {.name = "paths",
 
 #define LIST(word, member, what, how)                                                              \
     {                                                                                              \
-        .key = word, .kind = TACET_FIELD_SECTIONS, BODY(member),                                   \
+        .key = (word), .kind = TACET_FIELD_SECTIONS, BODY(member),                                 \
         .count_offset = offsetof(tacet_body_def, n_##member), .fallback = "", .section = &(what),  \
-        .doc = how                                                                                 \
+        .doc = (how)                                                                               \
     }
 static const tacet_field body_fields[] = {
     {.key = "mass_kg",
