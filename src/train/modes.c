@@ -148,7 +148,7 @@ tacet_status train_modes_solve(tacet_train *t, tacet_error *e)
     for (size_t j = 0; j < t->n; j++)
         t->mode_shape[j] = t->ratio[j];
     scale(t->mode_shape, t->n);
-    if (t->n_links == 0) return TACET_OK;
+    if (t->n_links == 0 || t->n < 2) return TACET_OK;
     solver s;
     tacet_status status = TACET_NO_MEMORY;
     if (!reserve(&s, t->n, t->n_links)) goto done;
