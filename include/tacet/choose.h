@@ -83,6 +83,19 @@ typedef struct {
     tacet_agreement a;
 } tacet_referee;
 
+// The worst force of a mount along one of its own axes on one order, over all cells and all their
+// placements, and the same of all-fire alone at the screened speeds.
+typedef struct {
+    size_t mount;
+    int axis;                   // 0 x, 1 y, 2 z
+    unsigned line, revolutions; // order in lowest terms; line 0: static, at the mean torque
+    double peak_N;
+    size_t candidate, placement;
+    double speed_rad_per_s, demand_Nm;
+    double all_fire_N;               // 0: it has no such order; NAN: it reaches the demand nowhere
+    double all_fire_speed_rad_per_s; // NAN where it has none
+} tacet_mount_worst;
+
 typedef struct tacet_screen {
     tacet_arena *arena;
     tacet_candidate *candidates;
@@ -96,6 +109,8 @@ typedef struct tacet_screen {
     tacet_rank *ranks; // [n_ranks], one a grid speed
     size_t n_ranks;
     tacet_candidate_note *notes; // [n_candidates]
+    tacet_mount_worst *mounts;   // by mount and axis, the largest first, static last; no body: none
+    size_t n_mounts;             // of each mount and axis up to 64 orders that are something
     tacet_referee *referee;      // smallest margin first
     size_t n_referee;
     size_t n_failed, n_solves; // conditions, those of the bisection among them

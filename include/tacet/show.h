@@ -291,7 +291,8 @@ typedef struct {
                           tacet_table *out);
 } tacet_screen_table;
 // runs (stretches of speed), summary (one row a candidate), ranking (one row a speed), no-go,
-// agreement, levels (one row a condition, every column); ends with name == NULL.
+// agreement, mounts (worst forces; no body: no rows), levels (one row a condition, every column);
+// ends with name == NULL.
 const tacet_screen_table *tacet_screen_tables(void);
 const tacet_screen_table *tacet_screen_table_find(const char *name); // NULL: none
 // First lines: what runs where, what it saves, what limits. lines[n], in the arena.
@@ -301,8 +302,8 @@ TACET_USE tacet_status tacet_screen_summary(const tacet_model *m, const tacet_sc
 // agreement of the solvers, caution.
 TACET_USE tacet_status tacet_screen_print(const tacet_model *m, const tacet_screen *s,
                                           const tacet_table_style *style, FILE *to);
-// Members "summary", "candidates", "ranking", "no_go", "agreement", "conditions" into an open
-// object.
+// Members "summary", "candidates", "ranking", "no_go", "agreement", "mounts", "conditions" into an
+// open object.
 TACET_USE tacet_status tacet_screen_json(tacet_json *j, const tacet_model *m,
                                          const tacet_screen *s);
 // Members of one condition into an open object: "speed_rpm", "demand_nm", "outcome", "duty",

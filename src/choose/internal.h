@@ -1,6 +1,7 @@
 // Inside of the room choose.
 #ifndef CHOOSE_INTERNAL_H
 #define CHOOSE_INTERNAL_H
+#include "rules.h"
 #include "tacet/choose.h"
 
 // ---- lists that grow, in an arena -------------------------------------------------------------
@@ -92,6 +93,28 @@ TACET_USE tacet_status notes_make(tacet_screen *s, tacet_arena *scratch);
 // The best of each rank, and who is not recommended and why; after the two above.
 TACET_USE tacet_status recommend(tacet_screen *s, const note_rules *rules, tacet_arena *scratch);
 bool cell_is_clear(const tacet_cell *c);
+
+// ---- worst mount forces (mounts.c) ------------------------------------------------------------
+typedef struct { // a force and where it is met
+    unsigned line, revolutions;
+    double square; // N2
+    size_t candidate, placement;
+    double speed, demand;
+} worst_line;
+typedef struct {                      // of one mount and axis
+    worst_line at[MOUNT_ORDERS_MOST]; // [n] each order once, the worst first
+    size_t n;
+    worst_line at_rest; // static; square < 0: none yet
+} worst_list;
+void worst_take(worst_list *l, const worst_line *x);
+typedef struct mount_forces mount_forces;
+// *out NULL: there are no mounts, and the others do nothing.
+TACET_USE tacet_status mounts_create(mount_forces **out, const tacet_model *m, tacet_arena *a);
+// The last solved condition of the workspace, met at candidate, placement, speed and demand of
+// `where`; candidate SIZE_MAX: all-fire, not a candidate itself.
+TACET_USE tacet_status mounts_take(mount_forces *f, const worst_line *where, bool all_fire,
+                                   tacet_workspace *w);
+TACET_USE tacet_status mounts_finish(const mount_forces *f, tacet_screen *s);
 
 // ---- referee (referee.c) ----------------------------------------------------------------------
 // The `most` worst solved grid cells, spread over the candidates, smallest margin first.

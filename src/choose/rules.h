@@ -2,6 +2,11 @@
 #ifndef CHOOSE_RULES_H
 #define CHOOSE_RULES_H
 
+// Orders of one mount and axis whose worst forces are kept: more than anybody looks at.
+#define MOUNT_ORDERS_MOST 64
+// Share of a mount's largest force below which an order is not told.
+#define MOUNT_SHARE 1e-3
+
 #define RAD_PER_S_OF_RPM (3.14159265358979323846 / 30)
 
 // A line is significant for a band when, at some grid speed and placement, its peak is at least

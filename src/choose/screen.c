@@ -14,10 +14,12 @@ typedef struct {
     tacet_error *e;
     size_t *order; // active candidates by length of repeat: neighbours share the workspace's memos
     size_t n_order;
-    line_marks *marks; // [n_candidates]
-    samples *samples;  // [n_candidates]
-    size_t of;         // conditions known to be done
-    size_t probed;     // candidate of the bisection
+    line_marks *marks;    // [n_candidates]
+    samples *samples;     // [n_candidates]
+    size_t of;            // conditions known to be done
+    size_t probed;        // candidate of the bisection
+    mount_forces *mounts; // NULL: none
+    bool all_fire_apart;  // all-fire is no candidate
 } screening;
 
 static tacet_status no_memory(screening *g)
@@ -51,6 +53,23 @@ static tacet_status solve_placement(screening *g, const tacet_candidate *c, size
     return TACET_OK;
 }
 
+static bool is_all_fire(const tacet_roll *r)
+{
+    return r->pattern.length == 1 && r->pattern.tenths[0] == 10;
+}
+
+static tacet_status take_mounts(screening *g, size_t candidate, size_t placement,
+                                const tacet_row *row)
+{
+    const tacet_roll *roll = g->s->candidates[candidate].roll[placement];
+    worst_line where = {.candidate = candidate,
+                        .placement = placement,
+                        .speed = row->speed_rad_per_s,
+                        .demand = row->demand_Nm};
+    if (row->outcome != TACET_SOLVED) return TACET_OK;
+    return mounts_take(g->mounts, &where, is_all_fire(roll), g->w);
+}
+
 // All placements; `cell` and `marks` may be NULL.
 static tacet_status solve_all(screening *g, size_t candidate, double speed, sample *seen,
                               tacet_cell *cell, line_marks *marks)
@@ -67,6 +86,7 @@ static tacet_status solve_all(screening *g, size_t candidate, double speed, samp
             cell->row = row;
             cell->placement = p;
         }
+        if (cell && take_mounts(g, candidate, p, &row) != TACET_OK) g->s->n_failed++;
         if (marks && line_marks_take(marks, g->m, &row, g->w) != TACET_OK) g->s->n_failed++;
     }
     say(g);
@@ -95,8 +115,12 @@ static tacet_status put_in_order(screening *g)
     g->marks = tacet_arena_alloc(g->scratch, s->n_candidates * sizeof *g->marks);
     g->samples = tacet_arena_alloc(g->scratch, s->n_candidates * sizeof *g->samples);
     if (!g->order || !g->marks || !g->samples) return no_memory(g);
+    if (mounts_create(&g->mounts, g->m, g->scratch) != TACET_OK) return no_memory(g);
+    g->all_fire_apart = true;
     for (size_t c = 0; c < s->n_candidates; c++) {
         if (s->candidates[c].refused) continue;
+        for (size_t p = 0; p < s->candidates[c].n_placements; p++)
+            if (is_all_fire(s->candidates[c].roll[p])) g->all_fire_apart = false;
         const tacet_roll *roll = s->candidates[c].roll[0];
         if (line_marks_init(&g->marks[c], g->m, roll, g->scratch) != TACET_OK) return no_memory(g);
         size_t i = g->n_order++;
@@ -112,11 +136,28 @@ static tacet_status put_in_order(screening *g)
 
 // ---- grid and extra speeds --------------------------------------------------------------------
 
+// Mount forces of all-fire at a grid speed, where no candidate brings them.
+static tacet_status solve_all_fire(screening *g, double speed)
+{
+    tacet_row row;
+    worst_line where = {
+        .candidate = SIZE_MAX, .speed = speed, .demand = tacet_model_demand(g->m, speed)};
+    tacet_condition c = {
+        .speed_rad_per_s = speed, .demand_Nm = where.demand, .roll = tacet_model_all_fire(g->m)};
+    if (!g->mounts || !g->all_fire_apart) return TACET_OK;
+    tacet_status status = tacet_solve(g->m, &c, TACET_LEVEL_RIPPLE, g->w, &row);
+    if (status != TACET_OK) return no_memory(g);
+    if (row.outcome != TACET_SOLVED) return TACET_OK; // nothing to stand beside
+    return mounts_take(g->mounts, &where, true, g->w) == TACET_NO_MEMORY ? no_memory(g) : TACET_OK;
+}
+
 // The grid's cells stand apart until the number of extra ones is known.
 static tacet_status solve_grid(screening *g, tacet_cell *cells)
 {
     tacet_screen *s = g->s;
-    for (size_t i = 0; i < s->n_speeds; i++)
+    for (size_t i = 0; i < s->n_speeds; i++) {
+        tacet_status apart = solve_all_fire(g, s->speeds_rad_per_s[i]);
+        if (apart != TACET_OK) return apart;
         for (size_t k = 0; k < g->n_order; k++) {
             size_t c = g->order[k];
             sample seen;
@@ -125,6 +166,7 @@ static tacet_status solve_grid(screening *g, tacet_cell *cells)
             if (status != TACET_OK) return status;
             if (samples_add(&g->samples[c], &seen, g->scratch) != TACET_OK) return no_memory(g);
         }
+    }
     return TACET_OK;
 }
 
@@ -311,6 +353,7 @@ static tacet_status run(screening *g, tacet_problems *problems)
     if (!grid_cells) return no_memory(g);
     status = solve_grid(g, grid_cells);
     if (status == TACET_OK) status = solve_extra(g, grid_cells);
+    if (status == TACET_OK && mounts_finish(g->mounts, s) != TACET_OK) status = no_memory(g);
     if (status == TACET_OK) status = find_no_go(g);
     if (status == TACET_OK) status = judge_together(g);
     if (status == TACET_OK) status = ask_referee(g);

@@ -126,14 +126,15 @@ const cli_command cli_screen_command = {
     .name = "screen",
     .operands = "STUDY",
     .doc = "the main job: which densities may run where, and what that rests on",
-    .about = "Solves every density and pattern of the study at every speed, finds the exact speeds "
-             "at which\nlevels go over their limits, ranks what is clear by fuel, and solves the "
-             "worst conditions again\nby a second method. The folder gets map, orders, bars and "
-             "repeat (drawings), summary.txt,\nruns.csv, summary.csv, ranking.csv, no-go.csv, "
-             "agreement.csv, levels.csv and screen.json;\nof a study with a body on mounts also "
-             "modes, forces and "
-             "paths (drawings).\nWith --strict the exit code is 1 when "
-             "some speed has no clear pattern.\n",
+    .about =
+        "Solves every density and pattern of the study at every speed, finds the exact speeds "
+        "at which\nlevels go over their limits, ranks what is clear by fuel, and solves the "
+        "worst conditions again\nby a second method. The folder gets map, orders, bars and "
+        "repeat (drawings), summary.txt,\nruns.csv, summary.csv, ranking.csv, no-go.csv, "
+        "agreement.csv, levels.csv and screen.json;\nof a study with a body on mounts also "
+        "modes, forces and paths (drawings) and mounts.csv, the\nworst force of each mount, "
+        "axis and order of all patterns.\nWith --strict the exit code is 1 when some speed has "
+        "no clear pattern.\n",
     .examples = examples,
     .options = options,
     .least_operands = 1,

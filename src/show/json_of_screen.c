@@ -137,11 +137,8 @@ tacet_status tacet_screen_json(tacet_json *j, const tacet_model *m, const tacet_
 {
     static const struct {
         const char *key, *table;
-    } parts[] = {{"runs", "runs"},
-                 {"candidates", "summary"},
-                 {"ranking", "ranking"},
-                 {"no_go", "no-go"},
-                 {"agreement", "agreement"}};
+    } parts[] = {{"runs", "runs"},   {"candidates", "summary"},  {"ranking", "ranking"},
+                 {"no_go", "no-go"}, {"agreement", "agreement"}, {"mounts", "mounts"}};
     const char *const *lines;
     size_t n;
     tacet_arena *a = tacet_arena_create();

@@ -194,7 +194,7 @@ static tacet_status save_data(const save_job *b, tacet_error *e)
 {
     tacet_status status = save_text(b, e);
     for (const tacet_screen_table *t = tacet_screen_tables(); status == TACET_OK && t->name; t++)
-        status = save_table(b, t, e);
+        if (tacet_model_body(b->m) || strcmp(t->name, "mounts") != 0) status = save_table(b, t, e);
     return status == TACET_OK ? save_json(b, e) : status;
 }
 

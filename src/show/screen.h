@@ -39,6 +39,8 @@ tacet_status screen_no_go_table(const tacet_model *m, const tacet_screen *s, tac
                                 tacet_table *out);
 tacet_status screen_agreement_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                                     tacet_table *out);
+tacet_status screen_mounts_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
+                                 tacet_table *out);
 tacet_status screen_levels_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                                  tacet_table *out);
 

@@ -8,6 +8,7 @@ static const tacet_screen_table tables[] = {
     {"ranking", "the best two at each speed", screen_ranking_table},
     {"no-go", "speeds at which a band's level is over its limit", screen_no_go_table},
     {"agreement", "how well the solvers agree on the worst conditions", screen_agreement_table},
+    {"mounts", "worst force of each mount, axis and order over all patterns", screen_mounts_table},
     {"levels", "every condition with every column", screen_levels_table},
     {NULL, NULL, NULL}};
 

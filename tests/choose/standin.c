@@ -77,6 +77,12 @@ tacet_status tacet_quantity_parse(const char *text, const tacet_train *t,
 }
 
 // ---- model ------------------------------------------------------------------------------------
+const tacet_quantity *tacet_quantity_find(const char *name)
+{
+    (void)name;
+    return NULL;
+}
+
 const tacet_study *tacet_model_study(const tacet_model *m)
 {
     return &m->study;
@@ -89,6 +95,24 @@ const tacet_train *tacet_model_train(const tacet_model *m)
 {
     return (const tacet_train *)(const void *)m;
 }
+const tacet_roll *tacet_model_all_fire(const tacet_model *m)
+{
+    (void)m;
+    return NULL;
+}
+
+const tacet_body *tacet_model_body(const tacet_model *m)
+{
+    (void)m;
+    return NULL;
+}
+
+size_t tacet_body_mounts(const tacet_body *b)
+{
+    (void)b;
+    return 0;
+}
+
 size_t tacet_model_bands(const tacet_model *m)
 {
     (void)m;

@@ -25,6 +25,12 @@ const tacet_study *tacet_model_study(const tacet_model *m)
     return &m->study;
 }
 
+const tacet_body *tacet_model_body(const tacet_model *m)
+{
+    (void)m;
+    return NULL;
+}
+
 size_t tacet_model_bands(const tacet_model *m)
 {
     return sizeof m->band / sizeof *m->band;
