@@ -129,5 +129,73 @@ TACET_USE tacet_status tacet_screen_run(const tacet_model *m, const tacet_watch 
                                         tacet_error *e);
 void tacet_screen_destroy(tacet_screen *s); // accepts NULL
 
+// A stretch of neighbouring grid speeds with the same recommended candidate, or with none.
+typedef struct {
+    size_t first, last; // ranks
+    size_t candidate;   // SIZE_MAX: none is clear
+    size_t tightest;    // cell with the smallest margin; SIZE_MAX: none is clear
+} tacet_run;
+// In rising speed, into the arena.
+TACET_USE tacet_status tacet_screen_runs(const tacet_screen *s, tacet_arena *a, tacet_run **out,
+                                         size_t *n);
+
+// ---- scatter of stiffness ----------------------------------------------------------------------
+// A rubber mount or coupling is as stiff as its drawing within some share only. The smallest margin
+// of each verdict within that, and d(margin)/d(stiffness) as the study states it.
+//
+// Entry i multiplies a stiffness by a factor f_i in [1 - s_i, 1 + s_i]:
+//   a link   its real stiffness; loss factor (at the same frequency) or N m s/rad stay, so the
+//            complex stiffness of a link with a loss factor is f times itself. A tuned damper is
+//            tuned by the root of f, and its loss factor holds there;
+//   a mount  all three axes, dynamic and static; the loss factor stays;
+//   "mounts" all mounts together, besides what an entry says of one of them.
+// Limits are those of the study as stated, those over all-fire too; so are engine and demand. The
+// margin of a band or limit is that of its worst placement.
+//
+// Looked at: every stiffness as stated; each entry alone, at its ends and in steps of 5 % of the
+// stiffness or less; all corners, when entries are four or fewer. From the smallest margin of each
+// verdict, golden section along each entry that moves it, the one that governs first, until 0.1 dB
+// is left. So a resonance inside the range is found unless it is narrower than the steps: below a
+// loss factor of some 0.05 the margin in its middle may be missed.
+// Limit case: as all s_i go to 0 the smallest margin goes to the one as stated, and the difference
+// to s_i |d(margin)/d(ln stiffness)| of a single entry.
+typedef struct {
+    const char *name;
+    double half_width;  // s, 0.01 to 0.5
+    size_t link, mount; // SIZE_MAX: not one; both: all mounts
+} tacet_scatter_entry;
+// "mounts=15%, coupling=10%" against a model; e says what is allowed, with a near name.
+TACET_USE tacet_status tacet_scatter_parse(const char *text, const tacet_model *m, tacet_arena *a,
+                                           tacet_scatter_entry **out, size_t *n, tacet_error *e);
+
+typedef struct {
+    int band, limit;             // index; the other is -1
+    double stated_db, least_db;  // margin; INFINITY: no line; NAN: no verdict as stated
+    tacet_verdict stated, least; // what they come to
+    const double *at;            // [n_entries] factors at the smallest margin
+    const double *slope_db;      // [n_entries] d(margin)/d(ln stiffness) as stated; NAN: unknown
+    size_t governs;              // entry with the largest |slope|; SIZE_MAX: none moves it
+} tacet_scatter_margin;
+typedef struct {
+    const tacet_scatter_entry *entries;
+    size_t n_entries;
+    tacet_scatter_margin *margins; // bands, then limits
+    size_t n_margins;
+    size_t n_points, n_failed; // of the scatter; failed: some verdict is not known there
+} tacet_scatter;
+typedef struct {
+    const tacet_scatter_entry *entries;
+    size_t n_entries;
+    const tacet_candidate *candidate; // all its placements
+    double speed_rad_per_s, demand_Nm;
+    tacet_level level;
+} tacet_scatter_ask;
+// The model must be prepared; watch may be NULL. The same call gives the same bits.
+TACET_USE tacet_status tacet_scatter_run(const tacet_model *m, const tacet_scatter_ask *ask,
+                                         const tacet_watch *watch, tacet_arena *a,
+                                         tacet_scatter *out, tacet_error *e);
+// "stays clear", "may become near", "may become over", "is near", "is over", "not known".
+const char *tacet_scatter_text(const tacet_scatter *s, const tacet_scatter_margin *m);
+
 #pragma GCC visibility pop
 #endif

@@ -20,6 +20,11 @@ TACET_USE tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e);
 // From here on prepare looks at *stop between its steps; not 0: it ends with TACET_STOPPED, and the
 // model is as it was created, to be destroyed. NULL: it does not look.
 void tacet_model_watch(tacet_model *m, const volatile int *stop);
+// A prepared model of s beside another, of whose study it is a copy with other stiffness of links
+// or mounts. Cheap: engine, cycle table, line grid and all-fire reference levels are those of `of`,
+// which must outlive it. Limits over all-fire are therefore those of the study as stated.
+TACET_USE tacet_status tacet_model_create_beside(const tacet_model *of, const tacet_study *s,
+                                                 tacet_model **out, tacet_error *e);
 void tacet_model_destroy(tacet_model *m);                             // accepts NULL
 const tacet_study *tacet_model_study(const tacet_model *m);           // borrowed
 const tacet_engine *tacet_model_engine(const tacet_model *m);         // owned by the model

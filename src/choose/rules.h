@@ -48,4 +48,24 @@
 #define TURN_DB  1.0
 #define TURN_RPM 0.5
 
+// Stiffnesses that may scatter at a time.
+#define SCATTER_ENTRIES_MOST 64
+// Scatter of stiffness: widest step of a factor between two looks, and fewest looks on each side. A
+// resonance of loss factor eta is eta wide in stiffness at half its power.
+#define SCATTER_STEP  0.05
+#define SCATTER_LOOKS 2
+// All corners of the scatter are looked at up to so many entries.
+#define SCATTER_CORNERS 4
+// A smallest margin is followed until both ends of its bracket lie within half of this, dB; an
+// entry that moves a margin by less is not followed.
+#define SCATTER_DB 0.1
+// Looks of one golden section and rounds over all entries at most.
+#define SCATTER_SECTIONS 24
+#define SCATTER_ROUNDS   3
+// Half the step of the central difference in ln(stiffness): margins are good to some 1e-5 dB, so
+// the slope to 1e-3 dB per unit.
+#define SCATTER_SLOPE_STEP 0.005
+// Less than this, dB, is no change: what is left over by the solvers' iterations.
+#define SCATTER_NOISE_DB 1e-4
+
 #endif

@@ -24,7 +24,7 @@ typedef struct {
     const char *fallback; // what it is when not given; NULL: nothing
     const char *doc;
 } cli_option;
-#define CLI_OPTIONS_MOST 12
+#define CLI_OPTIONS_MOST 16
 
 typedef struct {
     const char *line, *what;

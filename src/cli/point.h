@@ -2,6 +2,7 @@
 #ifndef CLI_POINT_H
 #define CLI_POINT_H
 #include "cli/cli.h"
+#include "cli/scatter.h"
 
 typedef struct { // lines of one quantity, of the condition and of all-fire
     tacet_quantity_ref of;
@@ -31,6 +32,7 @@ typedef struct {
     bool refereed;
     tacet_status referee_status;
     tacet_agreement agreement;
+    cli_scatter scatter;
 } point;
 
 // Solves every placement and keeps the worst, with the lines of every quantity beside all-fire's.

@@ -59,6 +59,7 @@ int point_write_json(const point *p, FILE *to)
     put_quantities(&j, p);
     point_body_json(&j, p);
     point_one_dead_json(&j, p);
+    cli_scatter_json(&j, p->s, &p->scatter);
     return cli_end_json(&j);
 }
 

@@ -294,6 +294,7 @@ int point_write_text(const point *p)
     fputc('\n', stdout);
     cli_write_table(p->call, t);
     write_solver(p);
+    if (code == CLI_DONE) code = cli_scatter_text(p->call, p->s, &p->scatter);
     fprintf(stdout, "\n%s", tacet_caution(TACET_CAUTION_LONG));
     return code;
 }

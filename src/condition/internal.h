@@ -43,7 +43,7 @@ struct tacet_model {
     // [cycles - 1] samples a multiple of the repeat's opportunities: what equal cylinders cancel
     // then cancels to rounding, aliasing included
     tacet_transform *even[EVEN_CYCLES];
-    bool prepared;
+    bool prepared, beside;    // beside: engine, rolls and transforms are another model's
     const volatile int *stop; // NULL: nobody may ask
     double *reference;        // [n_bands] all-fire at its worst screened speed; NAN: none
     cyclic_grid *cyclic;      // [n_bands]

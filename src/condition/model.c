@@ -314,6 +314,55 @@ static tacet_status asked_to_stop(tacet_error *e)
     return tacet_fail(e, TACET_STOPPED, "stopped while the model was prepared");
 }
 
+// What depends on no stiffness, and what the limits hang on, is the other model's.
+static void borrow(tacet_model *m, const tacet_model *from)
+{
+    m->all_fire = from->all_fire;
+    m->one_dead = from->one_dead;
+    m->highest_order = from->highest_order;
+    m->highest_band_hz = from->highest_band_hz;
+    m->order_limited = from->order_limited;
+    m->most_revolutions = from->most_revolutions;
+    m->most_lines = from->most_lines;
+    memcpy(m->transform, from->transform, sizeof m->transform);
+    memcpy(m->even, from->even, sizeof m->even);
+    memcpy(m->reference, from->reference, m->n_bands * sizeof *m->reference);
+}
+
+tacet_status tacet_model_create_beside(const tacet_model *of, const tacet_study *s,
+                                       tacet_model **out, tacet_error *e)
+{
+    if (!of->prepared || s->n_bands != of->n_bands || s->n_limits != of->n_limits)
+        return tacet_fail(e, TACET_BAD_INPUT, "only beside a prepared model of the same bands");
+    tacet_model *m = calloc(1, sizeof *m);
+    tacet_workspace *w = NULL;
+    tacet_status status = TACET_NO_MEMORY;
+    if (!m || !(m->arena = tacet_arena_create())) {
+        (void)tacet_fail(e, TACET_NO_MEMORY, "no memory for the model");
+        goto failed;
+    }
+    m->study = s;
+    m->beside = true;
+    m->engine = of->engine;
+    status = assemble_train(m, e);
+    if (status == TACET_OK && tacet_body_def_given(&s->body))
+        status = tacet_body_create(&s->body, m->engine, &m->body, e);
+    if (status == TACET_OK) status = assemble_judgement(m, e);
+    if (status != TACET_OK) goto failed;
+    borrow(m, of);
+    status = workspace_build(m, &w);
+    if (status != TACET_OK) (void)tacet_fail(e, status, "no memory for the model");
+    if (status == TACET_OK) status = dispersion_prepare(m, w, e);
+    tacet_workspace_destroy(w);
+    if (status != TACET_OK) goto failed;
+    m->prepared = true;
+    *out = m;
+    return TACET_OK;
+failed:
+    tacet_model_destroy(m);
+    return status;
+}
+
 // All-fire levels at the study's demand at every screened speed; the worst of each band is its
 // reference.
 static tacet_status prepare_references(tacet_model *m, tacet_workspace *w, tacet_error *e)
@@ -359,9 +408,9 @@ tacet_status tacet_model_prepare(tacet_model *m, tacet_error *e)
     return status;
 }
 
-void tacet_model_destroy(tacet_model *m)
+// What a model beside another borrows.
+static void destroy_own(tacet_model *m)
 {
-    if (!m) return;
     for (size_t i = 0; i < TRANSFORM_KINDS; i++)
         tacet_transform_destroy(m->transform[i]);
     for (size_t i = 0; i < EVEN_CYCLES; i++)
@@ -369,9 +418,15 @@ void tacet_model_destroy(tacet_model *m)
     tacet_roll_destroy(m->all_fire);
     for (unsigned slot = 0; m->one_dead && slot < tacet_engine_cylinders(m->engine); slot++)
         tacet_roll_destroy(m->one_dead[slot]);
+    tacet_engine_destroy(m->engine);
+}
+
+void tacet_model_destroy(tacet_model *m)
+{
+    if (!m) return;
+    if (!m->beside) destroy_own(m);
     tacet_body_destroy(m->body);
     tacet_train_destroy(m->train);
-    tacet_engine_destroy(m->engine);
     tacet_arena_destroy(m->arena);
     free(m);
 }

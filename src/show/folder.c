@@ -10,25 +10,11 @@
 #include <unistd.h>
 
 #define DRAWING(stem) stem ".svg", stem ".png", stem ".gnuplot"
-static const char *const names[] = {"summary.txt",
-                                    "runs.csv",
-                                    "screen.json",
-                                    "summary.csv",
-                                    "ranking.csv",
-                                    "no-go.csv",
-                                    "agreement.csv",
-                                    "levels.csv",
-                                    "mounts.csv",
-                                    DRAWING("map"),
-                                    DRAWING("orders"),
-                                    DRAWING("bars"),
-                                    DRAWING("repeat"),
-                                    DRAWING("modes"),
-                                    DRAWING("forces"),
-                                    DRAWING("paths"),
-                                    "lines.csv",
-                                    "point.json",
-                                    NULL};
+static const char *const names[] = {
+    "summary.txt",     "runs.csv",      "screen.json",     "summary.csv",    "ranking.csv",
+    "no-go.csv",       "agreement.csv", "levels.csv",      "mounts.csv",     DRAWING("map"),
+    DRAWING("orders"), DRAWING("bars"), DRAWING("repeat"), DRAWING("modes"), DRAWING("forces"),
+    DRAWING("paths"),  "lines.csv",     "point.json",      "scatter.csv",    NULL};
 #define N_NAMES (sizeof names / sizeof *names - 1)
 
 struct tacet_folder {

@@ -83,23 +83,6 @@ char *screen_text(tacet_arena *a, const char *format, ...)
     return text;
 }
 
-tacet_status screen_runs(const tacet_screen *s, tacet_arena *a, screen_run **out, size_t *n)
-{
-    screen_run *run = tacet_arena_alloc(a, (s->n_ranks + 1) * sizeof *run);
-    *n = 0;
-    *out = run;
-    if (!run) return TACET_NO_MEMORY;
-    for (size_t i = 0; i < s->n_ranks; i++) {
-        size_t best = s->ranks[i].best;
-        size_t candidate = best == SIZE_MAX ? SIZE_MAX : s->cells[best].candidate;
-        if (*n > 0 && run[*n - 1].candidate == candidate)
-            run[*n - 1].last = i;
-        else
-            run[(*n)++] = (screen_run){i, i, candidate};
-    }
-    return TACET_OK;
-}
-
 void put_number(table_row *r, double value)
 {
     *r->next++ = (tacet_table_cell){.number = value};

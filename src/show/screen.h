@@ -19,15 +19,6 @@ const char *screen_why_text(tacet_why why);       // "" when there is a verdict
 double screen_saving_percent(const tacet_row *r); // 100 (1 - fuel to all-fire); NAN: none known
 char *screen_text(tacet_arena *a, const char *format, ...) TACET_PRINTF(2, 3); // NULL: no memory
 
-// A stretch of neighbouring grid speeds with the same recommended candidate, or with none.
-typedef struct {
-    size_t first, last; // ranks
-    size_t candidate;   // SIZE_MAX: none is clear
-} screen_run;
-// Runs in rising speed into the arena.
-TACET_USE tacet_status screen_runs(const tacet_screen *s, tacet_arena *a, screen_run **out,
-                                   size_t *n);
-
 // The tables of tacet_screen_tables.
 tacet_status screen_runs_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                                tacet_table *out);

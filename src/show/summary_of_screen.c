@@ -58,7 +58,7 @@ static const char *candidate_text(summary *y, size_t candidate)
 }
 
 // "Run all cylinders at 900-1075 rpm, 1/2 at 1100-1900 rpm."
-static void what_runs(summary *y, const screen_run *run, size_t n)
+static void what_runs(summary *y, const tacet_run *run, size_t n)
 {
     const char *text = "Run";
     for (size_t i = 0; i < n && i < RUNS_SHOWN; i++) {
@@ -209,12 +209,12 @@ tacet_status tacet_screen_summary(const tacet_model *m, const tacet_screen *s, t
                                   const char *const **lines, size_t *n)
 {
     summary y = {.m = m, .s = s, .a = a};
-    screen_run *run;
+    tacet_run *run;
     size_t n_runs;
     *n = 0;
     y.line = tacet_arena_alloc(a, LINES_MOST * sizeof *y.line);
     if (!y.line) return TACET_NO_MEMORY;
-    tacet_status status = screen_runs(s, a, &run, &n_runs);
+    tacet_status status = tacet_screen_runs(s, a, &run, &n_runs);
     if (status != TACET_OK) return status;
     what_runs(&y, run, n_runs);
     what_saves(&y);

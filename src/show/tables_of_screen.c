@@ -23,31 +23,25 @@ static const tacet_table_column runs_columns[] = {
     {"at_order", NULL, false, -1, false, "order"},
 };
 
-// Mean saving of a run and its cell with the smallest margin.
-static size_t tightest(const tacet_screen *s, const screen_run *run, double *saving)
+// Mean saving of a run, %; NAN: none known.
+static double mean_saving(const tacet_screen *s, const tacet_run *run)
 {
-    double sum = 0, least = INFINITY;
-    size_t n = 0, tight = s->ranks[run->first].best;
+    double sum = 0;
+    size_t n = 0;
     for (size_t i = run->first; i <= run->last; i++) {
-        const tacet_row *r = &s->cells[s->ranks[i].best].row;
-        double saved = screen_saving_percent(r);
+        double saved = screen_saving_percent(&s->cells[s->ranks[i].best].row);
         if (isfinite(saved)) sum += saved, n++;
-        if (r->worst_margin_db < least) {
-            least = r->worst_margin_db;
-            tight = s->ranks[i].best;
-        }
     }
-    *saving = n ? sum / (double)n : NAN;
-    return tight;
+    return n ? sum / (double)n : NAN;
 }
 
 tacet_status screen_runs_table(const tacet_model *m, const tacet_screen *s, tacet_arena *a,
                                tacet_table *out)
 {
-    screen_run *run;
+    tacet_run *run;
     size_t n;
     table_row row;
-    tacet_status status = screen_runs(s, a, &run, &n);
+    tacet_status status = tacet_screen_runs(s, a, &run, &n);
     if (status != TACET_OK) return status;
     status = table_start(a,
                          &(tacet_table){.name = "runs",
@@ -66,13 +60,11 @@ tacet_status screen_runs_table(const tacet_model *m, const tacet_screen *s, tace
                 put_text(&row, NULL);
             continue;
         }
-        double saving;
-        size_t cell = tightest(s, &run[i], &saving);
-        const tacet_row *r = &s->cells[cell].row;
+        const tacet_row *r = &s->cells[run[i].tightest].row;
         put_text(&row, s->candidates[run[i].candidate].name);
         put_accent(&row);
         put_text(&row, s->candidates[run[i].candidate].word);
-        put_number(&row, saving);
+        put_number(&row, mean_saving(s, &run[i]));
         put_number(&row, r->worst_margin_db);
         put_text(&row, screen_limited_by(m, r));
         put_number(&row, screen_limiting_order(r));
