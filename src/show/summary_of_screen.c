@@ -61,14 +61,14 @@ static const char *candidate_text(summary *y, size_t candidate)
 static void what_runs(summary *y, const tacet_run *run, size_t n)
 {
     const char *text = "Run";
-    for (size_t i = 0; i < n && i < RUNS_SHOWN; i++) {
+    size_t shown = n <= RUNS_SHOWN + 1 ? n : RUNS_SHOWN; // "1 more" takes no less room
+    for (size_t i = 0; i < shown; i++) {
         const char *span = span_text(y, run[i].first, run[i].last);
         add(y, &text,
             screen_text(y->a, "%s %s at %s", i ? "," : "", candidate_text(y, run[i].candidate),
                         span ? span : ""));
     }
-    if (n > RUNS_SHOWN)
-        add(y, &text, screen_text(y->a, ", and %zu stretches more", n - RUNS_SHOWN));
+    if (n > shown) add(y, &text, screen_text(y->a, ", and %zu stretches more", n - shown));
     add(y, &text, ".");
     say(y, text);
 }
