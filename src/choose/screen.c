@@ -77,7 +77,7 @@ static tacet_status solve_all(screening *g, size_t candidate, double speed, samp
     const tacet_candidate *c = &g->s->candidates[candidate];
     *seen = sample_blank(speed);
     for (size_t p = 0; p < c->n_placements; p++) {
-        tacet_row row;
+        tacet_row row = {.outcome = TACET_FAILED};
         tacet_status status = solve_placement(g, c, p, speed, &row);
         if (status != TACET_OK) return status;
         sample_take(seen, &row);

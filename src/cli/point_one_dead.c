@@ -66,7 +66,7 @@ void point_one_dead_json(tacet_json *j, const point *p)
         tacet_json_put_text(j, "all_fire_why",
                             isfinite(all_fire) ? "" : tacet_outcome_text(p->all_fire.outcome));
         tacet_json_put_number(j, "one_dead_rms", p->one_dead.level[b]);
-        tacet_json_put_number(j, "one_dead_cylinder", *why ? NAN : cylinder(p, b));
+        tacet_json_put_number(j, "one_dead_cylinder", *why ? NAN : (double)cylinder(p, b));
         tacet_json_put_text(j, "one_dead_why", why);
         tacet_json_end_object(j);
     }

@@ -326,7 +326,8 @@ static void borrow(tacet_model *m, const tacet_model *from)
     m->most_lines = from->most_lines;
     memcpy(m->transform, from->transform, sizeof m->transform);
     memcpy(m->even, from->even, sizeof m->even);
-    memcpy(m->reference, from->reference, m->n_bands * sizeof *m->reference);
+    for (size_t b = 0; b < m->n_bands; b++)
+        m->reference[b] = from->reference[b];
 }
 
 tacet_status tacet_model_create_beside(const tacet_model *of, const tacet_study *s,

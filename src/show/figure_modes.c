@@ -140,8 +140,8 @@ static void frequency_axis(canvas *c, const tacet_figure_modes *f, double most_h
     canvas_stroke rule = {INK_FAINT, 1, false}, lead = {INK, 1.2, false};
     double step = canvas_step(0, most_hz, 14);
     canvas_line(c, c->left, AXIS_Y, c->right, AXIS_Y, rule);
-    for (double hz = 0; hz <= most_hz * (1 + 1e-9); hz += step) {
-        double x = axis_x(c, hz, most_hz);
+    for (size_t i = 0; step * (double)i <= most_hz * (1 + 1e-9); i++) {
+        double hz = step * (double)i, x = axis_x(c, hz, most_hz);
         canvas_line(c, x, AXIS_Y, x, AXIS_Y + 5, rule);
         canvas_text(c, x, AXIS_Y + 16, (canvas_style){.anchor = ANCHOR_CENTRE, .size = FONT_SMALL},
                     tacet_number_format_short(hz, 4, number));
@@ -160,7 +160,7 @@ static void key(canvas *c, const tacet_figure_modes *f)
 {
     char text[200], low[TACET_NUMBER_TEXT], high[TACET_NUMBER_TEXT];
     double x = c->right + 30, y = c->top + 10;
-    for (size_t k = 6; k-- > 0; y += 28) {
+    for (size_t k = 6; k-- > 0;) {
         const direction *d = &directions[k];
         canvas_box(c, x, y - 9, x + 30, y + 9,
                    (canvas_paint){.fill = d->fill,
@@ -168,9 +168,10 @@ static void key(canvas *c, const tacet_figure_modes *f)
                                   .border = d->hatching ? d->fill : TRACE_MAIN,
                                   .width = 1});
         canvas_text(c, x + 40, y, (canvas_style){.size = FONT_TEXT}, d->name);
+        y += 28;
     }
     y = fmin(AXIS_TOP - 24, 660 - 40 * fmin((double)f->n_bands, BANDS_NAMED));
-    for (size_t b = 0; b < f->n_bands && b < BANDS_NAMED; b++, y += 40) {
+    for (size_t b = 0; b < f->n_bands && b < BANDS_NAMED; b++) {
         const tacet_figure_band *band = &f->band[b];
         canvas_box(c, x, y - 8, x + 24, y + 8,
                    (canvas_paint){.fill = FILL_BAND, .border = EDGE_STRIP, .width = 1.2});
@@ -181,6 +182,7 @@ static void key(canvas *c, const tacet_figure_modes *f)
                  tacet_number_format_short(band->high_hz, 4, high));
         canvas_text(c, x + 34, y + 19, (canvas_style){.size = FONT_SMALL, .colour = INK_FAINT},
                     text);
+        y += 40;
     }
 }
 

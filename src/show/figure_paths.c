@@ -69,7 +69,8 @@ static void lay_out(const tacet_figure_paths *f, size_t i, panel *p)
     double width = (CANVAS_WIDTH - 48 - GAP_PX * (double)(across - 1)) / (double)across;
     double height = panel_height(f, down), names = fmin(NAME_PX, 0.3 * width);
     p->x0 = 24 + (width + GAP_PX) * (double)(i % across);
-    p->y0 = TOP_PX + (height + GAP_PX) * (double)(i / across);
+    size_t row = i / across;
+    p->y0 = TOP_PX + (height + GAP_PX) * (double)row;
     p->x1 = p->x0 + width;
     p->first_x = p->x0 + names;
     size_t fit = (size_t)((width - names) / COLUMN_PX);
