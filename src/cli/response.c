@@ -3,6 +3,8 @@
 #include <math.h>
 #include <string.h>
 
+#define LEAST_HZ     1e-6 // below, squares of it leave the range of numbers
+#define MOST_HZ      1e6
 #define POINTS       4000
 #define POINTS_MOST  20000
 #define BEYOND_MODES 1.2
@@ -33,8 +35,8 @@ static int read_frequencies(const cli_call *call, response *r)
         char *end = strchr(part, ':');
         bool ends = i == 2 ? !end : end != NULL;
         if (end) *end = '\0';
-        if (!ends || !tacet_number_parse(part, &v[i]) || !(v[i] > 0))
-            return cli_wrong("--frequencies '%s': FROM:TO:STEP in Hz, each above 0", text);
+        if (!ends || !tacet_number_parse(part, &v[i]) || !(v[i] >= LEAST_HZ && v[i] <= MOST_HZ))
+            return cli_wrong("--frequencies '%s': FROM:TO:STEP in Hz, each from 1e-6 to 1e6", text);
         if (end) part = end + 1;
     }
     double steps = (v[1] - v[0]) / v[2];

@@ -95,6 +95,12 @@ static void node_lines(tacet_train_work *w, size_t j, band b)
     }
 }
 
+// 1 / x; an undamped mode driven at its own frequency is infinite, and refused after the solve.
+static inline double over(double x)
+{
+    return x == 0 ? (double)INFINITY : 1 / x;
+}
+
 // Factors of the k-th leaf; adds Z' to the node that it hangs from.
 static void eliminate(tacet_train_work *w, size_t k, size_t n)
 {
@@ -108,10 +114,10 @@ static void eliminate(tacet_train_work *w, size_t k, size_t n)
     double *restrict cr = f->carried.re + at, *restrict ci = f->carried.im + at;
     double *restrict sr = f->softness.re + at, *restrict si = f->softness.im + at;
     for (size_t h = 0; h < n; h++) {
-        double dr = kr[h] + zr[h], di = ki[h] + zi[h], by = 1 / (dr * dr + di * di);
+        double dr = kr[h] + zr[h], di = ki[h] + zi[h], by = over(dr * dr + di * di);
         double g_re = (kr[h] * dr + ki[h] * di) * by, g_im = (ki[h] * dr - kr[h] * di) * by;
         double c_re = g_re * zr[h] - g_im * zi[h], c_im = g_re * zi[h] + g_im * zr[h];
-        double soft = 1 / (kr[h] * kr[h] + ki[h] * ki[h]);
+        double soft = over(kr[h] * kr[h] + ki[h] * ki[h]);
         gr[h] = g_re;
         gi[h] = g_im;
         cr[h] = c_re;
@@ -129,7 +135,7 @@ static void invert_root(tacet_train_work *w, size_t n)
     const double *restrict zi = w->dynamic.im + w->t->flywheel * w->stride;
     double *restrict re = w->factor.root.re, *restrict im = w->factor.root.im;
     for (size_t h = 0; h < n; h++) {
-        double by = 1 / (zr[h] * zr[h] + zi[h] * zi[h]);
+        double by = over(zr[h] * zr[h] + zi[h] * zi[h]);
         re[h] = zr[h] * by;
         im[h] = -zi[h] * by;
     }
