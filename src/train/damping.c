@@ -40,10 +40,11 @@ static tacet_status place_rates(tacet_train *t, double low, double high, tacet_e
     return TACET_OK;
 }
 
-// Sum of (r q^-i)^power over i = 0, 1, 2, ..; power > 0.
+// Sum of (r q^-i)^power over i = 0, 1, 2, ..; power > 0, however small: a loss factor of 1e-17 is a
+// power whose q^-power is 1.
 static double series(double r, double q, double power)
 {
-    return pow(r, power) / (1 - pow(q, -power));
+    return pow(r, power) / -expm1(-power * log(q));
 }
 
 static void weigh(const tacet_train *t, double alpha, link_law *law, double *weight)

@@ -56,6 +56,22 @@ static void test_loss_factor_is_met(void **state)
     assert_true(worst_law < 0.03);
 }
 
+// The limit of none: a loss factor of 1e-17 and of 1e-300 leaves a spring, K = k.
+static void test_next_to_no_loss(void **state)
+{
+    (void)state;
+    const double losses[] = {1e-17, 1e-300};
+    for (int i = 0; i < 2; i++) {
+        tacet_train *t = two(losses[i], NAN, 1, 1000), *spring = two(0, NAN, 1, 1000);
+        for (double hz = 0.3; hz < 3000; hz *= 7) {
+            double complex k = K(spring, 0, hz);
+            assert_near(cabs(K(t, 0, hz) - k) / cabs(k), 0, 1e-12, 0);
+        }
+        tacet_train_destroy(t);
+        tacet_train_destroy(spring);
+    }
+}
+
 // Causal: as a spring with Maxwell arms stiffness only grows with frequency and loss is never
 // negative, outside the range too.
 static void test_passive_everywhere(void **state)
@@ -127,10 +143,8 @@ static void test_main_modes(void **state)
 }
 
 static const struct CMUnitTest tests[] = {
-    cmocka_unit_test(test_loss_factor_is_met),
-    cmocka_unit_test(test_passive_everywhere),
-    cmocka_unit_test(test_where_stiffness_holds),
-    cmocka_unit_test(test_viscous_ratio_and_constant),
-    cmocka_unit_test(test_main_modes),
+    cmocka_unit_test(test_loss_factor_is_met),         cmocka_unit_test(test_next_to_no_loss),
+    cmocka_unit_test(test_passive_everywhere),         cmocka_unit_test(test_where_stiffness_holds),
+    cmocka_unit_test(test_viscous_ratio_and_constant), cmocka_unit_test(test_main_modes),
 };
 TEST_MAIN(tests)
