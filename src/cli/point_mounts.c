@@ -12,7 +12,9 @@ static void put_in_order(const point_body *b, size_t n, size_t *column)
 {
     for (size_t i = 1; i < n; i++)
         for (size_t k = i; k > 0; k--) {
-            if (b->force[column[k - 1]].largest_N >= b->force[column[k]].largest_N) break;
+            // equal but for rounding: as in the file
+            if (b->force[column[k - 1]].largest_N >= b->force[column[k]].largest_N * (1 - 1e-9))
+                break;
             size_t swapped = column[k];
             column[k] = column[k - 1];
             column[k - 1] = swapped;

@@ -20,6 +20,7 @@
 
 #define RATE_RATIO_MOST 4.0 // of neighbouring rates
 #define RANGE_LEAST     64.0
+#define NO_LOSS         1e-15 // a loss factor below is rounding
 
 // Rates in rad/s that hold between two frequencies: down, between.., up.
 static tacet_status place_rates(tacet_train *t, double low, double high, tacet_error *e)
@@ -101,7 +102,7 @@ static tacet_status resolve(tacet_train *t, size_t e, const tacet_link_def *l,
     if (!isnan(l->damping_ratio))
         info->damping_Nms_per_rad = l->damping_ratio * k / (M_PI * info->main_mode_hz);
     t->law[e].viscous = info->damping_Nms_per_rad;
-    if (isnan(l->loss_factor) || l->loss_factor == 0) return TACET_OK;
+    if (isnan(l->loss_factor) || l->loss_factor < NO_LOSS) return TACET_OK;
     info->loss_factor = l->loss_factor;
     t->constant_loss[e] = l->loss_law == TACET_LOSS_CONSTANT;
     if (t->constant_loss[e]) return TACET_OK;
